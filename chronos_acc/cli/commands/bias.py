@@ -1,0 +1,49 @@
+"""chronos-acc bias"""
+
+from __future__ import annotations
+
+import argparse
+from typing import TYPE_CHECKING
+
+from ..arguments import names
+from ..common import chosen_record, timeline
+from ..registry import Command
+
+if TYPE_CHECKING:
+    from ..output import Output
+
+
+def _arguments(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("--checks", type=names, metavar="A,B", help="these checks only")
+    parser.add_argument("--exposure", metavar="FILE.csv", help="year,exposure for the exposure check")
+
+
+def _run(options: argparse.Namespace, out: Output) -> int:
+    from ...bias import run_checks
+    from ...bias.check import Context
+    from ...report.pages import bias_page
+    from ...store.timeline import entries
+
+    record = chosen_record(options, out)
+    exposure = None
+    if options.exposure:
+        from pathlib import Path
+
+        from ...store.formats.exposure import read_exposure
+
+        exposure = read_exposure(Path(options.exposure))
+    rows, milestone = entries(timeline(options))
+    context = Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, exposure=exposure, tell=out.tell)
+    bias = run_checks(context, names=options.checks)
+    out.page(bias_page(bias))
+    return 0
+
+
+COMMAND = Command(
+    name="bias",
+    about="Would the making of the lists produce this? Each check changes one thing about how the record came to be and shows the growth beside the null\n"
+    "for that very setting. The summary comes first: one row a check.",
+    example="chronos-acc bias --checks recall_decay,support",
+    arguments=_arguments,
+    run=_run,
+)

@@ -1,0 +1,50 @@
+"""chronos-acc query"""
+
+from __future__ import annotations
+
+import argparse
+from typing import TYPE_CHECKING
+
+from ...errors import WrongUse
+from ..common import timeline
+from ..registry import Command
+
+if TYPE_CHECKING:
+    from ..output import Output
+
+
+def _arguments(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("query", nargs="?", metavar="NAME|SELECT", help="a named query, or one SELECT of your own in quotes; nothing: list the named ones")
+    parser.add_argument("--set", dest="settings", action="append", default=[], metavar="NAME=VALUE", help="a parameter of the query; may be given again")
+
+
+def _run(options: argparse.Namespace, out: Output) -> int:
+    from ...report.pages import query_page, queries_page
+    from ...store.query import find, named, run
+
+    if options.query is None:
+        out.page(queries_page(named()))
+        return 0
+    settings: dict[str, str] = {}
+    for pair in options.settings:
+        name, sign, value = pair.partition("=")
+        if not sign or not name.isidentifier():
+            raise WrongUse(f"--set {pair!r} is not allowed; give NAME=VALUE, as in --set epoch=100")
+        settings[name] = value
+    for key in ("present", "start"):
+        if getattr(options, key) is not None:
+            settings.setdefault(key, repr(getattr(options, key)))
+    frame = run(timeline(options), options.query, settings)
+    known = find(options.query)
+    out.page(query_page(frame, known.question if known else ""))
+    return 0
+
+
+COMMAND = Command(
+    name="query",
+    about="Run a named query, or one SELECT of your own over the timeline's views (SHOW TABLES lists them). The file is opened for reading only;\n"
+    "nothing else can be read or written from SQL. Without a name, the named queries are listed with their questions and parameters.",
+    example="chronos-acc query \"SELECT title, best FROM milestones WHERE support >= 2 ORDER BY best\"",
+    arguments=_arguments,
+    run=_run,
+)

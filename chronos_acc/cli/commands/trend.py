@@ -1,0 +1,46 @@
+"""chronos-acc trend"""
+
+from __future__ import annotations
+
+import argparse
+from typing import TYPE_CHECKING
+
+from ..common import chosen_record, command_line
+from ..registry import Command
+
+if TYPE_CHECKING:
+    from ..output import Output
+
+
+def _arguments(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("--next", dest="next_event", action="store_true", help="the waiting time to the next milestone under each law, with its track record")
+    parser.add_argument("--exposure", metavar="FILE.csv", help="year,exposure: count time in people, scholars or publications instead of years")
+    parser.add_argument("--hac", action="store_true", help="add autocorrelation-robust standard errors (from 100 milestones on; marked)")
+
+
+def _run(options: argparse.Namespace, out: Output) -> int:
+    from ...report.pages import trend_page
+    from ...trend.analysis import analyse
+
+    record = chosen_record(options, out)
+    exposure = None
+    if options.exposure:
+        from pathlib import Path
+
+        from ...store.formats.exposure import read_exposure
+
+        exposure = read_exposure(Path(options.exposure))
+    trend = analyse(record, seed=options.seed, draws=options.draws, exposure=exposure, next_event=options.next_event, command=command_line("trend", options),
+                    tell=out.tell)  # fmt: skip
+    out.page(trend_page(trend))
+    return int(trend.verdict_code == "too_few")
+
+
+COMMAND = Command(
+    name="trend",
+    about="Is it speeding up? Five trend tests, rate laws, the age exponent and regressions on log time, each beside what null models of the making of the\n"
+    "list give, and a verdict. One list cannot tell a faster pace from forgetting; where that matters the verdict says so.",
+    example="chronos-acc trend --start 1500",
+    arguments=_arguments,
+    run=_run,
+)
