@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The exceptions of chronos_acc.
 
     ChronosError                   whatever a person can cause and mend; one line, no traceback

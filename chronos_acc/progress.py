@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """How an engine function tells what it is doing, without knowing who listens."""
 
 from __future__ import annotations

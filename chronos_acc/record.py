@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Record: what every analysis takes. Milestones as mixtures of datings, the lists that name them, and the window they are seen in."""
 
 from __future__ import annotations
@@ -221,6 +222,7 @@ class Window:
 
     index (w,) positions in the record; times (w,) best dates, all in [start, present]; ``opening`` how many of them stand at the start and open
     the window, ``closing`` how many stand exactly at the present and close it: neither is counted. before and after: milestones left outside.
+    unit (w,): the width in years to which each is dated, within which tests and laws spread equal dates.
     """
 
     index: Ints
@@ -234,6 +236,7 @@ class Window:
     before: int
     after: int
     finest_unit: float
+    unit: Floats = field(default_factory=lambda: np.empty(0))  # (w,) widths to which they are dated; empty where not known
 
     @property
     def n(self) -> int:
@@ -472,6 +475,7 @@ def _window(record: Record) -> Window:
         before=before,
         after=after,
         finest_unit=float(units.min()) if len(units) else 0.0,
+        unit=record.unit[index],
     )
 
 

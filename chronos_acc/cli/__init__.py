@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The command line: ``main`` reads it, makes the one Output, and turns what was refused into one line and an exit status."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The command line: options that every command shares, before or after its name, and a parser that answers in one line."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """What several commands do alike: find the timeline, build the record, say where it is."""
 
 from __future__ import annotations

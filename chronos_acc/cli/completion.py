@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Completion scripts for bash, zsh and fish, made from the registry and the parsers themselves."""
 
 from __future__ import annotations

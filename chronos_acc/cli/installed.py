@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """``--check-install``: what is installed, which extras are missing, and how to get them."""
 
 from __future__ import annotations
@@ -23,7 +24,8 @@ def check(out: Output) -> int:
     """Print the table; exit status 1 where something needed is missing."""
     import pandas as pd
 
-    from ..files import shipped
+    from .. import files
+    from ..errors import ChronosError
     from ..report.tables import Column, Page, Table
 
     rows = [("chronos_acc", "itself", __version__, ""), ("Python", "itself", platform.python_version(), "")]
@@ -35,8 +37,11 @@ def check(out: Output) -> int:
             found = _version(name)
             rows.append((name, f"extra: {extra}", found or "missing", "" if found else f"pip install 'chronos-acc[{extra}]'"))
     for folder in ("queries", "datasets"):
-        found = shipped(folder) is not None
-        rows.append((folder, "shipped files", "found" if found else "missing", "" if found else "install chronos-acc again"))
+        try:
+            where = str(files.folder(folder))
+        except ChronosError:
+            where = ""
+        rows.append((f"{folder}/", "shipped files", "found" if where else "missing", "" if where else "install chronos-acc again"))
     frame = pd.DataFrame(rows, columns=["part", "role", "version", "to_get_it"])
     columns = (Column("part", "part"), Column("role", "role"), Column("version", "version"), Column("to_get_it", "to get it"))
     out.page(Page(frame.to_dict("records"), (Table("install", frame, "What is installed, and what is missing?", columns),)))

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """One policy for everything that is printed: payload to stdout, remarks to stderr, progress only to a terminal."""
 
 from __future__ import annotations

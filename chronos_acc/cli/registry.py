@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The commands by name: a static tuple, so that help costs no import of the command itself."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Pages for the questions: trend, bias, grid, power. What each table asks, and its columns by importance."""
 
 from __future__ import annotations

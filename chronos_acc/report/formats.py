@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The formats of a page: table, json, csv, markdown, latex. One function each, ``write(page, only, width, colour) -> str``."""
 
 from __future__ import annotations

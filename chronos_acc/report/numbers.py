@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Numbers as a person reads them. Full precision stays in the frames; rounding happens here only."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """A page for each command of lists and merging: its document, its tables, the question each answers, its columns by importance."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Text that is safe to print: no control characters, escape sequences or direction overrides from anybody's list."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """What a table is before it is drawn: a frame, the question it answers, and its columns in order of importance."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Frames as terminal tables. The only file that knows rich.
 
 A narrow screen drops the columns of the highest rank, and says which, so that nothing is cut in the middle.

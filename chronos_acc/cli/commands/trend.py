@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """chronos-acc trend"""
 
 from __future__ import annotations
