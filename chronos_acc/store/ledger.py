@@ -192,16 +192,15 @@ def open_for_writing(db: str | Path, *, create: bool = True) -> Iterator[Ledger]
             _check_version(connection, path, writing=True)
         with refusals(path):
             yield Ledger(connection, path, writable=True)
-            connection.execute("CHECKPOINT").fetchall()  # so that a copy of the one file is whole
     finally:
-        connection.close()
+        connection.close()  # writes the write-ahead file into the timeline, so that a copy of the one file is whole
 
 
 def _create(connection: duckdb.DuckDBPyConnection) -> None:
     """Tables, views and comments in one transaction: a killed creation leaves a file without a schema, which is filled next time."""
     here = Path(__file__).parent
     connection.begin()
-    for name in ("schema.sql", "views.sql"):
+    for name in ("schema.sql", "views.sql", "analysis.sql"):
         connection.execute((here / name).read_text(encoding="utf-8")).fetchall()
     facts = {"schema_version": SCHEMA_VERSION, "made_by": f"chronos_acc {__version__}", "created": now().isoformat(), "linked": "yes"}
     for key, value in facts.items():
@@ -277,7 +276,9 @@ def _sentence(path: Path, said: str) -> str:
         return f"{path} may not be read or written here (permission denied); change its rights or choose another --db"
     if "out of memory" in low:
         return f"{path}: out of memory: {_first(text)}; close other programs and try again"
-    return f"{path} cannot be used: {_first(text)}; if it was damaged, go back to a copy or load the lists into a new file"
+    if path.name in text or "database" in low or "checksum" in low:
+        return f"{path} cannot be used: {_first(text)}; if it was damaged, go back to a copy or load the lists into a new file"
+    return f"work on {path} was stopped: {_first(text)}; nothing was changed"
 
 
 def _first(text: str) -> str:

@@ -1,0 +1,174 @@
+# SPDX-License-Identifier: Apache-2.0
+"""A person's SQL over the timeline, and the named queries. One statement that reads, on a file that cannot be written, with nothing else in reach."""
+
+from __future__ import annotations
+
+import difflib
+import re
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cache
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+import duckdb
+
+from .. import files
+from ..errors import QueryRefused
+from .ledger import GUARDED, Ledger, open_for_reading, quoted
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+Value = str | int | float | bool | None
+VIEW_VARIABLES = ("present", "start", "min_support", "category")  # what the views themselves follow
+
+
+@dataclass(frozen=True)
+class Parameter:
+    """A parameter of a named query: its default as written (NULL where there is none) and what it means."""
+
+    name: str
+    default: str
+    meaning: str
+
+
+@dataclass(frozen=True)
+class NamedQuery:
+    """One file of queries/: its question, its parameters, its columns (name and meaning, in order) and its statement."""
+
+    name: str
+    question: str
+    parameters: tuple[Parameter, ...]
+    columns: tuple[tuple[str, str], ...]
+    sql: str
+
+
+def named(folder: Path | None = None) -> tuple[NamedQuery, ...]:
+    """All named queries, by name."""
+    return _named(folder if folder is not None else files.queries())
+
+
+@cache
+def _named(folder: Path) -> tuple[NamedQuery, ...]:
+    return tuple(parse(path.stem, path.read_text(encoding="utf-8")) for path in sorted(folder.glob("*.sql")))
+
+
+def parse(name: str, text: str) -> NamedQuery:
+    """A query file. Its header is made of comment lines: ``question:``, then ``parameters:`` and ``columns:`` with one indented line each.
+
+        -- question: Which entries does a list hold?
+        -- parameters:
+        --   list = NULL: name of a list; all lists without it
+        -- columns:
+        --   entry: id of the entry
+
+    Raises QueryRefused where the header has no question or no columns.
+    """
+    question, section = "", ""
+    parameters: list[Parameter] = []
+    columns: list[tuple[str, str]] = []
+    body: list[str] = []
+    for line in text.splitlines():
+        if not line.startswith("--") or body:
+            if line.strip():
+                body.append(line)
+            continue
+        words = line[2:].strip()
+        key, _, rest = words.partition(":")
+        if key in ("question", "parameters", "columns"):
+            section = key
+            question = rest.strip() if key == "question" else question
+        elif section == "question" and words:
+            question += " " + words
+        elif section == "parameters" and rest and "=" in key:
+            label, _, default = key.partition("=")
+            parameters.append(Parameter(label.strip(), default.strip(), rest.strip()))
+        elif section == "columns" and rest:
+            columns.append((key.strip(), rest.strip()))
+    if not question or not columns or not body:
+        raise QueryRefused(f"the query file {name}.sql needs a question, columns and a statement; see the other files of its folder")
+    return NamedQuery(name, question, tuple(parameters), tuple(columns), "\n".join(body) + "\n")
+
+
+def find(name: str, folder: Path | None = None) -> NamedQuery:
+    """The named query; QueryRefused with the nearest names when there is none."""
+    known = {q.name: q for q in named(folder)}
+    if name in known:
+        return known[name]
+    near = difflib.get_close_matches(name, known, n=3, cutoff=0.5)
+    hint = f"did you mean {', '.join(near)}" if near else "query without a name lists them"
+    raise QueryRefused(f"there is no named query {name!r}; {hint}; or give a whole SELECT statement")
+
+
+def run(db: str | Path, text_or_name: str, settings: Mapping[str, Value] | None = None, *, folder: Path | None = None) -> pd.DataFrame:
+    """The result of a named query, or of one statement that reads.
+
+    ``settings`` become variables (SET VARIABLE) that the statement sees through getvariable('name'). Text that looks like a number becomes
+    one. Raises QueryRefused for an unknown parameter, for anything but one SELECT, and for SQL that fails.
+    """
+    given = dict(settings or {})
+    text = text_or_name.strip()
+    if re.fullmatch(r"[A-Za-z_]\w*", text):
+        query = find(text, folder)
+        text = query.sql
+        _only_known(given, [p.name for p in query.parameters], f"the query {query.name}")
+    else:
+        mentioned = re.findall(r"getvariable\s*\(\s*'([^']+)'\s*\)", text, flags=re.IGNORECASE)
+        _only_known(given, [*dict.fromkeys(mentioned), *(v for v in VIEW_VARIABLES if v not in mentioned)], "this statement")
+    with open_for_reading(db, config=GUARDED) as ledger:
+        for name, value in given.items():
+            ledger.run(f"SET VARIABLE {quoted(name)} = ?", [as_value(value)])
+        return _guarded(ledger, text)
+
+
+def remarks(db: str | Path) -> tuple[str, ...]:
+    """What a person should know before believing a result: that there are no milestones because linking is due."""
+    with open_for_reading(db) as ledger:
+        if ledger.about("linked") == "no":
+            return ("milestones, links and intervals are not up to date; run: chronos-acc link",)
+    return ()
+
+
+def as_value(value: Value) -> Value:
+    """Text as a number where it is written as one (007 stays text), anything else as it is."""
+    if isinstance(value, str):
+        if re.fullmatch(r"-?(0|[1-9]\d{0,17})", value):
+            return int(value)
+        if re.fullmatch(r"-?(0|[1-9]\d*)(\.\d+)?([eE][-+]?\d{1,3})?", value):
+            return float(value)
+    return value
+
+
+def _only_known(given: Mapping[str, Value], allowed: list[str], what: str) -> None:
+    for name in given:
+        if name not in allowed:
+            near = difflib.get_close_matches(name, allowed, n=1)
+            hint = f"did you mean {near[0]}? " if near else ""
+            raise QueryRefused(f"{what} has no parameter {name!r}; {hint}it takes {', '.join(allowed) or 'none'}")
+
+
+def _guarded(ledger: Ledger, text: str) -> pd.DataFrame:
+    try:
+        statements = ledger.connection.extract_statements(text)
+    except duckdb.Error as error:
+        raise QueryRefused(_line(error)) from error
+    if len(statements) != 1:
+        raise QueryRefused(f"one statement at a time, please: {len(statements)} were given; take out what stands beside the SELECT")
+    statement = statements[0]
+    if statement.type != duckdb.StatementType.SELECT:
+        kind = str(statement.type).rpartition(".")[2]
+        raise QueryRefused(f"only a statement that reads is allowed here (SELECT, WITH, FROM, VALUES, SHOW, DESCRIBE), not {kind}")
+    if statement.named_parameters:
+        first = sorted(statement.named_parameters)[0]
+        raise QueryRefused(f"the statement has a placeholder ({first}); write getvariable('name') and give it with --set name=value")
+    try:
+        return ledger.connection.execute(statement).df()
+    except duckdb.Error as error:
+        raise QueryRefused(_line(error)) from error
+
+
+def _line(error: duckdb.Error) -> str:
+    """What DuckDB says, on one line and without the marked-up copy of the statement."""
+    said = str(error).split("\n\nLINE ")[0].split("\nLINE ")[0]
+    return f"the statement was refused: {' '.join(said.split())[:300]}; see DESCRIBE and SHOW TABLES for what there is"
