@@ -1,0 +1,107 @@
+# SPDX-License-Identifier: Apache-2.0
+"""The statistics that stand beside the nulls: each on whole times matrices (records, w), observed and null alike through the same lines."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from ..record import Window
+from . import kernels
+from .null_model import youngest_floor
+
+Floats = npt.NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Statistic:
+    """``compute(times (s, w) sorted, window)`` gives (s,), NaN where undefined; ``tail`` is "upper" or "two-sided"."""
+
+    name: str
+    tail: str
+    compute: Callable[[Floats, Window], Floats]
+
+
+def age_fractions(times: Floats, window: Window) -> Floats:
+    """(s, n) ages over the window's length of the counted events, oldest first: exact near the present, where positions lose digits."""
+    counted = times[..., window.opening : times.shape[-1] - window.closing]
+    return np.asarray((window.present - counted) / window.span)
+
+
+def _slope(times: Floats, window: Window) -> Floats:
+    return kernels.log_log(window.present - times[..., :-1], np.diff(times, axis=-1))[0]
+
+
+def _r_squared(times: Floats, window: Window) -> Floats:
+    return kernels.log_log(window.present - times[..., :-1], np.diff(times, axis=-1))[2]
+
+
+def _laplace(times: Floats, window: Window) -> Floats:
+    return -kernels.laplace(age_fractions(times, window))
+
+
+def _mil_hdbk(times: Floats, window: Window) -> Floats:
+    return np.asarray(-2.0 * np.log1p(-age_fractions(times, window)).sum(axis=-1))
+
+
+def _anderson_darling(times: Floats, window: Window) -> Floats:
+    # symmetrical under u -> 1 - u, so age fractions in rising order serve, with full digits near the present
+    return kernels.anderson_darling(age_fractions(times, window)[..., ::-1])
+
+
+def _reversals(times: Floats, window: Window) -> Floats:
+    return kernels.reversals(np.diff(times, axis=-1))
+
+
+def _lewis_robinson(times: Floats, window: Window) -> Floats:
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return np.asarray(_laplace(times, window) / kernels.variation(np.diff(times, axis=-1)))
+
+
+def growth_times_window(times: Floats, window: Window) -> Floats:
+    """(s,) growth of the log-linear rate over the whole window, k."""
+    return kernels.growth_of_mean_age(age_fractions(times, window).mean(axis=-1))
+
+
+def _growth(times: Floats, window: Window) -> Floats:
+    return np.asarray(growth_times_window(times, window) / window.span)
+
+
+def _gain(times: Floats, window: Window) -> Floats:
+    """Log-likelihood of the log-linear law over that of the steady one."""
+    mean = age_fractions(times, window).mean(axis=-1)
+    k = kernels.growth_of_mean_age(mean)
+    size = np.abs(k)
+    tail = np.where(k < 0, 1.0 - mean, mean)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        log_scale = np.where(size < 1e-6, size / 2, np.log(size) - np.log(-np.expm1(-size)))
+    return np.asarray(window.n * (log_scale - size * tail))
+
+
+def _age_exponent(times: Floats, window: Window) -> Floats:
+    """s of the age density a^(-s) between the oldest and the youngest milestone."""
+    ages = np.maximum(window.present - times, youngest_floor(window))
+    logs = np.log(ages)
+    old, young = logs[..., :1], logs[..., -1:]
+    with np.errstate(divide="ignore", invalid="ignore"):
+        length = (old - young)[..., 0]
+        position = ((old - logs) / (old - young))[..., 1:-1].mean(axis=-1)  # 0 at the oldest: mean of a fraction like an age's
+        out = 1.0 - kernels.growth_of_mean_age(position) / length
+    return np.asarray(np.where((length > 0) & (position > 0) & (position < 1), out, np.nan))
+
+
+STATISTICS = (
+    Statistic("slope", "upper", _slope),
+    Statistic("r_squared", "upper", _r_squared),
+    Statistic("laplace", "two-sided", _laplace),
+    Statistic("mil_hdbk_189", "two-sided", _mil_hdbk),
+    Statistic("anderson_darling", "upper", _anderson_darling),
+    Statistic("reverse_arrangements", "two-sided", _reversals),
+    Statistic("lewis_robinson", "two-sided", _lewis_robinson),
+    Statistic("growth", "two-sided", _growth),
+    Statistic("gain", "upper", _gain),
+    Statistic("age_exponent", "two-sided", _age_exponent),
+)
