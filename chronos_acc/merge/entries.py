@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """What merging takes and gives: plain arrays, no database."""
 
 from __future__ import annotations

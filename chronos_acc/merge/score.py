@@ -1,0 +1,245 @@
+# SPDX-License-Identifier: Apache-2.0
+"""The probability that two entries name one milestone (Fellegi and Sunter 1969, JASA 64:1183-1210).
+
+Three parts of evidence, each a likelihood ratio "same milestone" against "chance": how alike the titles are, how far apart the dates, and the
+category where two lists share a vocabulary. The chance half of titles is measured: on pairs of different lists too far apart in time to be the same,
+then on neighbours within one list, which are different by being listed twice. The other half comes from EM, the ratio kept monotone (more alike is never
+evidence against). Counts are added to a prior model, written out below, that carries the score where a set is too small to estimate from. The odds of a
+pair stand beside those of its rivals: an entry has at most one partner in a list.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from .candidates import Candidates, close_in_time, slack
+from .entries import Entries, Floats, Ints
+from .titles import Titles
+
+# Title similarity: the first bin holds everything below the least similarity kept.
+TITLE_EDGES = np.concatenate([[0.0, 0.12], np.arange(0.2, 0.951, 0.05), [0.985, 1.0]])
+DATE_EDGES = np.array([0.0, 0.02, 0.07, 0.15, 0.3, 0.5, 0.75, 1.0])
+# The prior model, as counts: what a set of a few hundred pairs of invented lists gave, rounded.
+CHANCE_COUNT = 2000.0  # pairs
+SAME_COUNT = 20.0  # pairs
+SHARE_LISTED = 0.4  # of the shorter list, also in the other
+CATEGORY_AGREES = 0.9  # of same milestones
+PRECISE_DATES = np.array([0.30, 0.25, 0.17, 0.13, 0.08, 0.05, 0.02])
+WIDE_DATES = np.array([0.12, 0.18, 0.20, 0.20, 0.15, 0.10, 0.05])
+FAR_SAMPLE = 150_000
+ROUNDS = 40
+
+
+def _prior_chance() -> Floats:
+    centre = 0.5 * (TITLE_EDGES[1:] + TITLE_EDGES[:-1])
+    density = np.exp(-centre / 0.087) * np.diff(TITLE_EDGES)
+    density[0] = 0.0
+    return np.asarray(np.concatenate([[0.9], 0.1 * density[1:] / density.sum()]))
+
+
+def _prior_same() -> Floats:
+    """Cumulative shares of same milestones by title similarity, spread over the bins."""
+    at = np.interp(TITLE_EDGES, [0.0, 0.12, 0.3, 0.5, 0.7, 0.9, 1.0], [0.0, 0.02, 0.05, 0.15, 0.35, 0.70, 1.0])
+    return np.asarray(np.diff(at))
+
+
+@dataclass(frozen=True)
+class Scores:
+    """Score (q,) and its parts: natural logarithms of likelihood ratios and odds, one row a pair."""
+
+    score: Floats
+    title: Floats
+    date: Floats
+    category: Floats
+    prior: Floats
+    rivals: Floats
+
+
+@dataclass(frozen=True)
+class Model:
+    """Both halves of each part, ready to score any pair."""
+
+    title_ratio: Floats  # (bins,) log likelihood ratio
+    date_ratio: Floats  # (2, bins) precise, wide
+    category_ratio: Floats  # (2,) disagree, agree
+    share: Floats  # (lists, lists) expected share of the shorter list that the other names too
+    comparable: np.ndarray[tuple[int, int], np.dtype[np.bool_]]  # (lists, lists) lists that share a vocabulary of categories
+    notes: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True)
+class Features:
+    """What the model looks at, one row a pair."""
+
+    similarity: Floats
+    date_bin: Ints
+    regime: Ints
+    agree: Ints  # 0 disagree, 1 agree, -1 no part
+    list_a: Ints
+    list_b: Ints
+    crowd: Floats  # the larger of the two numbers of candidates
+
+
+def features(entries: Entries, a: Ints, b: Ints, similarity: Floats, near: Ints, comparable: np.ndarray[tuple[int, int], np.dtype[np.bool_]]) -> Features:
+    """Features of pairs at positions a and b."""
+    room = slack(entries)
+    reach = 0.5 * (entries.latest - entries.earliest) + room
+    gap = np.abs(entries.best[a] - entries.best[b]) / (reach[a] + reach[b])
+    wide = (room[a] + room[b]) / (reach[a] + reach[b]) < 0.6
+    list_a, list_b = entries.source[a], entries.source[b]
+    code = _category_codes(entries)
+    known = (code[a] >= 0) & (code[b] >= 0) & comparable[list_a, list_b]
+    return Features(
+        similarity=similarity,
+        date_bin=np.clip(np.searchsorted(DATE_EDGES, np.minimum(gap, 1.0), side="left") - 1, 0, len(DATE_EDGES) - 2).astype(np.int64),
+        regime=wide.astype(np.int64),
+        agree=np.where(known, (code[a] == code[b]).astype(np.int64), -1),
+        list_a=list_a,
+        list_b=list_b,
+        crowd=np.maximum(np.maximum(near[a, list_b], near[b, list_a]), 1).astype(float),
+    )
+
+
+def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Scores]:
+    """Estimate the model on the candidates, and score them."""
+    comparable = _shared_vocabulary(entries)
+    chance, far_pairs = _measured_chance(entries, titles, found)
+    seen = features(entries, found.a, found.b, found.similarity, found.near, comparable)
+    k, lists = len(entries), len(entries.sources)
+    key_a, key_b = found.a * lists + seen.list_b, found.b * lists + seen.list_a
+    size = np.bincount(entries.source, minlength=lists).astype(float)
+    shorter = np.minimum(size[:, None], size[None, :])
+    title_bin = _title_bin(found.similarity)
+    same = _prior_same()
+    share = np.full((lists, lists), SHARE_LISTED)
+    dates = np.log(np.stack([PRECISE_DATES, WIDE_DATES])) - np.log(np.diff(DATE_EDGES))
+    category = np.log(np.array([(1 - CATEGORY_AGREES) / 0.7, CATEGORY_AGREES / 0.3]))
+    model = Model(_monotone_log_ratio(same, chance), dates, category, share, comparable)
+    scores = rate(model, seen, key_a, key_b, k * lists)
+    for _ in range(ROUNDS):
+        p, before = scores.score, scores.score
+        mass = np.bincount(title_bin, weights=p, minlength=len(same)) + SAME_COUNT * _prior_same()
+        model = Model(
+            _monotone_log_ratio(mass / mass.sum(), chance), _date_ratio(seen, p), _category_ratio(seen, p), _share(seen, p, shorter), comparable
+        )
+        scores = rate(model, seen, key_a, key_b, k * lists)
+        if len(p) == 0 or np.abs(scores.score - before).max() < 1e-4:
+            break
+    notes = _remarks(far_pairs, float(scores.score.sum()))
+    return Model(model.title_ratio, model.date_ratio, model.category_ratio, model.share, comparable, notes), scores
+
+
+def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> Scores:
+    """Probability of each pair: its odds against chance, divided among those that would take the same place in the other list."""
+    title, date, category, prior = log_odds_parts(model, seen)
+    odds = np.exp(np.clip(title + date + category + prior, -60, 60))
+    rivals = (np.bincount(key_a, weights=odds, minlength=keys)[key_a] - odds) + (np.bincount(key_b, weights=odds, minlength=keys)[key_b] - odds)
+    rivals = np.maximum(rivals, 0.0)
+    return Scores(odds / (1 + rivals + odds), title, date, category, prior, np.log1p(rivals))
+
+
+def log_odds_parts(model: Model, seen: Features) -> tuple[Floats, Floats, Floats, Floats]:
+    """Log likelihood ratios of title, date and category, and the log prior odds."""
+    centre = 0.5 * (TITLE_EDGES[1:] + TITLE_EDGES[:-1])
+    title = np.interp(seen.similarity, centre, model.title_ratio)
+    date = model.date_ratio[seen.regime, seen.date_bin]
+    category = np.where(seen.agree < 0, 0.0, model.category_ratio[np.maximum(seen.agree, 0)])
+    share = model.share[seen.list_a, seen.list_b]
+    return title, date, category, np.log(share / (1 - share)) - np.log(seen.crowd)
+
+
+def _title_bin(similarity: Floats) -> Ints:
+    return np.asarray(np.clip(np.searchsorted(TITLE_EDGES, similarity, side="right") - 1, 0, len(TITLE_EDGES) - 2), dtype=np.int64)
+
+
+def _measured_chance(entries: Entries, titles: Titles, found: Candidates) -> tuple[Floats, int]:
+    """Distribution of title similarity among different milestones, and the number of far pairs it rests on."""
+    a, b = _far_pairs(entries)
+    bins = len(TITLE_EDGES) - 1
+    far = np.bincount(_title_bin(titles.similarity(a, b)), minlength=bins)
+    chance = (far + CHANCE_COUNT * _prior_chance()) / (len(a) + CHANCE_COUNT)
+    total = found.pairs_within(entries.source)
+    within = np.bincount(_title_bin(found.within), minlength=bins).astype(float)
+    within[-1] = 0.0  # the very same title twice in one list may be one milestone listed twice
+    within[0] = max(total - len(found.within), 0)
+    neighbours = (within + CHANCE_COUNT * chance) / (within.sum() + CHANCE_COUNT)
+    return neighbours, len(a)
+
+
+def _far_pairs(entries: Entries) -> tuple[Ints, Ints]:
+    """Pairs of different lists that stay apart with twice the slack: all of them in small sets, else a fixed sample."""
+    k = len(entries)
+    if k * (k - 1) // 2 <= FAR_SAMPLE:
+        a, b = (x.astype(np.int64) for x in np.triu_indices(k, 1))
+    else:
+        rng = np.random.default_rng([k, 20_001])
+        a, b = rng.integers(k, size=FAR_SAMPLE), rng.integers(k, size=FAR_SAMPLE)
+    apart = (entries.source[a] != entries.source[b]) & ~close_in_time(entries, a, b, 2.0)
+    return a[apart], b[apart]
+
+
+def _monotone_log_ratio(same: Floats, chance: Floats) -> Floats:
+    """Log of same/chance made non-decreasing: isotonic regression of the ratio with weights chance (the maximum-likelihood monotone ratio)."""
+    from scipy.optimize import isotonic_regression
+
+    ratio = isotonic_regression(same / chance, weights=chance).x
+    return np.asarray(np.log(np.maximum(ratio, 1e-12)))
+
+
+def _date_ratio(seen: Features, p: Floats) -> Floats:
+    bins = len(DATE_EDGES) - 1
+    out = np.empty((2, bins))
+    for regime, prior in enumerate((PRECISE_DATES, WIDE_DATES)):
+        here = seen.regime == regime
+        same = np.bincount(seen.date_bin[here], weights=p[here], minlength=bins) + SAME_COUNT * prior
+        chance = np.bincount(seen.date_bin[here], weights=1 - p[here], minlength=bins) + SAME_COUNT * np.diff(DATE_EDGES)
+        out[regime] = -_monotone_log_ratio(chance / chance.sum(), same / same.sum())
+    return out
+
+
+def _category_ratio(seen: Features, p: Floats) -> Floats:
+    known = seen.agree >= 0
+    agree = seen.agree[known] == 1
+    same = (p[known & (seen.agree == 1)].sum() + SAME_COUNT * CATEGORY_AGREES) / (p[known].sum() + SAME_COUNT)
+    chance = ((1 - p[known])[agree].sum() + SAME_COUNT * 0.3) / ((1 - p[known]).sum() + SAME_COUNT)
+    same = max(same, chance)  # agreement is never evidence against
+    return np.asarray(np.log(np.array([(1 - same) / (1 - chance), same / chance])))
+
+
+def _share(seen: Features, p: Floats, shorter: Floats) -> Floats:
+    """Expected share of the shorter list named by the other, for each two lists, shrunk towards the share over all."""
+    lists = len(shorter)
+    matched = np.bincount(seen.list_a * lists + seen.list_b, weights=p, minlength=lists * lists).reshape(lists, lists)
+    matched = matched + matched.T
+    i, j = np.triu_indices(lists, 1)
+    overall = (matched[i, j].sum() + 10 * SHARE_LISTED) / (shorter[i, j].sum() + 10)
+    return np.asarray(np.clip((matched + 10 * overall) / (shorter + 10), 0.01, 0.95))
+
+
+def _category_codes(entries: Entries) -> Ints:
+    names = {c: i for i, c in enumerate(sorted({c.casefold().strip() for c in entries.category if c}))}
+    return np.array([names[c.casefold().strip()] if c else -1 for c in entries.category], dtype=np.int64)
+
+
+def _shared_vocabulary(entries: Entries) -> np.ndarray[tuple[int, int], np.dtype[np.bool_]]:
+    """(lists, lists) True where two lists use the same categories: two at least, and most of each list's entries in words of the other."""
+    code, lists = _category_codes(entries), len(entries.sources)
+    out = np.zeros((lists, lists), dtype=bool)
+    used = [code[(entries.source == s) & (code >= 0)] for s in range(lists)]
+    for i in range(lists):
+        for j in range(lists):
+            common = np.intersect1d(used[i], used[j])
+            if i != j and len(common) >= 2:
+                out[i, j] = min(np.isin(used[i], common).mean(), np.isin(used[j], common).mean()) >= 0.8
+    return out
+
+
+def _remarks(far_pairs: int, matched: float) -> tuple[str, ...]:
+    notes = []
+    if far_pairs < CHANCE_COUNT:
+        notes.append(f"only {far_pairs} pairs are far enough apart in time to measure chance likeness of titles: the prior model carries part of the scores")
+    if matched < 2 * SAME_COUNT:
+        notes.append("too few pairs look alike to estimate how titles and dates of one milestone differ: the prior model carries part of the scores")
+    return tuple(notes)
