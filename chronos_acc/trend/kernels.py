@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The statistics of trend over many records at once: arrays whose last axis is the events of one record.
 
 Everything here is plain NumPy, vectorised over leading axes, and used alike for the observed record (one row) and for null records.
@@ -23,21 +24,52 @@ def mil_hdbk_189(u: Floats) -> Floats:
     return np.asarray(-2.0 * np.log(u).sum(axis=-1))
 
 
-def anderson_darling(u: Floats) -> Floats:
-    """A² of positions against the uniform law on (0, 1). u (..., n) sorted along the last axis."""
+def anderson_darling(u: Floats, rest: Floats | None = None) -> Floats:
+    """A² of positions against the uniform law on (0, 1). u (..., n) sorted along the last axis; ``rest`` is 1 - u where it is known
+    more exactly than the subtraction gives (events in the last instant of a long window)."""
     n = u.shape[-1]
     k = 2.0 * np.arange(1, n + 1) - 1.0
-    return np.asarray(-n - ((np.log(u) + np.log1p(-u[..., ::-1])) * k).sum(axis=-1) / n)
+    upper = np.log1p(-u[..., ::-1]) if rest is None else np.log(rest[..., ::-1])
+    return np.asarray(-n - ((np.log(u) + upper) * k).sum(axis=-1) / n)
+
+
+def kolmogorov_smirnov(u: Floats) -> Floats:
+    """D of positions against the uniform law on (0, 1). u (..., n) sorted along the last axis."""
+    n = u.shape[-1]
+    steps = np.arange(n + 1.0) / n
+    return np.asarray(np.maximum((steps[1:] - u).max(axis=-1), (u - steps[:-1]).max(axis=-1)))
 
 
 def reversals(intervals: Floats, ties: float = 0.5) -> Floats:
     """Pairs i < j with interval j longer than interval i, equal pairs counting ``ties``. intervals (..., r) in time order."""
     r = intervals.shape[-1]
+    if intervals.ndim == 1 and r > 2000:
+        return np.asarray(_reversals_of_long_row(intervals, ties))
     total = np.zeros(intervals.shape[:-1])
     for i in range(r - 1):
         later, here = intervals[..., i + 1 :], intervals[..., i : i + 1]
         total += (later > here).sum(axis=-1) + ties * (later == here).sum(axis=-1)
     return np.asarray(total)
+
+
+def _reversals_of_long_row(intervals: Floats, ties: float, block: int = 256) -> float:
+    """The same for one long row, by merging sorted blocks."""
+    total = 0.0
+    parts = []
+    for first in range(0, len(intervals), block):
+        piece = intervals[first : first + block]
+        total += float(reversals(piece, ties))
+        parts.append(np.sort(piece))
+    while len(parts) > 1:
+        merged = []
+        for left, right in zip(parts[::2], parts[1::2], strict=False):
+            smaller = int(np.searchsorted(left, right, side="left").sum())
+            total += smaller + ties * (int(np.searchsorted(left, right, side="right").sum()) - smaller)
+            merged.append(np.sort(np.concatenate([left, right])))
+        if len(parts) % 2:
+            merged.append(parts[-1])
+        parts = merged
+    return total
 
 
 def variation(intervals: Floats) -> Floats:
