@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """What a bias check is: a question, what it needs, and a function that answers it with rows."""
 
 from __future__ import annotations
@@ -9,6 +10,8 @@ from typing import Any
 from ..merge.entries import Entries
 from ..progress import Tell, silent
 from ..record import Record
+
+COLUMNS = ("check", "setting", "n", "estimate", "null", "null_low", "null_median", "null_high", "p_value", "stands")
 
 
 @dataclass(frozen=True)
@@ -50,6 +53,7 @@ class Answer:
     summary: str = ""
     report: str = ""  # what to report in print
     notes: tuple[str, ...] = ()
+    headline: int | None = None  # position of the row that speaks for the check on the summary page
 
 
 @dataclass(frozen=True)
