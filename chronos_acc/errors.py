@@ -32,7 +32,9 @@ class DateRefused(Refused):
 
 
 class ListRefused(Refused):
-    """A compiler's file that cannot be read as a list."""
+    """A compiler's file that cannot be read as a list. ``loaded`` holds what was loaded of other files in the same call."""
+
+    loaded: tuple[object, ...] = ()
 
 
 class SheetRefused(Refused):
