@@ -25,22 +25,16 @@ VIEW_VARIABLES = ("present", "start", "min_support", "category")  # what the vie
 
 
 @dataclass(frozen=True)
-class Parameter:
-    """A parameter of a named query: its default as written (NULL where there is none) and what it means."""
-
-    name: str
-    default: str
-    meaning: str
-
-
-@dataclass(frozen=True)
 class NamedQuery:
-    """One file of queries/: its question, its parameters, its columns (name and meaning, in order) and its statement."""
+    """One file of queries/: its question, its parameters and its columns (name: meaning, in order), and its statement.
+
+    A parameter's meaning ends with its default in brackets.
+    """
 
     name: str
     question: str
-    parameters: tuple[Parameter, ...]
-    columns: tuple[tuple[str, str], ...]
+    parameters: Mapping[str, str]
+    columns: Mapping[str, str]
     sql: str
 
 
@@ -66,8 +60,8 @@ def parse(name: str, text: str) -> NamedQuery:
     Raises QueryRefused where the header has no question or no columns.
     """
     question, section = "", ""
-    parameters: list[Parameter] = []
-    columns: list[tuple[str, str]] = []
+    parameters: dict[str, str] = {}
+    columns: dict[str, str] = {}
     body: list[str] = []
     for line in text.splitlines():
         if not line.startswith("--") or body:
@@ -83,20 +77,24 @@ def parse(name: str, text: str) -> NamedQuery:
             question += " " + words
         elif section == "parameters" and rest and "=" in key:
             label, _, default = key.partition("=")
-            parameters.append(Parameter(label.strip(), default.strip(), rest.strip()))
+            parameters[label.strip()] = f"{rest.strip()} (default {default.strip()})"
         elif section == "columns" and rest:
-            columns.append((key.strip(), rest.strip()))
+            columns[key.strip()] = rest.strip()
     if not question or not columns or not body:
         raise QueryRefused(f"the query file {name}.sql needs a question, columns and a statement; see the other files of its folder")
-    return NamedQuery(name, question, tuple(parameters), tuple(columns), "\n".join(body) + "\n")
+    return NamedQuery(name, question, parameters, columns, "\n".join(body) + "\n")
 
 
-def find(name: str, folder: Path | None = None) -> NamedQuery:
-    """The named query; QueryRefused with the nearest names when there is none."""
-    known = {q.name: q for q in named(folder)}
-    if name in known:
-        return known[name]
-    near = difflib.get_close_matches(name, known, n=3, cutoff=0.5)
+def find(name: str, folder: Path | None = None) -> NamedQuery | None:
+    """The named query, or None."""
+    return next((q for q in named(folder) if q.name == name.strip()), None)
+
+
+def _must_find(name: str, folder: Path | None) -> NamedQuery:
+    found = find(name, folder)
+    if found is not None:
+        return found
+    near = difflib.get_close_matches(name, [q.name for q in named(folder)], n=3, cutoff=0.5)
     hint = f"did you mean {', '.join(near)}" if near else "query without a name lists them"
     raise QueryRefused(f"there is no named query {name!r}; {hint}; or give a whole SELECT statement")
 
@@ -110,9 +108,9 @@ def run(db: str | Path, text_or_name: str, settings: Mapping[str, Value] | None 
     given = dict(settings or {})
     text = text_or_name.strip()
     if re.fullmatch(r"[A-Za-z_]\w*", text):
-        query = find(text, folder)
+        query = _must_find(text, folder)
         text = query.sql
-        _only_known(given, [p.name for p in query.parameters], f"the query {query.name}")
+        _only_known(given, list(query.parameters), f"the query {query.name}")
     else:
         mentioned = re.findall(r"getvariable\s*\(\s*'([^']+)'\s*\)", text, flags=re.IGNORECASE)
         _only_known(given, [*dict.fromkeys(mentioned), *(v for v in VIEW_VARIABLES if v not in mentioned)], "this statement")

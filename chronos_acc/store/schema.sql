@@ -118,7 +118,13 @@ CREATE TABLE ledger.link (
     b BIGINT NOT NULL,
     score DOUBLE,
     state VARCHAR NOT NULL CHECK (state IN ('linked', 'implied', 'review', 'blocked', 'same', 'different')),
-    parts MAP(VARCHAR, DOUBLE),
+    title DOUBLE,
+    gap DOUBLE,
+    title_evidence DOUBLE,
+    date_evidence DOUBLE,
+    category_evidence DOUBLE,
+    prior DOUBLE,
+    rivals DOUBLE,
     CHECK (a < b)
 );
 COMMENT ON TABLE ledger.link IS 'Pairs of entries that were compared, or that stand in one milestone';
@@ -126,7 +132,13 @@ COMMENT ON COLUMN ledger.link.a IS 'Id of the entry with the smaller id';
 COMMENT ON COLUMN ledger.link.b IS 'Id of the other entry';
 COMMENT ON COLUMN ledger.link.score IS 'Probability that both mean the same event, 0 to 1';
 COMMENT ON COLUMN ledger.link.state IS 'linked, implied, review, blocked, same or different';
-COMMENT ON COLUMN ledger.link.parts IS 'Parts of the score by name';
+COMMENT ON COLUMN ledger.link.title IS 'Similarity of the titles, 0 to 1';
+COMMENT ON COLUMN ledger.link.gap IS 'Years between the best dates';
+COMMENT ON COLUMN ledger.link.title_evidence IS 'What the titles say for (or, below 0, against) one event, bits';
+COMMENT ON COLUMN ledger.link.date_evidence IS 'What the dates say, bits';
+COMMENT ON COLUMN ledger.link.category_evidence IS 'What the categories say, bits; 0 where the lists share no vocabulary';
+COMMENT ON COLUMN ledger.link.prior IS 'Log odds before looking, bits';
+COMMENT ON COLUMN ledger.link.rivals IS 'What rival pairs take away, bits';
 
 CREATE TABLE ledger.decision (
     decision BIGINT PRIMARY KEY,
@@ -203,11 +215,23 @@ COMMENT ON COLUMN ledger.milestone.level IS 'Level most of its entries state';
 COMMENT ON COLUMN ledger.milestone.parent IS 'Parent most of its entries state';
 COMMENT ON COLUMN ledger.milestone.sources IS 'Names of the lists that name it, joined by "; "';
 
-CREATE TABLE ledger.member (entry BIGINT NOT NULL, milestone BIGINT NOT NULL, weight DOUBLE NOT NULL);
+CREATE TABLE ledger.member (
+    entry BIGINT NOT NULL,
+    milestone BIGINT NOT NULL,
+    weight DOUBLE NOT NULL,
+    normal BOOLEAN NOT NULL,
+    low DOUBLE NOT NULL,
+    mode DOUBLE NOT NULL,
+    high DOUBLE NOT NULL
+);
 COMMENT ON TABLE ledger.member IS 'Which entry stands in which milestone';
 COMMENT ON COLUMN ledger.member.entry IS 'Id of the entry';
 COMMENT ON COLUMN ledger.member.milestone IS 'Id of the milestone';
-COMMENT ON COLUMN ledger.member.weight IS 'Weight of the entry''s dating in the pooled one; weights of a milestone sum to 1';
+COMMENT ON COLUMN ledger.member.weight IS 'Weight of its part in the pooled dating; weights of a milestone sum to 1';
+COMMENT ON COLUMN ledger.member.normal IS 'True where its part of the pooled dating is a two-piece normal';
+COMMENT ON COLUMN ledger.member.low IS 'Earliest decimal year of that part: the entry''s own in a mixture, the pooled one otherwise';
+COMMENT ON COLUMN ledger.member.mode IS 'Best decimal year of that part';
+COMMENT ON COLUMN ledger.member.high IS 'Latest decimal year of that part';
 
 CREATE TABLE ledger.stated_order (origin VARCHAR NOT NULL, earlier VARCHAR NOT NULL, later VARCHAR NOT NULL);
 COMMENT ON TABLE ledger.stated_order IS 'Known orders stated in a file of their own rather than in a list''s sheet';

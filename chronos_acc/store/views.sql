@@ -4,7 +4,7 @@
 
 CREATE MACRO present_year() AS coalesce(
     getvariable('present')::DOUBLE,
-    (SELECT min(compiled) + 1.0 FROM ledger.source),
+    (SELECT min(compiled) + 1.0 FROM ledger.source WHERE rows_loaded > 0),
     (SELECT value::DOUBLE + 1.0 FROM ledger.about WHERE key = 'first_loaded_year')
 );
 COMMENT ON MACRO present_year IS 'The present: variable present, else the end of the earliest compile year, else the end of the year of the first load';
@@ -89,7 +89,8 @@ SELECT
     sa.name AS source_a, a.title AS title_a, sb.name AS source_b, b.title AS title_b, l.score, l.state,
     a.date_text AS date_a, b.date_text AS date_b, a.best AS best_a, b.best AS best_b,
     a.nth AS nth_a, b.nth AS nth_b, l.a AS entry_a, l.b AS entry_b,
-    ma.milestone AS milestone_a, mb.milestone AS milestone_b, l.parts
+    ma.milestone AS milestone_a, mb.milestone AS milestone_b,
+    l.title AS title_similarity, l.gap, l.title_evidence, l.date_evidence, l.category_evidence, l.prior, l.rivals
 FROM ledger.link AS l
 JOIN ledger.entry AS a ON a.entry = l.a
 JOIN ledger.entry AS b ON b.entry = l.b
@@ -114,7 +115,13 @@ COMMENT ON COLUMN links.entry_a IS 'Id of the first entry';
 COMMENT ON COLUMN links.entry_b IS 'Id of the second entry';
 COMMENT ON COLUMN links.milestone_a IS 'Milestone of the first entry';
 COMMENT ON COLUMN links.milestone_b IS 'Milestone of the second entry';
-COMMENT ON COLUMN links.parts IS 'Parts of the score by name';
+COMMENT ON COLUMN links.title_similarity IS 'Similarity of the titles, 0 to 1';
+COMMENT ON COLUMN links.gap IS 'Years between the best dates';
+COMMENT ON COLUMN links.title_evidence IS 'What the titles say for (or, below 0, against) one event, bits';
+COMMENT ON COLUMN links.date_evidence IS 'What the dates say, bits';
+COMMENT ON COLUMN links.category_evidence IS 'What the categories say, bits; 0 where the lists share no vocabulary';
+COMMENT ON COLUMN links.prior IS 'Log odds before looking, bits';
+COMMENT ON COLUMN links.rivals IS 'What rival pairs take away, bits';
 
 CREATE VIEW decisions AS
 SELECT
