@@ -154,7 +154,7 @@ def _known(frame: pd.DataFrame) -> tuple[Column, ...]:
     out = []
     for rank, key in enumerate(map(str, frame.columns)):
         numeric = pd.api.types.is_numeric_dtype(frame[key]) and not pd.api.types.is_bool_dtype(frame[key])
-        kind = "when" if key in _WHEN and numeric else "count" if key in _COUNT and numeric else "text"
+        kind = "when" if key.removesuffix("_a").removesuffix("_b") in _WHEN and numeric else "count" if key in _COUNT and numeric else "text"
         if kind == "text" and pd.api.types.is_float_dtype(frame[key]):
             kind = "number"
         out.append(Column(key, key.replace("_", " "), kind, rank))
@@ -184,10 +184,21 @@ def queries_page(queries: Sequence[Any]) -> Page:
     """The named queries."""
     rows = [{"name": q.name, "question": q.question, "parameters": q.parameters, "columns": q.columns} for q in queries]
     frame = pd.DataFrame(rows, columns=["name", "question", "parameters", "columns"])
-    columns = (Column("name", "query"), Column("question", "question"), Column("parameters", "parameters", "text", 2), Column("columns", "columns", "text", 5))
-    return Page(rows, (Table("queries", frame, "What can be asked by name?", columns, ("run one: chronos-acc query NAME --set parameter=value",)),), "queries")
+    screen = frame.assign(parameters=[", ".join(q.parameters) for q in queries])
+    columns = (Column("name", "query"), Column("question", "question"), Column("parameters", "parameters", "text", 2))
+    below = ("run one: chronos-acc query NAME --set PARAMETER=VALUE; what parameters and columns mean: chronos-acc query --format json",)
+    return Page(rows, (Table("queries", frame, "What can be asked by name?", columns, below, screen=screen),), "queries")
 
 
 def query_page(frame: pd.DataFrame, question: str) -> Page:
     """The rows of a query."""
     return frame_page("query", frame, question, _known(frame) if question else None, empty="no row")
+
+
+def decisions_page(frame: pd.DataFrame) -> Page:
+    """What people settled."""
+    columns = (
+        Column("decision", "no.", "text"), Column("title_a", "title"), Column("source_a", "list", "text", 2), Column("title_b", "title"), Column("source_b", "list", "text", 2),
+        Column("verdict", "verdict"), Column("status", "status"), Column("who", "who", "text", 3), Column("decided_at", "when", "text", 4), Column("why", "why", "text", 5),
+    )  # fmt: skip
+    return frame_page("decisions", frame, "What has been settled, and does it hold?", columns, empty="nothing has been settled yet; chronos-acc review shows what waits")

@@ -34,7 +34,10 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     trend = analyse(record, seed=options.seed, draws=options.draws, exposure=exposure, next_event=options.next_event, command=command_line("trend", options),
                     tell=out.tell)  # fmt: skip
     out.page(trend_page(trend))
-    return int(trend.verdict_code == "too_few")
+    if trend.verdict_code == "too_few":
+        out.error("too few milestones to tell; the verdict says what such a list could show")
+        return 1
+    return 0
 
 
 COMMAND = Command(
