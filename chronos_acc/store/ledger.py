@@ -7,6 +7,7 @@ file in between is named where DuckDB tells it.
 
 from __future__ import annotations
 
+import os
 import re
 from collections.abc import Iterator, Mapping, Sequence
 from contextlib import contextmanager
@@ -32,6 +33,14 @@ GUARDED: Config = {
     "autoload_known_extensions": "false",
     "lock_configuration": "true",
 }
+FAILURES = (
+    duckdb.IOException,
+    duckdb.ConnectionException,
+    duckdb.SerializationException,
+    duckdb.OutOfMemoryException,
+    duckdb.FatalException,
+    duckdb.InternalException,
+)
 Params = Sequence[Any]
 
 
@@ -179,25 +188,44 @@ def open_for_reading(db: str | Path, *, config: Config = PLAIN) -> Iterator[Ledg
 def open_for_writing(db: str | Path, *, create: bool = True) -> Iterator[Ledger]:
     """The timeline file for writing; made when missing unless ``create`` is False. Raises TimelineRefused in one line."""
     path = Path(db)
-    fresh = not path.exists()
     _look(path, must_exist=not create)
-    config = {**PLAIN, "storage_compatibility_version": STORAGE} if fresh else {**PLAIN}
+    if not path.exists():
+        _make(path)
     with refusals(path):
-        connection = duckdb.connect(str(path), config=config)
+        connection = duckdb.connect(str(path), config={**PLAIN})
     try:
-        if fresh:
-            with refusals(path):
-                _create(connection)
-        else:
-            _check_version(connection, path, writing=True)
+        _check_version(connection, path, writing=True)
         with refusals(path):
             yield Ledger(connection, path, writable=True)
     finally:
         connection.close()  # writes the write-ahead file into the timeline, so that a copy of the one file is whole
 
 
+def _make(path: Path) -> None:
+    """A new timeline, made beside its place and then put there: whoever is killed meanwhile leaves no half file under its name."""
+    spare = path.with_name(f".{path.name}.{os.getpid()}.new")
+    try:
+        with refusals(path):
+            spare.unlink(missing_ok=True)
+            connection = duckdb.connect(str(spare), config={**PLAIN, "storage_compatibility_version": STORAGE})
+            try:
+                _create(connection)
+            finally:
+                connection.close()
+            try:
+                os.link(spare, path)  # unlike a rename, it never replaces a file that somebody else made in the meantime
+            except FileExistsError:
+                return
+            except OSError:  # a file system without hard links
+                if not path.exists():
+                    os.replace(spare, path)
+    finally:
+        spare.unlink(missing_ok=True)
+        spare.with_name(f"{spare.name}.wal").unlink(missing_ok=True)
+
+
 def _create(connection: duckdb.DuckDBPyConnection) -> None:
-    """Tables, views and comments in one transaction: a killed creation leaves a file without a schema, which is filled next time."""
+    """Tables, views and comments, in one transaction."""
     here = Path(__file__).parent
     connection.begin()
     for name in ("schema.sql", "views.sql", "analysis.sql"):
@@ -246,14 +274,20 @@ def refusals(path: Path) -> Iterator[None]:
     """Turn what DuckDB and the system say about the file into one line of ours."""
     try:
         yield
-    except (duckdb.IOException, duckdb.ConnectionException, duckdb.SerializationException, duckdb.OutOfMemoryException) as error:
-        raise TimelineRefused(_sentence(path, str(error))) from error
     except duckdb.InvalidInputException as error:
         if "read-only" in str(error):
             raise TimelineRefused(f"{path} is open for reading only; open it for writing first") from error
         raise
-    except (duckdb.FatalException, duckdb.InternalException) as error:
+    except FAILURES as error:
         raise TimelineRefused(_sentence(path, str(error))) from error
+    except duckdb.TransactionException as error:  # a commit that failed, most often for want of room
+        if "failed to commit" in str(error).lower():
+            raise TimelineRefused(_sentence(path, str(error))) from error
+        raise
+    except OSError as error:
+        if error.filename is None or Path(str(error.filename)).name.strip(".").startswith(path.name):
+            raise TimelineRefused(_sentence(path, str(error))) from error
+        raise
 
 
 def _sentence(path: Path, said: str) -> str:
