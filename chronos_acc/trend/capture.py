@@ -23,7 +23,7 @@ Floats = npt.NDArray[np.float64]
 FEWEST_SHARED = 10
 
 __all__ = [
-    "Capture", "CaptureRow", "CaptureShare", "CoverageBin", "chao", "chapman", "corrected_growth", "coverage_bins", "grouped", "log_linear_models", "petersen",
+    "Capture", "CaptureRow", "CaptureShare", "CoverageBin", "chao", "chapman", "corrected_growth", "coverage_bins", "families", "grouped", "log_linear_models", "petersen",
 ]  # fmt: skip
 
 
@@ -96,11 +96,19 @@ class Capture:
         return frame(self.bins, CoverageBin)
 
 
+def families(record: Record) -> tuple[tuple[int, ...], ...]:
+    """Positions of the lists that count as one, a tuple each, in the order of their first list."""
+    seen: dict[int, list[int]] = {}
+    for position, label in enumerate(record.group):
+        seen.setdefault(int(label), []).append(position)
+    return tuple(tuple(members) for members in seen.values())
+
+
 def grouped(record: Record) -> tuple[tuple[str, ...], Bools]:
-    """Independent lists: those with a common ancestor become one that names what any of them names. Names (t,) and mentions (m, t)."""
-    labels = sorted({int(g): i for i, g in reversed(list(enumerate(record.group)))}.items(), key=lambda item: item[1])
-    names = tuple(" + ".join(n for n, g in zip(record.lists, record.group, strict=True) if g == label) for label, _ in labels)
-    columns = [record.mentions[:, record.group == label].any(axis=1) for label, _ in labels]
+    """Independent lists: those with a common ancestor become one that names what any of them names. Names (t,) joined by +, and mentions (m, t)."""
+    together = families(record)
+    names = tuple(" + ".join(record.lists[j] for j in members) for members in together)
+    columns = [record.mentions[:, list(members)].any(axis=1) for members in together]
     return names, np.column_stack(columns) if columns else np.zeros((len(record), 0), bool)
 
 

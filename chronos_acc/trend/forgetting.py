@@ -137,8 +137,8 @@ def tipping(window: Window, *, laws: LawsResult | None = None, seed: int = 1, re
     growth, lowest, highest = wider(exponential, "growth")
     t_star, nearest, farthest = wider(power, "t_star")
     forms = (
-        _form(window, "exponential", "half_life", *(_half_life(g) for g in (growth, highest, lowest)), exponential.fit_p_shape),
-        _form(window, "power", "scale", *(_scale(t, window) for t in (t_star, nearest, farthest)), power.fit_p_shape),
+        _form(window, "exponential", "half_life", _half_life(growth, window), _half_life(highest, window), _half_life(lowest, window), exponential.fit_p_shape),
+        _form(window, "power", "scale", _scale(t_star, window), _scale(nearest, window), _scale(farthest, window), power.fit_p_shape),
     )
     notes = []
     if any(f.needed for f in forms):
@@ -156,8 +156,9 @@ def wider(row: LawRow, name: str) -> tuple[float | None, float | None, float | N
     return row.parameters.get(name), low, high
 
 
-def _half_life(growth: float | None) -> float | None:
-    return LN2 / growth if growth is not None and growth > 0 else None
+def _half_life(growth: float | None, window: Window) -> float | None:
+    # growth that is zero but for rounding needs no forgetting
+    return LN2 / growth if growth is not None and growth * window.span > 1e-9 else None
 
 
 def _scale(t_star: float | None, window: Window) -> float | None:

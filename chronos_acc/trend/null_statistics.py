@@ -28,7 +28,10 @@ class Statistic:
 def age_fractions(times: Floats, window: Window) -> Floats:
     """(s, n) ages over the window's length of the counted events, oldest first: exact near the present, where positions lose digits."""
     counted = times[..., window.opening : times.shape[-1] - window.closing]
-    return np.asarray((window.present - counted) / window.span)
+    # a null event rounded or permuted onto an end of the window stands half a dating unit inside it, so that logarithms exist
+    edge = max(youngest_floor(window) / window.span, 1e-15)
+    fraction = (window.present - counted) / window.span
+    return np.asarray(np.where(fraction <= 0, edge, np.where(fraction >= 1, 1.0 - edge, fraction)))
 
 
 def _slope(times: Floats, window: Window) -> Floats:
@@ -37,6 +40,23 @@ def _slope(times: Floats, window: Window) -> Floats:
 
 def _r_squared(times: Floats, window: Window) -> Floats:
     return kernels.log_log(window.present - times[..., :-1], np.diff(times, axis=-1))[2]
+
+
+def _on(times: Floats, window: Window, predictor: str) -> tuple[Floats, Floats]:
+    """Slope and R² of log10 interval on order or on time, as in the regressions."""
+    intervals = np.diff(times, axis=-1)
+    keep = intervals > 0
+    if predictor == "order":
+        x = np.cumsum(keep[..., ::-1], axis=-1)[..., ::-1].astype(float)
+    else:
+        x = -np.log10(np.where(keep, times[..., 1:] - window.start, 1.0))
+    y = np.log10(np.where(keep, intervals, 1.0))
+    with np.errstate(invalid="ignore", divide="ignore"):
+        count = keep.sum(axis=-1, keepdims=True)
+        dx = keep * (x - (keep * x).sum(axis=-1, keepdims=True) / count)
+        dy = keep * (y - (keep * y).sum(axis=-1, keepdims=True) / count)
+        sxx, sxy, syy = (dx * dx).sum(axis=-1), (dx * dy).sum(axis=-1), (dy * dy).sum(axis=-1)
+        return np.asarray(sxy / sxx), np.asarray(sxy * sxy / (sxx * syy))
 
 
 def _laplace(times: Floats, window: Window) -> Floats:
@@ -53,7 +73,15 @@ def _anderson_darling(times: Floats, window: Window) -> Floats:
 
 
 def _reversals(times: Floats, window: Window) -> Floats:
-    return kernels.reversals(np.diff(times, axis=-1))
+    # on dense ranks in small integers, which compare faster and keep ties
+    intervals = np.diff(times, axis=-1)
+    order = np.argsort(intervals, axis=-1)
+    ordered = np.take_along_axis(intervals, order, axis=-1)
+    dense = np.zeros(intervals.shape, np.int16)
+    dense[..., 1:] = np.cumsum(ordered[..., 1:] > ordered[..., :-1], axis=-1)
+    rank = np.empty_like(dense)
+    np.put_along_axis(rank, order, dense, axis=-1)
+    return kernels.reversals(rank)  # type: ignore[arg-type]
 
 
 def _lewis_robinson(times: Floats, window: Window) -> Floats:
@@ -89,7 +117,7 @@ def _age_exponent(times: Floats, window: Window) -> Floats:
     with np.errstate(divide="ignore", invalid="ignore"):
         length = (old - young)[..., 0]
         position = ((old - logs) / (old - young))[..., 1:-1].mean(axis=-1)  # 0 at the oldest: mean of a fraction like an age's
-        out = 1.0 - kernels.growth_of_mean_age(position) / length
+        out = 1.0 - kernels.growth_of_mean_age(np.clip(np.nan_to_num(position, nan=0.5), 1e-12, 1 - 1e-12)) / length
     return np.asarray(np.where((length > 0) & (position > 0) & (position < 1), out, np.nan))
 
 
@@ -104,4 +132,12 @@ STATISTICS = (
     Statistic("growth", "two-sided", _growth),
     Statistic("gain", "upper", _gain),
     Statistic("age_exponent", "two-sided", _age_exponent),
+)
+
+# what the regressions on order and on time stand beside
+REGRESSION_STATISTICS = (
+    Statistic("slope on order", "upper", lambda t, w: _on(t, w, "order")[0]),
+    Statistic("r_squared on order", "upper", lambda t, w: _on(t, w, "order")[1]),
+    Statistic("slope on log10_time", "upper", lambda t, w: _on(t, w, "log10_time")[0]),
+    Statistic("r_squared on log10_time", "upper", lambda t, w: _on(t, w, "log10_time")[1]),
 )

@@ -14,7 +14,6 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 import numpy.typing as npt
-from scipy import stats
 from scipy.special import ndtri, stdtrit
 
 from ..errors import WrongUse
@@ -310,7 +309,7 @@ def _median(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     intercept, slope = median_line(x, y)
     left = y - intercept - slope * x
     # sparsity by an Epanechnikov kernel with the Hall–Sheather bandwidth
-    width = n ** (-1 / 3) * ndtri(0.975) ** (2 / 3) * (1.5 * stats.norm.pdf(0.0) ** 2) ** (1 / 3)
+    width = n ** (-1 / 3) * ndtri(0.975) ** (2 / 3) * (1.5 / (2 * np.pi)) ** (1 / 3)
     spread = min(float(y.std()), float(np.subtract(*np.percentile(left, [75, 25]))) / 1.34)
     band = spread * float(ndtri(min(0.5 + width, 1 - 1e-9)) - ndtri(max(0.5 - width, 1e-9)))
     error = None
@@ -329,11 +328,30 @@ def _median(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     ]  # fmt: skip
 
 
+def theil_sen_line(x: Floats, y: Floats) -> tuple[float, float, float, float]:
+    """Slope, intercept (through the medians), and 95 % ends: the median of all pairwise slopes (Theil 1950), with Sen's interval (1968), ties allowed for."""
+    i, j = np.triu_indices(len(x), 1)
+    apart = x[i] != x[j]
+    slopes = np.sort((y[j] - y[i])[apart] / (x[j] - x[i])[apart])
+    slope = float(np.median(slopes))
+    n, pairs = len(x), len(slopes)
+
+    def ties(values: Floats) -> float:
+        _, counts = np.unique(values, return_counts=True)
+        return float((counts * (counts - 1.0) * (2.0 * counts + 5.0)).sum())
+
+    variance = (n * (n - 1.0) * (2.0 * n + 5.0) - ties(x) - ties(y)) / 18.0
+    z = float(ndtri(0.025))
+    low = max(round((pairs + z * np.sqrt(variance)) / 2.0) - 1, 0)
+    high = min(round((pairs - z * np.sqrt(variance)) / 2.0), pairs - 1)
+    return slope, float(np.median(y) - slope * np.median(x)), float(slopes[low]), float(slopes[high])
+
+
 def _theil_sen(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     if np.ptp(x) == 0 or len(x) > PAIRS_LIMIT:
         return []
-    slope, intercept, low, high = stats.theilslopes(y, x, 0.95)
-    return [RegressionRow(RESPONSE, predictor, "theil_sen", float(slope), None, float(low), float(high), None, len(x), float(intercept))]
+    slope, intercept, low, high = theil_sen_line(x, y)
+    return [RegressionRow(RESPONSE, predictor, "theil_sen", slope, None, low, high, None, len(x), intercept)]
 
 
 def exponential_line(x: Floats, interval: Floats) -> tuple[Floats, Floats]:
@@ -364,7 +382,8 @@ def exponential_line(x: Floats, interval: Floats) -> tuple[Floats, Floats]:
 def _glm(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     if np.ptp(x) == 0:
         return []
-    beta, errors = exponential_line(x, 10.0 ** (y - y.mean()))
+    with np.errstate(over="ignore"):
+        beta, errors = exponential_line(x, 10.0 ** (y - y.mean()))
     slope, error, half = (float(v) / np.log(10) for v in (beta[1], errors[1], ndtri(0.975) * errors[1]))
     intercept = float(beta[0]) / np.log(10) + float(y.mean())
     return [

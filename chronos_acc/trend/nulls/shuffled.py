@@ -13,20 +13,19 @@ Floats = npt.NDArray[np.float64]
 
 
 def _make(window: Window, rng: np.random.Generator, size: int) -> Floats:
-    """Closed intervals between milestones permuted; the oldest milestone and the open interval stay. Ages are rebuilt from the youngest, so that
-    recent dates lose no digits in a long window."""
-    intervals = np.broadcast_to(window.intervals, (size, len(window.times) - 1))
-    mixed = rng.permuted(intervals, axis=1)
-    back = np.cumsum(mixed[:, ::-1], axis=1)[:, ::-1]
-    times = np.empty((size, len(window.times)))
-    times[:, -1] = window.times[-1]
-    times[:, :-1] = window.times[-1] - back
-    times[:, 0] = window.times[0]
+    """Closed intervals between milestones permuted; the oldest milestone and the open interval stay, and so do milestones tied with either end of the
+    window. Ages are rebuilt from the youngest, so that recent dates lose no digits in a long window."""
+    opening, closing = _kept(window)
+    first, last = opening - 1, len(window.times) - closing
+    mixed = rng.permuted(np.broadcast_to(np.diff(window.times[first : last + 1]), (size, max(last - first, 0))), axis=1)
+    times = np.broadcast_to(window.times, (size, len(window.times))).copy()
+    times[:, first:last] = window.times[last] - np.cumsum(mixed[:, ::-1], axis=1)[:, ::-1]
+    times[:, first] = window.times[first]
     return np.maximum.accumulate(times, axis=1)
 
 
 def _kept(window: Window) -> tuple[int, int]:
-    return 1, 1
+    return max(window.opening, 1), max(window.closing, 1)
 
 
 NULL = Null("shuffled", "Would the same intervals in another order give this?", _make, _kept, rounded=False)

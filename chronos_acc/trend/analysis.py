@@ -1,0 +1,301 @@
+# SPDX-License-Identifier: Apache-2.0
+"""The whole of trend for one record: tests, rate laws, age exponent, regressions, nulls, lists as studies, forgetting, completeness, and the verdict."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field, replace
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from ..errors import RecordRefused
+from ..progress import Tell, silent
+from ..record import Record, Window
+from .age_exponent import ExponentRow, age_exponent
+from .capture import Capture, corrected_growth
+from .forgetting import LN2, Tipping, tipping, wider
+from .frames import frame, plain
+from .null_model import Null
+from .null_statistics import REGRESSION_STATISTICS, STATISTICS
+from .null_table import NullRow, NullTable, null_table
+from .nulls import LOG_UNIFORM, SHUFFLED, STEADY
+from .power import DOUBLINGS, laplace_power, smallest_shown
+from .rate_laws import LawsResult, fit_laws
+from .regressions import LeverageRow, Regressions, regress
+from .studies import Studies, lists_as_studies
+from .trend_tests import TestsResult, run_tests
+from .verdict import FEWEST_EVENTS, FEWEST_INTERVALS, Evidence, FormTried, Verdict, judge
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+SHOWN_LEVERAGE = 5  # intervals named in the document; the frame has all
+
+
+@dataclass(frozen=True)
+class Trend:
+    """Everything ``analyse`` found. ``to_dict`` is the JSON document, ``tables`` the frames by name, in reading order."""
+
+    record: Record
+    window: Window
+    tests: TestsResult
+    laws: LawsResult
+    exponents: tuple[ExponentRow, ...]
+    regressions: Regressions
+    nulls: NullTable
+    regression_nulls: NullTable
+    studies: Studies
+    tipping: Tipping
+    capture: Capture
+    evidence: Evidence
+    judged: Verdict
+    made: dict[str, Any]
+    next_event: Any = None
+    notes: tuple[str, ...] = field(default=())
+
+    @property
+    def verdict(self) -> str:
+        """The verdict in words."""
+        return self.judged.sentence
+
+    @property
+    def verdict_code(self) -> str:
+        """too_few, no_trend, uneven, slowing, forgetting or shape."""
+        return self.judged.code
+
+    @property
+    def verdict_clauses(self) -> tuple[str, ...]:
+        """Of log_uniform and completeness."""
+        return self.judged.clauses
+
+    @property
+    def weakest_null(self) -> str | None:
+        """The first null the record does not rule out."""
+        return self.judged.weakest_null
+
+    def facts(self) -> dict[str, Any]:
+        """What was looked at: counts and the window, years decimal."""
+        w = self.window
+        return {
+            "milestones": len(w.times), "n": w.n, "intervals": max(len(w.times) - 1, 0), "joined": w.joined, "start": w.start, "start_from": w.start_from,
+            "present": w.present, "present_from": w.present_from, "outside": w.outside, "before": w.before, "after": w.after,
+            "tied_with_start": w.tied_with_start, "closing": w.closing, "finest_unit": w.finest_unit, "lists": list(self.record.lists),
+        }  # fmt: skip
+
+    def headline(self) -> dict[str, Any]:
+        """The numbers of the verdict's sentence."""
+        e = self.evidence
+        return {
+            "p_laplace": e.p1, "p_lewis_robinson": e.p2, "direction": e.direction, "span": e.span, "doublings": e.doublings, "doublings_low": e.doublings_low,
+            "doublings_high": e.doublings_high, "half_life": e.half_life, "half_life_low": e.half_life_low, "half_life_high": e.half_life_high,
+            **{f"power_{d:g}": s for d, s in e.power}, "smallest_doublings_shown": e.smallest, "corrected_doublings": e.corrected,
+            "corrected_doublings_low": e.corrected_low, "corrected_doublings_high": e.corrected_high, "independent_lists": e.lists,
+        }  # fmt: skip
+
+    def to_dict(self) -> dict[str, Any]:
+        """The document: native Python throughout, None where nothing was computed."""
+        capture = {k: v for k, v in plain(_without_fits(self.capture)).items()}
+        document = {
+            "record": self.facts(),
+            "tests": self.tests.rows,
+            "rate_laws": self.laws.rows,
+            "age_exponent": self.exponents,
+            "regressions": self.regressions.rows,
+            "leverage": self.regressions.leverage[:SHOWN_LEVERAGE],
+            "nulls": self.nulls.rows,
+            "regression_nulls": self.regression_nulls.rows,
+            "lists": self.studies.rows,
+            "lists_pooled": self.studies.pooled,
+            "forgetting": self.tipping.forms,
+            "completeness": capture,
+            "headline": self.headline(),
+            "verdict": self.verdict,
+            "verdict_code": self.verdict_code,
+            "verdict_clauses": list(self.verdict_clauses),
+            "weakest_null": self.weakest_null,
+            "notes": list(self.notes),
+            "made": self.made,
+        }
+        if self.next_event is not None:
+            document["next"] = self.next_event.rows
+            document["track_record"] = self.next_event.track_record
+        return {key: plain(value) for key, value in document.items()}
+
+    def tables(self) -> dict[str, pd.DataFrame]:
+        """Frames by name: unrounded, NaN or None where not computed."""
+        import pandas as pd
+
+        from .rate_laws import LawRow
+
+        out = {
+            "record": pd.DataFrame([{k: v for k, v in self.facts().items() if k != "lists"}]),
+            "tests": self.tests.to_frame(),
+            "rate_laws": frame(self.laws.rows, LawRow),
+            "age_exponent": frame(self.exponents, ExponentRow),
+            "regressions": self._regressions_frame(),
+            "leverage": frame(self.regressions.leverage, LeverageRow),
+            "nulls": self.nulls.to_frame(),
+            "regression_nulls": self.regression_nulls.to_frame(),
+            "lists": self.studies.to_frame(),
+            "lists_pooled": self.studies.pooled_frame(),
+            "forgetting": self.tipping.to_frame(),
+            "listed_shares": self.tipping.shares_frame(),
+            "unlisted": self.tipping.bins_frame(),
+            "completeness": self.capture.to_frame(),
+            "completeness_bins": self.capture.bins_frame(),
+            "headline": pd.DataFrame([self.headline()]),
+        }
+        if self.next_event is not None:
+            out.update(self.next_event.tables())
+        return out
+
+    def to_frame(self, table: str = "tests") -> pd.DataFrame:
+        """One of the tables."""
+        return self.tables()[table]
+
+    def _regressions_frame(self) -> pd.DataFrame:
+        """The regressions, the least-squares rows beside what log_uniform gives."""
+        rows = self.regressions.to_frame()
+        beside: dict[str, NullRow | None] = {
+            "log10_age": self.nulls.row("log_uniform", "slope"),
+            "order": self.regression_nulls.row("log_uniform", "slope on order"),
+            "log10_time": self.regression_nulls.row("log_uniform", "slope on log10_time"),
+        }
+        found = [beside.get(r.predictor) if r.estimator == "ols_hc3" else None for r in self.regressions.rows]
+        rows["null"] = [None if f is None else f.null for f in found]
+        for column, name in (("null_low", "low"), ("null_median", "median"), ("null_high", "high"), ("p_value", "p_value")):
+            values = [np.nan if f is None or getattr(f, name) is None else float(getattr(f, name)) for f in found]
+            rows[column] = np.array(values, dtype=float)
+        return rows
+
+
+def _without_fits(capture: Capture) -> dict[str, Any]:
+    from dataclasses import fields
+
+    return {f.name: getattr(capture, f.name) for f in fields(capture) if f.name not in ("fit", "steady")}
+
+
+def analyse(
+    record: Record,
+    *,
+    seed: int = 1,
+    draws: int = 2000,
+    replicates: int = 1999,
+    bootstrap: int = 499,
+    exposure: Any = None,
+    next_event: bool = False,
+    half_life: float | None = None,
+    scale: float | None = None,
+    command: str = "trend",
+    tell: Tell = silent,
+) -> Trend:
+    """Is it speeding up, and would the making of the list give that? Works on the milestones inside the record's window, on best dates.
+
+    draws: drawn datings behind the sensitivity row; replicates: null records; bootstrap: refits behind the fit p-values. exposure turns time into operational
+    time before anything else. half_life and scale (years) add recall_decay nulls that were not fitted. Raises RecordRefused below three milestones, or
+    where all stand at the present.
+    """
+    if exposure is not None:
+        from .exposure import operational
+
+        record = operational(record, exposure)
+    window = record.window
+    if len(window.times) < 3:
+        outside = f", {window.outside} more lie outside it" if window.outside else ""
+        raise RecordRefused(
+            f"{len(window.times)} milestone{'' if len(window.times) == 1 else 's'} in the window{outside}; a trend needs at least 3. Choose more lists, an earlier "
+            "--start or a later --present"
+        )
+    if not window.span > 0:
+        raise RecordRefused(f"all milestones stand at the present, {window.present:g}; choose a later --present")
+    tell("tests", 0.0)
+    tests = run_tests(window, seed=seed, replicates=replicates)
+    tell("rate laws", 0.15)
+    laws = fit_laws(window, seed=seed, replicates=bootstrap)
+    exponents = tuple(age_exponent(window))
+    tip = tipping(window, laws=laws, seed=seed)
+    tell("regressions", 0.3)
+    regressions = regress(window, record=record, draws=draws, seed=seed)
+    tell("null models", 0.4)
+    family = (STEADY, SHUFFLED, *_given(half_life, scale), *tip.nulls(), LOG_UNIFORM)
+    beside = null_table(record, family, (*STATISTICS, *REGRESSION_STATISTICS), seed=seed, replicates=replicates)
+    others = {s.name for s in REGRESSION_STATISTICS}
+    nulls = replace(beside, rows=tuple(r for r in beside.rows if r.statistic not in others))
+    regression_nulls = replace(beside, rows=tuple(r for r in beside.rows if r.statistic in others))
+    tell("overlap of the lists", 0.75)
+    capture = corrected_growth(record, window)
+    studies = lists_as_studies(record, seed=seed)
+    evidence = _evidence(window, tests, laws, exponents, nulls, tip, capture, seed)
+    following = None
+    if next_event:
+        from .next_event import next_event as following_event
+
+        following = following_event(window, seed=seed)
+    from .. import __version__
+
+    made = {
+        "command": command, "version": __version__, "seed": seed, "draws": draws, "replicates": replicates, "bootstrap": bootstrap, "record": record.hash,
+    }  # fmt: skip
+    tell("done", 1.0)
+    return Trend(
+        record=record, window=window, tests=tests, laws=laws, exponents=exponents, regressions=regressions, nulls=nulls, regression_nulls=regression_nulls,
+        studies=studies, tipping=tip, capture=capture, evidence=evidence, judged=judge(evidence), made=made, next_event=following,
+        notes=_notes(record, window, tests, laws, regressions, nulls, tip, capture, studies, following),
+    )  # fmt: skip
+
+
+def _given(half_life: float | None, scale: float | None) -> tuple[Null, ...]:
+    from .nulls import recall_decay
+
+    out = [] if half_life is None else [recall_decay(half_life=half_life)]
+    return tuple(out if scale is None else [*out, recall_decay(scale=scale)])
+
+
+def _evidence(
+    window: Window, tests: TestsResult, laws: LawsResult, exponents: tuple[ExponentRow, ...], nulls: NullTable, tip: Tipping, capture: Capture, seed: int
+) -> Evidence:
+    laplace, lewis = tests.row("laplace"), tests.row("lewis_robinson")
+    growth, low, high = wider(laws.row("log_linear"), "growth")
+    turns = window.span / LN2
+    intervals = int((window.intervals > 0).sum())
+    enough = window.n >= FEWEST_EVENTS and intervals >= FEWEST_INTERVALS
+    slope = nulls.row("log_uniform", "slope")
+    exponent = exponents[0]
+    exponential = tip.form("exponential")
+
+    def doublings(value: float | None) -> float | None:
+        return None if value is None else value * turns if abs(value * turns) > 1e-9 else 0.0
+
+    return Evidence(
+        n=window.n, intervals=intervals, span=window.span, p1=laplace.p_exact, p2=lewis.p_exact, direction=laplace.direction,
+        doublings=doublings(growth), doublings_low=doublings(low), doublings_high=doublings(high),
+        half_life=exponential.estimate, half_life_low=exponential.low, half_life_high=exponential.high,
+        power=tuple((d, laplace_power(window.n, d, seed)) for d in DOUBLINGS) if window.n else (),
+        smallest=None if enough else smallest_shown(window.n, seed),
+        forms=tuple(
+            FormTried(f.form, f.estimate, f.low, f.high, f.fit_p, f.shares[0].age, f.shares[0].share, f.unlisted or 0.0, f.unlisted_low or 0.0, f.unlisted_high)
+            for f in tip.forms
+            if f.estimate is not None
+        ),
+        age_exponent=exponent.estimate, age_exponent_low=exponent.low, age_exponent_high=exponent.high,
+        slope=None if slope is None else slope.observed, slope_p=None if slope is None else slope.p_value,
+        lists=len(capture.lists), corrected=doublings(capture.growth), corrected_low=doublings(capture.low), corrected_high=doublings(capture.high),
+    )  # fmt: skip
+
+
+def _notes(record: Record, window: Window, *parts: Any) -> tuple[str, ...]:
+    """What a reader should know, once each: the record's own remarks, the window's, then every part's."""
+    notes = list(record.notes)
+    if window.after:
+        notes.append(f"{window.after} milestone{'s' if window.after > 1 else ''} after the present {window.present:g} left out; --present takes them in")
+    if window.before:
+        notes.append(f"{window.before} milestone{'s' if window.before > 1 else ''} before the start {window.start:g} left out; an earlier --start takes them in")
+    if window.closing:
+        notes.append("the milestone at the present closes the window and is not counted")
+    if window.tied_with_start:
+        notes.append(f"{window.tied_with_start} more in the instant of the start open the window with it and are not counted")
+    if window.joined:
+        notes.append(f"{window.joined} intervals of zero length are left out of the regressions on log intervals only (their milestones are joined)")
+    for part in parts:
+        notes.extend(getattr(part, "notes", ()) if part is not None else ())
+    return tuple(dict.fromkeys(notes))
