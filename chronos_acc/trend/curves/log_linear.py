@@ -83,8 +83,9 @@ def quantile(theta: Floats, u: Floats, c: Floats) -> tuple[Floats, Floats]:
     size = np.abs(k)
     flat = size < 1e-12
     safe = np.where(flat, 1.0, size)
-    share = np.where(k >= 0, c, u)
-    near = np.where(flat, share, -np.log1p(share * np.expm1(-safe)) / safe)
+    share, other = np.where(k >= 0, c, u), np.where(k >= 0, u, c)
+    logs = np.where(share < 0.5, np.log1p(share * np.expm1(-safe)), np.log(other + share * np.exp(-safe)))
+    near = np.where(flat, share, -logs / safe)
     near = np.clip(near, 0.0, 1.0)
     return np.where(k >= 0, 1.0 - near, near), np.where(k >= 0, near, 1.0 - near)
 
