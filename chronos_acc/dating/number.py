@@ -70,3 +70,7 @@ def split_number(text: str, decimal: str = ".") -> tuple[Number, str] | None:
     if places:
         return Number(sign or "", f"{digits}.{places}", power, power - len(places)), rest.lstrip()
     return Number(sign or "", digits, power, power), rest.lstrip()
+
+
+MANTISSA = {mark: re.compile(pattern.removesuffix(_TAIL)) for mark, pattern in ((".", POINT), (",", COMMA))}
+"""A number without its power of ten, by decimal mark; where two numbers share a power ("1.5–1.2 × 10^9") the tail starts behind it."""

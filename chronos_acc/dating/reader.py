@@ -30,6 +30,11 @@ def takes_unit(text: str) -> bool:
     return not _SHOULD_STAND.search(_NO_UNIT_WORDS.sub(" ", text))
 
 
+def split_unit(text: str) -> str:
+    """What stands behind the last number of a cleaned text: its unit or era, if that is what it is."""
+    return text[max((place + 1 for place, character in enumerate(text) if character.isdigit()), default=0) :].strip(" )")
+
+
 def read(text: str, settings: Settings = Settings(), *, unit: str | None = None) -> Reading:
     """The dating of a text as compilers write it.
 
@@ -39,14 +44,24 @@ def read(text: str, settings: Settings = Settings(), *, unit: str | None = None)
     if not isinstance(text, str) or not text.strip():
         raise DateRefused("the date is empty; give a date, or leave the row out")
     try:
-        plain = clean(text)
-        word = unit or settings.unit or ("years ago" if settings.counted == "ago" else None)
-        if word and takes_unit(plain):
-            plain = f"{plain} {word.strip()}"
-        found = read_clean(plain, settings)
-        return finish(found[1], found[0].name if found[1].named is None else found[1].named, settings)
+        found = read_clean(_with_unit(text, settings, unit), settings)
+        return finish(found[1], found[0].name, settings)
     except DateRefused as refusal:
         raise DateRefused(f"{shown(text)} {refusal}") from None
+
+
+def ends(text: str, settings: Settings, *, unit: str | None = None) -> Span:
+    """A text as the end of a range: ``low`` and ``high`` are its bounds as written, before the compile year is heeded."""
+    try:
+        return read_clean(_with_unit(text, settings, unit), settings)[1]
+    except DateRefused as refusal:
+        raise DateRefused(f"{shown(text)} {refusal}") from None
+
+
+def _with_unit(text: str, settings: Settings, unit: str | None) -> str:
+    plain = clean(text)
+    word = unit or settings.unit or ("years ago" if settings.counted == "ago" else None)
+    return f"{plain} {word.strip()}" if word and takes_unit(plain) else plain
 
 
 def read_clean(text: str, settings: Settings) -> tuple[Notation, Span]:
@@ -55,8 +70,24 @@ def read_clean(text: str, settings: Settings) -> tuple[Notation, Span]:
         raise DateRefused(f"is longer than {LONGEST} characters; give the date alone")
     found = _try(text, settings, len(NOTATIONS))
     if found is None:
-        raise DateRefused("is read by no notation; see the examples of `date --help`, or give earliest and latest years")
+        raise DateRefused(f"is read by no notation; {_hint(text)}")
     return found
+
+
+_HINTS = (
+    (re.compile(r"[0-9],[0-9]{1,2}(?![0-9])|[0-9],[0-9]{4}"), "a comma groups thousands and needs three digits behind it; set decimal = \",\" if it is the list's decimal mark"),
+    (re.compile(r"[0-9]\.[0-9]{3}\.[0-9]"), "a point is the decimal mark; set decimal = \",\" if points group thousands in this list"),
+    (re.compile(r"[0-9] ?years?\Z", re.IGNORECASE), "years alone may be a length of time; write \"years ago\", or the calendar year without a unit"),
+    (re.compile(r"\b(?:unknown|open|uuuu)\b|[0-9]u", re.IGNORECASE), "that is an older draft's form; write X for an unspecified digit, .. for an open end, nothing for an unknown one"),
+    (re.compile(r"[0-9]\.\.[0-9]|[\[{]"), "write a set without spaces as [1667,1668] (one of) or {1667..1672} (all of)"),
+    (re.compile(r"\bturn of|\bbeginning|\bend of|\bstart of", re.IGNORECASE), "say early, mid or late, or give the years"),
+    (re.compile(r"\A[^0-9]*\Z"), "it has no number and is no name of the period table; give a date"),
+)
+
+
+def _hint(text: str) -> str:
+    """What to do with a text that no notation reads."""
+    return next((advice for pattern, advice in _HINTS if pattern.search(text)), "write it as 1985-04-12, 450–400 BCE, 66.0 ± 0.05 Ma or the like, or give earliest and latest years")
 
 
 def _try(text: str, settings: Settings, below: int) -> tuple[Notation, Span] | None:

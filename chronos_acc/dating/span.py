@@ -38,7 +38,6 @@ class Span(NamedTuple):
     assumed: bool = False
     uses: tuple[str, ...] = ()
     remarks: tuple[str, ...] = ()
-    named: str | None = None
 
 
 def flat(kind: Kind, earliest: float, latest: float, words: str, uses: tuple[str, ...] = (), remarks: tuple[str, ...] = ()) -> Span:

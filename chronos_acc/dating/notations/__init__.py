@@ -2,17 +2,47 @@
 
 from __future__ import annotations
 
-from . import ago, before_present, era, year
+from . import (
+    ago,
+    before_present,
+    century,
+    circa,
+    credible,
+    decade,
+    edtf,
+    era,
+    limit,
+    named_day,
+    numeric_day,
+    part,
+    period,
+    plus_minus,
+    radiocarbon,
+    range,
+    uncertain,
+    year,
+)
 from .notation import Notation, Part
 
-NOTATIONS: tuple[Notation, ...] = tuple(
-    module.NOTATION
-    for module in (
-        year,
-        era,
-        ago,
-        before_present,
-    )
+NOTATIONS: tuple[Notation, ...] = (
+    year.NOTATION,
+    era.NOTATION,
+    ago.NOTATION,
+    before_present.NOTATION,
+    edtf.NOTATION,
+    named_day.NOTATION,
+    numeric_day.NOTATION,
+    decade.NOTATION,
+    century.NOTATION,
+    period.NOTATION,
+    part.NOTATION,
+    plus_minus.NOTATION,
+    credible.NOTATION,
+    circa.NOTATION,
+    range.NOTATION,
+    limit.NOTATION,
+    uncertain.NOTATION,
+    radiocarbon.NOTATION,
 )
 """All notations, in the order in which they are tried and named."""
 

@@ -1,0 +1,44 @@
+"""One bound only: before 1850, after 66 Ma, until 1914, since 1945, no later than 300 BCE, > 40 ka, 1850 or later. The open end takes the list's limit."""
+
+from __future__ import annotations
+
+import re
+from math import inf
+
+from ..settings import Settings
+from ..span import Span
+from .notation import Notation, Part
+
+_WORDS = {
+    "before": ("before", "prior to", "earlier than", "older than", "ante"),
+    "until": ("until", "till", "up to", "by", "no later than", "not later than", "not after", "terminus ante quem", "taq", "at the latest"),
+    "after": ("after", "later than", "younger than", "post"),
+    "since": ("since", "from", "starting in", "no earlier than", "not earlier than", "not before", "terminus post quem", "tpq"),
+}
+_MEANING = {word: meaning for meaning, words in _WORDS.items() for word in words}
+_PREFIX = re.compile(r"(" + "|".join(sorted(map(re.escape, _MEANING), key=len, reverse=True)) + r")\b[: ] ?(?=\S)|(<=|>=|<|>) ?(?=\S)", re.IGNORECASE)
+_SUFFIX = re.compile(r",? (?:(?:or|and) (earlier|before|older|later|after|younger)|(onwards?))\Z", re.IGNORECASE)
+_BACK = {"<": "after", "<=": "since", ">": "before", ">=": "until"}  # of an age, the smaller number is the later date
+_FORTH = {"<": "before", "<=": "until", ">": "after", ">=": "since"}
+
+
+def read(text: str, settings: Settings, part: Part) -> Span | None:
+    """Before and after leave the named time out, until and since take it in."""
+    found = _PREFIX.match(text)
+    if found:
+        inner = part(text[found.end():], NOTATION.level)
+    else:
+        found = _SUFFIX.search(text)
+        inner = part(text[: found.start()], NOTATION.level) if found else None
+    if inner is None or found is None:
+        return None
+    if found.re is _SUFFIX:
+        meaning = "until" if (found[1] or "").lower() in ("earlier", "before", "older") else "since"
+    else:
+        meaning = _MEANING[found[1].lower()] if found[1] else (_BACK if inner.back else _FORTH)[found[2]]
+    low, high = {"before": (-inf, inner.low), "until": (-inf, inner.high), "after": (inner.high, inf), "since": (inner.low, inf)}[meaning]
+    uses = tuple(name for name in inner.uses if name != "digits" or inner.kind == "circa")
+    return Span("limit", low, high if low == -inf else low, high, f"{meaning} {inner.words.split(', ±')[0]}", low, high, assumed=inner.assumed, uses=uses, remarks=inner.remarks)
+
+
+NOTATION = Notation("limit", "before 1850", "a date with one bound; the other is the list's limit", read, level=4)
