@@ -1,5 +1,6 @@
 # SPDX-License-Identifier: Apache-2.0
-"""The whole of trend for one record: tests, rate laws, age exponent, regressions, nulls, lists as studies, forgetting, completeness, and the verdict."""
+"""The whole of trend for one record: tests, rate laws, age exponent, regressions, nulls, lists as studies, forgetting, completeness, and
+the verdict."""
 
 from __future__ import annotations
 
@@ -77,20 +78,44 @@ class Trend:
         """What was looked at: counts and the window, years decimal."""
         w = self.window
         return {
-            "milestones": len(w.times), "n": w.n, "intervals": max(len(w.times) - 1, 0), "joined": w.joined, "start": w.start, "start_from": w.start_from,
-            "present": w.present, "present_from": w.present_from, "outside": w.outside, "before": w.before, "after": w.after,
-            "tied_with_start": w.tied_with_start, "closing": w.closing, "finest_unit": w.finest_unit, "lists": list(self.record.lists),
-        }  # fmt: skip
+            "milestones": len(w.times),
+            "n": w.n,
+            "intervals": max(len(w.times) - 1, 0),
+            "joined": w.joined,
+            "start": w.start,
+            "start_from": w.start_from,
+            "present": w.present,
+            "present_from": w.present_from,
+            "outside": w.outside,
+            "before": w.before,
+            "after": w.after,
+            "tied_with_start": w.tied_with_start,
+            "closing": w.closing,
+            "finest_unit": w.finest_unit,
+            "lists": list(self.record.lists),
+        }
 
     def headline(self) -> dict[str, Any]:
         """The numbers of the verdict's sentence."""
         e = self.evidence
         return {
-            "p_laplace": e.p1, "p_lewis_robinson": e.p2, "direction": e.direction, "span": e.span, "doublings": e.doublings, "doublings_low": e.doublings_low,
-            "doublings_high": e.doublings_high, "half_life": e.half_life, "half_life_low": e.half_life_low, "half_life_high": e.half_life_high,
-            **{f"power_{d:g}": s for d, s in e.power}, "smallest_doublings_shown": e.smallest, "corrected_doublings": e.corrected,
-            "corrected_doublings_low": e.corrected_low, "corrected_doublings_high": e.corrected_high, "independent_lists": e.lists,
-        }  # fmt: skip
+            "p_laplace": e.p1,
+            "p_lewis_robinson": e.p2,
+            "direction": e.direction,
+            "span": e.span,
+            "doublings": e.doublings,
+            "doublings_low": e.doublings_low,
+            "doublings_high": e.doublings_high,
+            "half_life": e.half_life,
+            "half_life_low": e.half_life_low,
+            "half_life_high": e.half_life_high,
+            **{f"power_{d:g}": s for d, s in e.power},
+            "smallest_doublings_shown": e.smallest,
+            "corrected_doublings": e.corrected,
+            "corrected_doublings_low": e.corrected_low,
+            "corrected_doublings_high": e.corrected_high,
+            "independent_lists": e.lists,
+        }
 
     def to_dict(self) -> dict[str, Any]:
         """The document: native Python throughout, None where nothing was computed."""
@@ -191,9 +216,9 @@ def analyse(
 ) -> Trend:
     """Is it speeding up, and would the making of the list give that? Works on the milestones inside the record's window, on best dates.
 
-    draws: drawn datings behind the sensitivity row; replicates: null records; bootstrap: refits behind the fit p-values. exposure turns time into operational
-    time before anything else. half_life and scale (years) add recall_decay nulls that were not fitted. Raises RecordRefused below three milestones, or
-    where all stand at the present.
+    draws: drawn datings behind the sensitivity row; replicates: null records; bootstrap: refits behind the fit p-values. exposure turns
+    time into operational time before anything else. half_life and scale (years) add recall_decay nulls that were not fitted. Raises
+    RecordRefused below three milestones, or where all stand at the present.
     """
     if exposure is not None:
         from .exposure import operational
@@ -203,8 +228,8 @@ def analyse(
     if len(window.times) < 3:
         outside = f", {window.outside} more lie outside it" if window.outside else ""
         raise RecordRefused(
-            f"{len(window.times)} milestone{'' if len(window.times) == 1 else 's'} in the window{outside}; a trend needs at least 3. Choose more lists, an earlier "
-            "--start or a later --present"
+            f"{_milestones(len(window.times))} in the window{outside}; a trend needs at least 3. Choose more lists, an earlier --start "
+            "or a later --present"
         )
     if not window.span > 0:
         raise RecordRefused(f"all milestones stand at the present, {window.present:g}; choose a later --present")
@@ -234,14 +259,37 @@ def analyse(
     from .. import __version__
 
     made = {
-        "command": command, "version": __version__, "seed": seed, "draws": draws, "replicates": replicates, "bootstrap": bootstrap, "record": record.hash,
-    }  # fmt: skip
+        "command": command,
+        "version": __version__,
+        "seed": seed,
+        "draws": draws,
+        "replicates": replicates,
+        "bootstrap": bootstrap,
+        "record": record.hash,
+    }
     tell("done", 1.0)
     return Trend(
-        record=record, window=window, tests=tests, laws=laws, exponents=exponents, regressions=regressions, nulls=nulls, regression_nulls=regression_nulls,
-        studies=studies, tipping=tip, capture=capture, evidence=evidence, judged=judge(evidence), made=made, next_event=following,
+        record=record,
+        window=window,
+        tests=tests,
+        laws=laws,
+        exponents=exponents,
+        regressions=regressions,
+        nulls=nulls,
+        regression_nulls=regression_nulls,
+        studies=studies,
+        tipping=tip,
+        capture=capture,
+        evidence=evidence,
+        judged=judge(evidence),
+        made=made,
+        next_event=following,
         notes=_notes(record, window, tests, laws, regressions, nulls, tip, capture, studies, following),
-    )  # fmt: skip
+    )
+
+
+def _milestones(number: int) -> str:
+    return f"{number} milestone{'' if number == 1 else 's'}"
 
 
 def _given(half_life: float | None, scale: float | None) -> tuple[Null, ...]:
@@ -252,7 +300,14 @@ def _given(half_life: float | None, scale: float | None) -> tuple[Null, ...]:
 
 
 def _evidence(
-    window: Window, tests: TestsResult, laws: LawsResult, exponents: tuple[ExponentRow, ...], nulls: NullTable, tip: Tipping, capture: Capture, seed: int
+    window: Window,
+    tests: TestsResult,
+    laws: LawsResult,
+    exponents: tuple[ExponentRow, ...],
+    nulls: NullTable,
+    tip: Tipping,
+    capture: Capture,
+    seed: int,
 ) -> Evidence:
     laplace, lewis = tests.row("laplace"), tests.row("lewis_robinson")
     growth, low, high = wider(laws.row("log_linear"), "growth")
@@ -267,35 +322,63 @@ def _evidence(
         return None if value is None else value * turns if abs(value * turns) > 1e-9 else 0.0
 
     return Evidence(
-        n=window.n, intervals=intervals, span=window.span, p1=laplace.p_exact, p2=lewis.p_exact, direction=laplace.direction,
-        doublings=doublings(growth), doublings_low=doublings(low), doublings_high=doublings(high),
-        half_life=exponential.estimate, half_life_low=exponential.low, half_life_high=exponential.high,
+        n=window.n,
+        intervals=intervals,
+        span=window.span,
+        p1=laplace.p_exact,
+        p2=lewis.p_exact,
+        direction=laplace.direction,
+        doublings=doublings(growth),
+        doublings_low=doublings(low),
+        doublings_high=doublings(high),
+        half_life=exponential.estimate,
+        half_life_low=exponential.low,
+        half_life_high=exponential.high,
         power=tuple((d, laplace_power(window.n, d, seed)) for d in DOUBLINGS) if window.n else (),
         smallest=None if enough else smallest_shown(window.n, seed),
         forms=tuple(
-            FormTried(f.form, f.estimate, f.low, f.high, f.fit_p, f.shares[0].age, f.shares[0].share, f.unlisted or 0.0, f.unlisted_low or 0.0, f.unlisted_high)
+            FormTried(
+                f.form,
+                f.estimate,
+                f.low,
+                f.high,
+                f.fit_p,
+                f.shares[0].age,
+                f.shares[0].share,
+                f.unlisted or 0.0,
+                f.unlisted_low or 0.0,
+                f.unlisted_high,
+            )
             for f in tip.forms
             if f.estimate is not None
         ),
-        age_exponent=exponent.estimate, age_exponent_low=exponent.low, age_exponent_high=exponent.high,
-        slope=None if slope is None else slope.observed, slope_p=None if slope is None else slope.p_value,
-        lists=len(capture.lists), corrected=doublings(capture.growth), corrected_low=doublings(capture.low), corrected_high=doublings(capture.high),
-    )  # fmt: skip
+        age_exponent=exponent.estimate,
+        age_exponent_low=exponent.low,
+        age_exponent_high=exponent.high,
+        slope=None if slope is None else slope.observed,
+        slope_p=None if slope is None else slope.p_value,
+        lists=len(capture.lists),
+        corrected=doublings(capture.growth),
+        corrected_low=doublings(capture.low),
+        corrected_high=doublings(capture.high),
+    )
 
 
 def _notes(record: Record, window: Window, *parts: Any) -> tuple[str, ...]:
     """What a reader should know, once each: the record's own remarks, the window's, then every part's."""
     notes = list(record.notes)
     if window.after:
-        notes.append(f"{window.after} milestone{'s' if window.after > 1 else ''} after the present {window.present:g} left out; --present takes them in")
+        notes.append(f"{_milestones(window.after)} after the present {window.present:g} left out; --present takes them in")
     if window.before:
-        notes.append(f"{window.before} milestone{'s' if window.before > 1 else ''} before the start {window.start:g} left out; an earlier --start takes them in")
+        notes.append(f"{_milestones(window.before)} before the start {window.start:g} left out; an earlier --start takes them in")
     if window.closing:
         notes.append("the milestone at the present closes the window and is not counted")
     if window.tied_with_start:
         notes.append(f"{window.tied_with_start} more in the instant of the start open the window with it and are not counted")
     if window.joined:
-        notes.append(f"{window.joined} intervals of zero length are left out of the regressions on log intervals only (their milestones are joined)")
+        notes.append(
+            f"{window.joined} intervals of zero length are left out of the regressions on log intervals only (their milestones are joined)"
+        )
     for part in parts:
         notes.extend(getattr(part, "notes", ()) if part is not None else ())
     return tuple(dict.fromkeys(notes))

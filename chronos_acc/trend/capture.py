@@ -23,13 +23,25 @@ Floats = npt.NDArray[np.float64]
 FEWEST_SHARED = 10
 
 __all__ = [
-    "Capture", "CaptureRow", "CaptureShare", "CoverageBin", "chao", "chapman", "corrected_growth", "coverage_bins", "families", "grouped", "log_linear_models", "petersen",
-]  # fmt: skip
+    "Capture",
+    "CaptureRow",
+    "CaptureShare",
+    "CoverageBin",
+    "chao",
+    "chapman",
+    "corrected_growth",
+    "coverage_bins",
+    "families",
+    "grouped",
+    "log_linear_models",
+    "petersen",
+]
 
 
 @dataclass(frozen=True)
 class CaptureRow:
-    """Growth per year after correction on one scale of age; low and high None where unbounded. age_effect: beta, above zero where older is named less."""
+    """Growth per year after correction on one scale of age; low and high None where unbounded. age_effect: beta, above zero where older is
+    named less."""
 
     scale: str
     growth: float
@@ -56,8 +68,8 @@ class CaptureShare:
 class Capture:
     """What overlap says. lists: independent lists (a family of derived ones joined by +); shared: counted milestones named by two or more.
 
-    growth, low, high per year are the headline's (the scale of lower AIC), None where not estimable; uncorrected the same without correction, the wider
-    interval. ``fit`` and ``steady`` are the headline fit and the fit with growth held at zero, for simulating lists.
+    growth, low, high per year are the headline's (the scale of lower AIC), None where not estimable; uncorrected the same without
+    correction, the wider interval. ``fit`` and ``steady`` are the headline fit and the fit with growth held at zero, for simulating lists.
     """
 
     n: int
@@ -105,7 +117,8 @@ def families(record: Record) -> tuple[tuple[int, ...], ...]:
 
 
 def grouped(record: Record) -> tuple[tuple[str, ...], Bools]:
-    """Independent lists: those with a common ancestor become one that names what any of them names. Names (t,) joined by +, and mentions (m, t)."""
+    """Independent lists: those with a common ancestor become one that names what any of them names. Names (t,) joined by +, and mentions
+    (m, t)."""
     together = families(record)
     names = tuple(" + ".join(record.lists[j] for j in members) for members in together)
     columns = [record.mentions[:, list(members)].any(axis=1) for members in together]
@@ -127,12 +140,19 @@ def corrected_growth(record: Record, window: Window | None = None, *, interval: 
     shared = int((named.sum(axis=1) >= 2).sum())
     if len(names) < 2:
         word = "one list" if len(names) == 1 else "no list"
-        return Capture(window.n, names, shared, False, notes=(f"{word} only (lists that derive from one another count as one): overlap says nothing",))
+        return Capture(
+            window.n, names, shared, False, notes=(f"{word} only (lists that derive from one another count as one): overlap says nothing",)
+        )
     if shared < FEWEST_SHARED or not window.span > 0:
         return Capture(
-            window.n, names, shared, False,
-            notes=(f"{shared} milestones are shared by independent lists; at least {FEWEST_SHARED} are needed to estimate what they missed",),
-        )  # fmt: skip
+            window.n,
+            names,
+            shared,
+            False,
+            notes=(
+                f"{shared} milestones are shared by independent lists; at least {FEWEST_SHARED} are needed to estimate what they missed",
+            ),
+        )
     floor = youngest_floor(window)
     sightings = Sightings.of(ages, named, window.span, floor)
     fits = [f for f in (fit(sightings, scale, interval=interval) for scale in SCALES) if f is not None]
@@ -152,7 +172,21 @@ def corrected_growth(record: Record, window: Window | None = None, *, interval: 
     lows = [x for x in (low, low_robust) if x is not None]
     highs = [x for x in (high, high_robust) if x is not None]
     return Capture(
-        n=window.n, lists=names, shared=shared, estimable=True, scale=best.scale, growth=best.growth, low=best.low, high=best.high, uncorrected=estimate,
-        uncorrected_low=min(lows, default=None), uncorrected_high=max(highs, default=None), rows=rows, shares=shares, bins=bins, fit=best,
-        steady=fit(sightings, best.scale, growth=0.0, interval=False), notes=tuple(notes),
-    )  # fmt: skip
+        n=window.n,
+        lists=names,
+        shared=shared,
+        estimable=True,
+        scale=best.scale,
+        growth=best.growth,
+        low=best.low,
+        high=best.high,
+        uncorrected=estimate,
+        uncorrected_low=min(lows, default=None),
+        uncorrected_high=max(highs, default=None),
+        rows=rows,
+        shares=shares,
+        bins=bins,
+        fit=best,
+        steady=fit(sightings, best.scale, growth=0.0, interval=False),
+        notes=tuple(notes),
+    )

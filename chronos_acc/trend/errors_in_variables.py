@@ -76,9 +76,15 @@ def extrapolate(levels: Floats, estimates: Floats, form: str = "quadratic") -> f
 
 
 def simex(
-    estimate: Callable[[Floats], float], x: Floats, sd: Floats, *, seed: int, levels: tuple[float, ...] = (0.5, 1.0, 1.5, 2.0), rounds: int = 200,
+    estimate: Callable[[Floats], float],
+    x: Floats,
+    sd: Floats,
+    *,
+    seed: int,
+    levels: tuple[float, ...] = (0.5, 1.0, 1.5, 2.0),
+    rounds: int = 200,
     form: str = "quadratic",
-) -> float:  # fmt: skip
+) -> float:
     """``estimate`` of x freed from the errors of sd ``sd`` (n,): more error is added on purpose and the trend run back to none."""
     rng = np.random.default_rng([seed, 77])
     noise = rng.standard_normal((rounds, len(x)))

@@ -2,8 +2,8 @@
 """The tipping point: how fast would compilers have to forget a steady rate for this list to come out, and what would then be missing?
 
 A steady rate half forgotten every h years draws the same curve as a log-linear rate with doubling time h; a steady rate remembered as
-1/(1 + age/s) the same as a hyperbolic one with its singular date s after the present. So both are read off the fitted laws, and a list alone cannot
-say which it was.
+1/(1 + age/s) the same as a hyperbolic one with its singular date s after the present. So both are read off the fitted laws, and a list
+alone cannot say which it was.
 """
 
 from __future__ import annotations
@@ -54,11 +54,12 @@ class ForgottenBin:
 
 @dataclass(frozen=True)
 class TippingForm:
-    """One form of forgetting. estimate, low, high in years (half_life of 2^(-age/h), scale of 1/(1 + age/s)); high None: no forgetting lies inside.
+    """One form of forgetting. estimate, low, high in years (half_life of 2^(-age/h), scale of 1/(1 + age/s)); high None: no forgetting lies
+    inside.
 
     critical: the slowest forgetting that already removes the significance, None where there is none to remove. fit_p: Anderson–Darling of
-    the fitted positions, bootstrap with refitting; suffices: fit_p of 0.05 and more. total and unlisted: events in the window, listed or not, and those not
-    listed; intervals by transforming that of the estimate. All None where no forgetting is needed.
+    the fitted positions, bootstrap with refitting; suffices: fit_p of 0.05 and more. total and unlisted: events in the window, listed or
+    not, and those not listed; intervals by transforming that of the estimate. All None where no forgetting is needed.
     """
 
     form: str
@@ -137,12 +138,23 @@ def tipping(window: Window, *, laws: LawsResult | None = None, seed: int = 1, re
     growth, lowest, highest = wider(exponential, "growth")
     t_star, nearest, farthest = wider(power, "t_star")
     forms = (
-        _form(window, "exponential", "half_life", _half_life(growth, window), _half_life(highest, window), _half_life(lowest, window), exponential.fit_p_shape),
+        _form(
+            window,
+            "exponential",
+            "half_life",
+            _half_life(growth, window),
+            _half_life(highest, window),
+            _half_life(lowest, window),
+            exponential.fit_p_shape,
+        ),
         _form(window, "power", "scale", _scale(t_star, window), _scale(nearest, window), _scale(farthest, window), power.fit_p_shape),
     )
     notes = []
     if any(f.needed for f in forms):
-        notes.append("the half-life equals the doubling time of the log-linear law, and the scale is t_star less the present: a list alone cannot say which it was")
+        notes.append(
+            "the half-life equals the doubling time of the log-linear law, and the scale is t_star less the present: a list alone cannot "
+            "say which it was"
+        )
     return Tipping(window.n, forms, tuple(notes))
 
 
@@ -182,15 +194,33 @@ def _form(
     places.append(("median", float(np.median(ages))))
     shares = tuple(
         ListedShare(
-            at, age, float(_share(form, estimate, age)), float(_share(form, low, age)) if low > 0 else 0.0, 1.0 if high is None else float(_share(form, high, age))
+            at,
+            age,
+            float(_share(form, estimate, age)),
+            float(_share(form, low, age)) if low > 0 else 0.0,
+            1.0 if high is None else float(_share(form, high, age)),
         )
         for at, age in places
     )
     return TippingForm(
-        form=form, parameter=parameter, needed=True, estimate=estimate, low=low, high=high, critical=high, fit_p=fit_p,
-        suffices=None if fit_p is None else fit_p >= SUFFICES_FROM, total=total, total_low=total_low, total_high=total_high, unlisted=total - n,
-        unlisted_low=total_low - n, unlisted_high=None if total_high is None else total_high - n, shares=shares, bins=_bins(window, form, estimate, low, high),
-    )  # fmt: skip
+        form=form,
+        parameter=parameter,
+        needed=True,
+        estimate=estimate,
+        low=low,
+        high=high,
+        critical=high,
+        fit_p=fit_p,
+        suffices=None if fit_p is None else fit_p >= SUFFICES_FROM,
+        total=total,
+        total_low=total_low,
+        total_high=total_high,
+        unlisted=total - n,
+        unlisted_low=total_low - n,
+        unlisted_high=None if total_high is None else total_high - n,
+        shares=shares,
+        bins=_bins(window, form, estimate, low, high),
+    )
 
 
 def _bins(window: Window, form: str, estimate: float, low: float, high: float | None) -> tuple[ForgottenBin, ...]:
@@ -219,7 +249,12 @@ def _bins(window: Window, form: str, estimate: float, low: float, high: float | 
         ends = [x for x in (some, few, many) if x is not None]
         out.append(
             ForgottenBin(
-                float(edges[i]), float(edges[i + 1]), int(listed[i]), float(some or 0.0), min(ends, default=0.0), None if many is None else max(ends)
+                float(edges[i]),
+                float(edges[i + 1]),
+                int(listed[i]),
+                float(some or 0.0),
+                min(ends, default=0.0),
+                None if many is None else max(ends),
             )
         )
     return tuple(out)

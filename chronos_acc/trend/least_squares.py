@@ -85,10 +85,14 @@ def least_squares(x: Floats, y: Floats) -> LeastSquares:
     root = np.linalg.inv(r) / scale[:, None]
     total = float(((y - y.mean()) ** 2).sum())
     return LeastSquares(
-        x=x, coefficients=beta, residuals=residuals, hat=(q * q).sum(axis=1), inverse=root @ root.T,
+        x=x,
+        coefficients=beta,
+        residuals=residuals,
+        hat=(q * q).sum(axis=1),
+        inverse=root @ root.T,
         variance=float(residuals @ residuals) / (n - k),
         r_squared=1.0 - float(residuals @ residuals) / total if total > 0 else float("nan"),
-    )  # fmt: skip
+    )
 
 
 def line(x: Floats, y: Floats) -> LeastSquares:
@@ -104,10 +108,14 @@ def line(x: Floats, y: Floats) -> LeastSquares:
     inverse = np.array([[1.0 / n + mean_x**2 / sxx, -mean_x / sxx], [-mean_x / sxx, 1.0 / sxx]])
     syy = float(dy @ dy)
     return LeastSquares(
-        x=np.column_stack([np.ones(n), x]), coefficients=np.array([mean_y - slope * mean_x, slope]), residuals=residuals,
-        hat=1.0 / n + dx * dx / sxx, inverse=inverse, variance=float(residuals @ residuals) / (n - 2),
+        x=np.column_stack([np.ones(n), x]),
+        coefficients=np.array([mean_y - slope * mean_x, slope]),
+        residuals=residuals,
+        hat=1.0 / n + dx * dx / sxx,
+        inverse=inverse,
+        variance=float(residuals @ residuals) / (n - 2),
         r_squared=float(dx @ dy) ** 2 / (sxx * syy) if syy > 0 else float("nan"),
-    )  # fmt: skip
+    )
 
 
 def _sandwich(bread: Floats, filling: Floats) -> Floats:

@@ -20,10 +20,11 @@ FUNNEL_FROM = 10  # and from which small-study effects can be tested
 
 @dataclass(frozen=True)
 class Pooled:
-    """Random-effects mean of k studies: tau2 by Paule and Mandel (1982), interval by Hartung and Knapp (2001) with k - 1 degrees of freedom.
+    """Random-effects mean of k studies: tau2 by Paule and Mandel (1982), interval by Hartung and Knapp (2001) with k - 1 degrees of
+    freedom.
 
-    q and q_p: Cochran's test of equal effects; i2 the share of variance between studies (from q, 0 to 1); prediction interval from five studies on, funnel_p
-    (Egger et al. 1997) from ten; else None.
+    q and q_p: Cochran's test of equal effects; i2 the share of variance between studies (from q, 0 to 1); prediction interval from five
+    studies on, funnel_p (Egger et al. 1997) from ten; else None.
     """
 
     k: int
@@ -75,9 +76,19 @@ def pooled(values: Floats, std_errors: Floats) -> Pooled:
     if k >= PREDICT_FROM:
         prediction = float(stdtrit(k - 2, 0.975)) * float(np.sqrt(tau2 + error**2))
     return Pooled(
-        k, mean, error, mean - half, mean + half, tau2, q, float(chdtrc(k - 1, q)), max(0.0, 1.0 - (k - 1) / q) if q > 0 else 0.0,
-        None if prediction is None else mean - prediction, None if prediction is None else mean + prediction, _funnel(values, std_errors),
-    )  # fmt: skip
+        k,
+        mean,
+        error,
+        mean - half,
+        mean + half,
+        tau2,
+        q,
+        float(chdtrc(k - 1, q)),
+        max(0.0, 1.0 - (k - 1) / q) if q > 0 else 0.0,
+        None if prediction is None else mean - prediction,
+        None if prediction is None else mean + prediction,
+        _funnel(values, std_errors),
+    )
 
 
 def _funnel(values: Floats, errors: Floats) -> float | None:

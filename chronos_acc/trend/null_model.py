@@ -18,8 +18,8 @@ Floats = npt.NDArray[np.float64]
 class Null:
     """A member of the family of nulls.
 
-    ``make(window, rng, size)`` gives times (size, w), sorted along the rows, of as many milestones as the window holds, the kept ones at the
-    ends in place: ``kept(window)`` says how many at the old end and how many at the young end are never moved. ``rounded``: whether the
+    ``make(window, rng, size)`` gives times (size, w), sorted along the rows, of as many milestones as the window holds, the kept ones at
+    the ends in place: ``kept(window)`` says how many at the old end and how many at the young end are never moved. ``rounded``: whether the
     moved dates pass through the precision kernel (not where they are built from observed intervals, which carry their rounding).
     ``setting`` tells parameters, and whether they were given or fitted; a ``fitted`` null judges slope and R² only.
     """

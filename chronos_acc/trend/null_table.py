@@ -30,7 +30,8 @@ JUDGED_WHEN_FITTED = ("slope", "r_squared")
 
 @dataclass(frozen=True)
 class NullRow:
-    """A statistic beside one null: its 2.5, 50 and 97.5 % points there, and p = (1 + count)/(B + 1). ``difference`` is observed minus median."""
+    """A statistic beside one null: its 2.5, 50 and 97.5 % points there, and p = (1 + count)/(B + 1). ``difference`` is observed minus
+    median."""
 
     null: str
     statistic: str
@@ -65,7 +66,8 @@ class NullTable:
 
 
 def p_value(null: Floats, observed: float, tail: str) -> float:
-    """(1 + #{null at least as extreme})/(B + 1) for tail "upper", "lower", or "two-sided" (twice the smaller). Equal within rounding counts as equal."""
+    """(1 + #{null at least as extreme})/(B + 1) for tail "upper", "lower", or "two-sided" (twice the smaller). Equal within rounding counts
+    as equal."""
     scale = 1e-10 * max(abs(observed), float(np.abs(null).max(initial=0.0)))
     upper = (1 + int((null >= observed - scale).sum())) / (len(null) + 1)
     lower = (1 + int((null <= observed + scale).sum())) / (len(null) + 1)
@@ -83,7 +85,13 @@ def null_times_in_chunks(record: Record, null: Null, *, seed: int, replicates: i
 
 
 def null_distribution(
-    record: Record, null: Null, statistic: Callable[[Floats, Window], Floats], *, seed: int, replicates: int = 1999, window: Window | None = None
+    record: Record,
+    null: Null,
+    statistic: Callable[[Floats, Window], Floats],
+    *,
+    seed: int,
+    replicates: int = 1999,
+    window: Window | None = None,
 ) -> Floats:
     """(replicates,) values of any statistic of a times matrix under a null. Identical to the rows of the table for the same seed."""
     window = record.window if window is None else window
@@ -94,8 +102,9 @@ def null_distribution(
 def null_records(record: Record, null: Null, *, seed: int, replicates: int, window: Window | None = None) -> Iterator[Record]:
     """Whole null records, one at a time, for anything that takes a Record.
 
-    The k-th oldest null milestone carries the lists, category, importance, level and parent of the observed k-th oldest, and the dating of the
-    observed milestone nearest in log age. Milestones outside the window stay as they are; known orders are dropped (they hold between the true dates).
+    The k-th oldest null milestone carries the lists, category, importance, level and parent of the observed k-th oldest, and the dating of
+    the observed milestone nearest in log age. Milestones outside the window stay as they are; known orders are dropped (they hold between
+    the true dates).
     """
     window = record.window if window is None else window
     kernel = Kernel.of(record, window)
@@ -119,10 +128,18 @@ def dated(record: Record, window: Window, times: Floats, kernel: Kernel) -> Reco
     owner = record.owner
     kind = np.where(part, np.where(sd[owner] > 0, NORMAL, UNIFORM), record.kind).astype(np.int8)
     return replace(
-        record, best=best, earliest=earliest, latest=latest, unit=unit, sd=sd, kind=kind, low=np.where(part, earliest[owner], record.low),
-        mode=np.where(part, best[owner], record.mode), high=np.where(part, latest[owner], record.high),
+        record,
+        best=best,
+        earliest=earliest,
+        latest=latest,
+        unit=unit,
+        sd=sd,
+        kind=kind,
+        low=np.where(part, earliest[owner], record.low),
+        mode=np.where(part, best[owner], record.mode),
+        high=np.where(part, latest[owner], record.high),
         orders=(),
-    )  # fmt: skip
+    )
 
 
 def null_table(
@@ -143,7 +160,9 @@ def null_table(
     chosen = list(statistics)
     if len(window.times) > PAIRS_LIMIT and any(s.name == "reverse_arrangements" for s in chosen):
         chosen = [s for s in chosen if s.name != "reverse_arrangements"]
-        notes.append(f"reverse_arrangements stands among the tests only: above {PAIRS_LIMIT} milestones it is not simulated under every null")
+        notes.append(
+            f"reverse_arrangements stands among the tests only: above {PAIRS_LIMIT} milestones it is not simulated under every null"
+        )
     if window.n < 1 or not window.span > 0 or len(window.times) < 3:
         return NullTable((), replicates, ("too few milestones inside the window for null models",))
     seen = {s.name: _observed(s, window) for s in chosen}
@@ -167,7 +186,19 @@ def _row(null: Null, statistic: Statistic, observed: float, values: Floats) -> N
     good = values[np.isfinite(values)]
     if not np.isfinite(observed) or len(good) < 0.5 * len(values):
         remark = "not computed: the record is too small or too even for it"
-        return NullRow(null.name, statistic.name, observed if np.isfinite(observed) else None, None, None, None, None, None, statistic.tail, null.setting, remark)
+        return NullRow(
+            null.name,
+            statistic.name,
+            observed if np.isfinite(observed) else None,
+            None,
+            None,
+            None,
+            None,
+            None,
+            statistic.tail,
+            null.setting,
+            remark,
+        )
     low, median, high = (float(v) for v in np.quantile(good, [0.025, 0.5, 0.975]))
     p: float | None = p_value(good, observed, statistic.tail)
     remark = ""

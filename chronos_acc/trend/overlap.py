@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """One likelihood for growth and for what independent lists missed: methods of capture and recapture with an age effect.
 
-List j names milestone i with probability p, logit p = alpha_j - beta a*, a* a function of age in [0, 1]; a milestone enters the record when any
-list names it, pi = 1 - prod(1 - p). With x the position in the window,
+List j names milestone i with probability p, logit p = alpha_j - beta a*, a* a function of age in [0, 1]; a milestone enters the record when
+any list names it, pi = 1 - prod(1 - p). With x the position in the window,
 
     l(g, alpha, beta) = sum_i [g x_i + sum_j y_ij ln p + (1 - y_ij) ln(1 - p)] - n ln integral of exp(g x) pi(a) dx,
 
@@ -28,8 +28,8 @@ FAR_ALPHA, FAR_BETA = 15.0, 40.0  # logits beyond which a probability is 0 or 1 
 
 @dataclass(frozen=True)
 class Sightings:
-    """n counted milestones of a window: fraction (n,) ages over the window's length, named (n, t) by t independent lists; ``nodes`` and ``weights``
-    integrate over the fraction; ``floor`` the youngest fraction above zero."""
+    """n counted milestones of a window: fraction (n,) ages over the window's length, named (n, t) by t independent lists; ``nodes`` and
+    ``weights`` integrate over the fraction; ``floor`` the youngest fraction above zero."""
 
     fraction: Floats
     named: Bools
@@ -88,7 +88,8 @@ class CaptureFit:
         return np.asarray(1.0 / (1.0 + np.exp(-(self.alpha - self.beta * z[..., None]))))
 
     def completeness(self, age: float) -> tuple[float, float, float]:
-        """Share of the milestones of an age (years) that any list names, with a 95 % interval on the logit scale (delta method; 0 to 1 where singular)."""
+        """Share of the milestones of an age (years) that any list names, with a 95 % interval on the logit scale (delta method; 0 to 1
+        where singular)."""
         theta = np.concatenate([[self.growth * self.sightings.span], self.alpha, [self.beta]])
         z = float(self.sightings.stretch(self.scale)(np.array(age / self.sightings.span)))
 
@@ -127,9 +128,17 @@ def fit(sightings: Sightings, scale: str, *, growth: float | None = None, interv
         low, high = problem.profile(theta, top, covariance)
     k = len(theta) + (0 if fixed is not None else 1)
     return CaptureFit(
-        scale, float(theta[0]) / sightings.span, None if low is None else low / sightings.span, None if high is None else high / sightings.span,
-        theta[1:-1], float(theta[-1]), top, 2.0 * k - 2.0 * top, sightings, covariance,
-    )  # fmt: skip
+        scale,
+        float(theta[0]) / sightings.span,
+        None if low is None else low / sightings.span,
+        None if high is None else high / sightings.span,
+        theta[1:-1],
+        float(theta[-1]),
+        top,
+        2.0 * k - 2.0 * top,
+        sightings,
+        covariance,
+    )
 
 
 @dataclass(frozen=True)

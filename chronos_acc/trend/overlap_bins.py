@@ -33,7 +33,8 @@ class Estimate:
 
 
 def chapman(first: int, second: int, both: int) -> Estimate:
-    """Two lists of ``first`` and ``second`` milestones, ``both`` shared: nearly unbiased estimate and variance (Chapman 1951; Seber 1982)."""
+    """Two lists of ``first`` and ``second`` milestones, ``both`` shared: nearly unbiased estimate and variance (Chapman 1951; Seber
+    1982)."""
     if min(first, second) < both or both < 0:
         raise WrongUse(f"{both} shared milestones cannot exceed the lists' {first} and {second}")
     total = (first + 1) * (second + 1) / (both + 1) - 1
@@ -75,7 +76,8 @@ def _with_interval(total: float, variance: float, seen: int) -> Estimate:
 
 @dataclass(frozen=True)
 class LogLinear:
-    """One log-linear model: the pairs of lists that may depend on one another, its total, deviance, AICc, and the total's own interval (delta method)."""
+    """One log-linear model: the pairs of lists that may depend on one another, its total, deviance, AICc, and the total's own interval
+    (delta method)."""
 
     pairs: tuple[tuple[int, int], ...]
     total: float
@@ -87,7 +89,8 @@ class LogLinear:
 def log_linear_models(mentions: Bools) -> tuple[LogLinear, ...]:
     """Every model with main effects and any set of pairwise dependences (Fienberg 1972) on m milestones by t lists, 2 <= t <= 5.
 
-    Models whose likelihood has no maximum, or that leave no freedom for the unseen cell, are left out. With four lists and more at most two pairs at a time.
+    Models whose likelihood has no maximum, or that leave no freedom for the unseen cell, are left out. With four lists and more at most two
+    pairs at a time.
     """
     t = mentions.shape[1]
     if not 2 <= t <= MOST_LISTS:
@@ -159,10 +162,12 @@ def supported(models: tuple[LogLinear, ...]) -> tuple[LogLinear, ...]:
 
 @dataclass(frozen=True)
 class CoverageBin:
-    """Completeness of one bin of age, years. named: distinct milestones; shared: named by two lists or more; total with interval by ``method``.
+    """Completeness of one bin of age, years. named: distinct milestones; shared: named by two lists or more; total with interval by
+    ``method``.
 
-    method is "chapman" (two lists), "log_linear" (several; log_linear_low and log_linear_high are the range of the well supported models' totals, the
-    interval spans theirs), or "chao" (a lower bound, where that range exceeds a factor of two). chapman: of the pair of lists that shares most. completeness = named/total, its interval from that of the total.
+    method is "chapman" (two lists), "log_linear" (several; log_linear_low and log_linear_high are the range of the well supported models'
+    totals, the interval spans theirs), or "chao" (a lower bound, where that range exceeds a factor of two). chapman: of the pair of lists
+    that shares most. completeness = named/total, its interval from that of the total.
     """
 
     age_from: float
@@ -183,7 +188,8 @@ class CoverageBin:
 
 
 def coverage_bins(ages: Floats, mentions: Bools, fewest: int = 10) -> tuple[CoverageBin, ...]:
-    """Bins of age from the youngest on, each grown until it holds ``fewest`` shared milestones; what is left joins the last. Empty: not estimable.
+    """Bins of age from the youngest on, each grown until it holds ``fewest`` shared milestones; what is left joins the last. Empty: not
+    estimable.
 
     ages (m,) and mentions (m, t) of independent lists, every milestone named at least once.
     """
@@ -227,6 +233,19 @@ def _bin(named: Bools, age_from: float, age_to: float) -> CoverageBin:
         method, total, total_low, total_high = "chao", bound.total, bound.low, bound.high
     total = max(total, float(seen))
     return CoverageBin(
-        age_from, age_to, seen, int((often >= 2).sum()), method, total, max(total_low, float(seen)), max(total_high, float(seen)),
-        seen / total, seen / max(total_high, seen), min(1.0, seen / max(total_low, seen)), bound.total, None if pair is None else pair.total, low, high,
-    )  # fmt: skip
+        age_from,
+        age_to,
+        seen,
+        int((often >= 2).sum()),
+        method,
+        total,
+        max(total_low, float(seen)),
+        max(total_high, float(seen)),
+        seen / total,
+        seen / max(total_high, seen),
+        min(1.0, seen / max(total_low, seen)),
+        bound.total,
+        None if pair is None else pair.total,
+        low,
+        high,
+    )

@@ -62,7 +62,8 @@ class Power:
 
 
 def power(n: int, *, doublings: Sequence[float] = DOUBLINGS, seed: int = 1, replicates: int = 1000, tell: Tell = silent) -> Power:
-    """Simulate log-linear records of n events in a window opened by a milestone, and run the five tests on each. WrongUse below one event."""
+    """Simulate log-linear records of n events in a window opened by a milestone, and run the five tests on each. WrongUse below one
+    event."""
     if n < 1:
         raise WrongUse(f"power for {n} events was asked for; at least 1")
     rows: list[PowerRow] = []
@@ -74,7 +75,7 @@ def power(n: int, *, doublings: Sequence[float] = DOUBLINGS, seed: int = 1, repl
             found["verdict"] = found["laplace"] & found["lewis_robinson"] & right
         rows.extend(_row(test, float(size), n, hit) for test, hit in found.items())
         tell("power", (i + 1) / len(doublings))
-    notes = ("records grow log-linearly, are exactly dated, and the first milestone opens the window; other shapes of growth are easier or harder to see",)
+    notes = ("records grow log-linearly, are exactly dated, and their first milestone opens the window; other shapes are easier or harder",)
     return Power(tuple(rows), n, replicates, seed, notes)
 
 

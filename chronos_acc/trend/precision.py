@@ -20,8 +20,8 @@ Ints = npt.NDArray[np.int64]
 
 @dataclass(frozen=True)
 class Kernel:
-    """The window's datings by log age. edges (w - 1,) between neighbours in log age, oldest last; donor (w,) positions in the window, youngest
-    first; best, unit, sd (w,) of the window's milestones, oldest first."""
+    """The window's datings by log age. edges (w - 1,) between neighbours in log age, oldest last; donor (w,) positions in the window,
+    youngest first; best, unit, sd (w,) of the window's milestones, oldest first."""
 
     floor: float
     edges: Floats
@@ -56,7 +56,8 @@ class Kernel:
         return self.donor[np.searchsorted(self.edges, np.log(np.maximum(present - times, self.floor)))]
 
     def apply(self, times: Floats, low: float, high: float, present: float, rng: np.random.Generator) -> Floats:
-        """Dates as the list would give them: rounded to the donor's unit on the donor's own grid, or blurred by its sd and reflected; all stay in (low, high).
+        """Dates as the list would give them: rounded to the donor's unit on the donor's own grid, or blurred by its sd and reflected; all
+        stay in (low, high).
 
         A date whose every rounding would leave the window keeps its place.
         """

@@ -1,9 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """Regressions of log10 interval on log10 age, on order, and on time: estimators, influence, and a sensitivity row from the datings.
 
-Response: log10 of every closed interval longer than zero (milestones of one instant are joined), in years. Predictors run so that a positive
-slope is speeding: log10_age, the age at the interval's older end; order, counted back from the youngest interval; log10_time, minus log10 of
-the time from the start of the window to the interval's younger end, that is elapsed time counted back.
+Response: log10 of every closed interval longer than zero (milestones of one instant are joined), in years. Predictors run so that a
+positive slope is speeding: log10_age, the age at the interval's older end; order, counted back from the youngest interval; log10_time,
+minus log10 of the time from the start of the window to the interval's younger end, that is elapsed time counted back.
 """
 
 from __future__ import annotations
@@ -20,6 +20,7 @@ from ..errors import WrongUse
 from ..progress import Tell, silent
 from ..record import Record, Window
 from .least_squares import LeastSquares, line
+from .line_estimators import exponential_line, median_line, theil_sen_line
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -86,7 +87,8 @@ class Regressions:
 
 @dataclass(frozen=True)
 class Pairs:
-    """The r closed intervals longer than zero of a window, oldest first: ``older`` positions in the window of the milestone that opens each."""
+    """The r closed intervals longer than zero of a window, oldest first: ``older`` positions in the window of the milestone that opens
+    each."""
 
     older: npt.NDArray[np.int64]
     interval: Floats
@@ -160,7 +162,9 @@ def regress(
                 floored = drawn.floored
                 rows.append(_draw_row(drawn, len(y)))
                 if floored:
-                    notes.append(f"{floored} of {drawn.cells} drawn ages and intervals lay under half the finest dating unit and were set to it")
+                    notes.append(
+                        f"{floored} of {drawn.cells} drawn ages and intervals lay under half the finest dating unit and were set to it"
+                    )
             else:
                 notes.append("every date is exact as written: drawing the datings changes nothing, and no row of draws is given")
     return Regressions(tuple(rows), leverage, floored, tuple(notes))
@@ -171,7 +175,8 @@ def regress(
 
 @dataclass(frozen=True)
 class DrawnSlopes:
-    """slope and r_squared (draws,) of log10 interval on log10 age, dates drawn from their datings; ``floored`` of ``cells`` values were raised."""
+    """slope and r_squared (draws,) of log10 interval on log10 age, dates drawn from their datings; ``floored`` of ``cells`` values were
+    raised."""
 
     slope: Floats
     r_squared: Floats
@@ -180,7 +185,8 @@ class DrawnSlopes:
 
 
 def drawn_slopes(record: Record, *, draws: int, seed: int, tell: Tell = silent) -> DrawnSlopes | None:
-    """The main regression on drawn dates: sorted anew in each draw, values floored at half the finest dating unit. None where no date is uncertain.
+    """The main regression on drawn dates: sorted anew in each draw, values floored at half the finest dating unit. None where no date is
+    uncertain.
 
     A sensitivity, not a confidence interval: dating errors hardly move this slope.
     """
@@ -244,9 +250,17 @@ def _draw_row(drawn: DrawnSlopes, n: int) -> RegressionRow:
         return RegressionRow(RESPONSE, "log10_age", "draws", None, None, None, None, None, n, remark="no draw gave a slope")
     low, median, high = np.quantile(drawn.slope[good], [0.025, 0.5, 0.975])
     return RegressionRow(
-        RESPONSE, "log10_age", "draws", float(median), None, float(low), float(high), float(np.median(drawn.r_squared[good])), n,
+        RESPONSE,
+        "log10_age",
+        "draws",
+        float(median),
+        None,
+        float(low),
+        float(high),
+        float(np.median(drawn.r_squared[good])),
+        n,
         remark="sensitivity to the datings (median and 95 % of draws), not a confidence interval",
-    )  # fmt: skip
+    )
 
 
 # -------------------------------------------------------------------------------------------------------- estimators
@@ -274,32 +288,18 @@ def _least_squares_row(fit: LeastSquares, error: float, predictor: str, estimato
     half = float(stdtrit(n - 2, 0.975)) * error
     finite = np.isfinite(half)
     return RegressionRow(
-        RESPONSE, predictor, estimator, slope, error if finite else None, slope - half if finite else None, slope + half if finite else None,
-        fit.r_squared if np.isfinite(fit.r_squared) else None, n, float(fit.coefficients[0]), remark,
-    )  # fmt: skip
-
-
-def median_line(x: Floats, y: Floats) -> tuple[float, float]:
-    """Intercept and slope of least absolute deviations (quantile regression at one half; Koenker & Bassett 1978), by linear programming."""
-    from scipy import sparse
-    from scipy.optimize import linprog
-
-    n = len(x)
-    centre, scale = float(x.mean()), float(np.abs(x - x.mean()).max())
-    z = (x - centre) / scale
-    unit = sparse.identity(n, format="csc")
-    design = sparse.hstack([sparse.csc_matrix(np.column_stack([np.ones(n), z])), unit, -unit], format="csc")
-    cost = np.concatenate([[0.0, 0.0], np.ones(2 * n)])
-    found = linprog(cost, A_eq=design, b_eq=y, bounds=[(None, None)] * 2 + [(0, None)] * (2 * n), method="highs-ds")
-    intercept, slope = float(found.x[0]), float(found.x[1])
-    # the solution passes through two points: take them exactly
-    near = np.argsort(np.abs(y - intercept - slope * z), kind="stable")
-    apart = near[np.abs(z[near] - z[near[0]]) > 1e-9]
-    i, j = near[0], apart[0]
-    exact = float((y[j] - y[i]) / (z[j] - z[i]))
-    if np.abs(y - y[i] - exact * (z - z[i])).sum() <= np.abs(y - intercept - slope * z).sum() * (1 + 1e-9):
-        slope, intercept = exact, float(y[i] - exact * z[i])
-    return intercept - slope * centre / scale, slope / scale
+        RESPONSE,
+        predictor,
+        estimator,
+        slope,
+        error if finite else None,
+        slope - half if finite else None,
+        slope + half if finite else None,
+        fit.r_squared if np.isfinite(fit.r_squared) else None,
+        n,
+        float(fit.coefficients[0]),
+        remark,
+    )
 
 
 def _median(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
@@ -321,30 +321,19 @@ def _median(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     flat = float(np.abs(y - np.median(y)).sum())
     return [
         RegressionRow(
-            RESPONSE, predictor, "median", slope, error, None if half is None else slope - half, None if half is None else slope + half,
-            1.0 - float(np.abs(left).sum()) / flat if flat > 0 else None, n, intercept,
+            RESPONSE,
+            predictor,
+            "median",
+            slope,
+            error,
+            None if half is None else slope - half,
+            None if half is None else slope + half,
+            1.0 - float(np.abs(left).sum()) / flat if flat > 0 else None,
+            n,
+            intercept,
             "r_squared is the share of absolute deviation explained (Koenker & Machado 1999)",
         )
-    ]  # fmt: skip
-
-
-def theil_sen_line(x: Floats, y: Floats) -> tuple[float, float, float, float]:
-    """Slope, intercept (through the medians), and 95 % ends: the median of all pairwise slopes (Theil 1950), with Sen's interval (1968), ties allowed for."""
-    i, j = np.triu_indices(len(x), 1)
-    apart = x[i] != x[j]
-    slopes = np.sort((y[j] - y[i])[apart] / (x[j] - x[i])[apart])
-    slope = float(np.median(slopes))
-    n, pairs = len(x), len(slopes)
-
-    def ties(values: Floats) -> float:
-        _, counts = np.unique(values, return_counts=True)
-        return float((counts * (counts - 1.0) * (2.0 * counts + 5.0)).sum())
-
-    variance = (n * (n - 1.0) * (2.0 * n + 5.0) - ties(x) - ties(y)) / 18.0
-    z = float(ndtri(0.025))
-    low = max(round((pairs + z * np.sqrt(variance)) / 2.0) - 1, 0)
-    high = min(round((pairs - z * np.sqrt(variance)) / 2.0), pairs - 1)
-    return slope, float(np.median(y) - slope * np.median(x)), float(slopes[low]), float(slopes[high])
+    ]
 
 
 def _theil_sen(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
@@ -352,31 +341,6 @@ def _theil_sen(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
         return []
     slope, intercept, low, high = theil_sen_line(x, y)
     return [RegressionRow(RESPONSE, predictor, "theil_sen", slope, None, low, high, None, len(x), intercept)]
-
-
-def exponential_line(x: Floats, interval: Floats) -> tuple[Floats, Floats]:
-    """Coefficients (2,) and standard errors (2,) of ln mean interval on x, intervals exponential (a log-link GLM), by Newton steps."""
-    design = np.column_stack([np.ones(len(x)), x - x.mean()])
-    beta = np.linalg.lstsq(design, np.log(interval) + 0.5772156649015329, rcond=None)[0]
-
-    def value(b: Floats) -> float:
-        eta = design @ b
-        return float((eta + interval * np.exp(-eta)).sum())
-
-    here = value(beta)
-    for _ in range(100):
-        ratio = interval * np.exp(-(design @ beta))
-        step = np.linalg.solve((design * ratio[:, None]).T @ design, design.T @ (ratio - 1.0))
-        size = 1.0
-        while value(beta + size * step) > here and size > 1e-10:
-            size /= 2
-        beta = beta + size * step
-        here = value(beta)
-        if np.abs(step).max() < 1e-13 * (1 + np.abs(beta).max()):
-            break
-    covariance = np.linalg.inv(design.T @ design)
-    shift = np.array([[1.0, -float(x.mean())], [0.0, 1.0]])
-    return shift @ beta, np.sqrt(np.diag(shift @ covariance @ shift.T))
 
 
 def _glm(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
@@ -388,15 +352,28 @@ def _glm(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     intercept = float(beta[0]) / np.log(10) + float(y.mean())
     return [
         RegressionRow(
-            RESPONSE, predictor, "glm", slope, error, slope - half, slope + half, None, len(x), intercept,
+            RESPONSE,
+            predictor,
+            "glm",
+            slope,
+            error,
+            slope - half,
+            slope + half,
+            None,
+            len(x),
+            intercept,
             "exponential response: not the likelihood of the waiting times unless the rate stays constant between milestones",
         )
-    ]  # fmt: skip
+    ]
 
 
 _FITS: dict[str, Callable[[Floats, Floats, str], list[RegressionRow]]] = {
-    "ols_hc3": _ols_hc3, "ols_hac": _ols_hac, "median": _median, "theil_sen": _theil_sen, "glm": _glm,
-}  # fmt: skip
+    "ols_hc3": _ols_hc3,
+    "ols_hac": _ols_hac,
+    "median": _median,
+    "theil_sen": _theil_sen,
+    "glm": _glm,
+}
 
 
 def _leverage(fit: LeastSquares, pairs: Pairs, window: Window, record: Record) -> tuple[LeverageRow, ...]:
@@ -408,7 +385,13 @@ def _leverage(fit: LeastSquares, pairs: Pairs, window: Window, record: Record) -
         j = int(window.index[pairs.older[i]])
         out.append(
             LeverageRow(
-                int(record.id[j]), record.title[j], float(pairs.age[i]), float(pairs.interval[i]), float(fit.hat[i]), float(cook[i]), float(without[i])
+                int(record.id[j]),
+                record.title[j],
+                float(pairs.age[i]),
+                float(pairs.interval[i]),
+                float(fit.hat[i]),
+                float(cook[i]),
+                float(without[i]),
             )
         )
     return tuple(out)

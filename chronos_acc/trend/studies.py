@@ -1,8 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """Lists as studies: does each independent list say the same, on one window that all of them cover?
 
-Lists share milestones, so their estimates are not independent and Cochran's test hardly ever rejects. Equal slopes are tested by exchanging the labels of
-lists within milestones instead: two lists trade the milestones that only one of them names, keeping their sizes and each milestone's support.
+Lists share milestones, so their estimates are not independent and Cochran's test hardly ever rejects. Equal slopes are tested by exchanging
+the labels of lists within milestones instead: two lists trade the milestones that only one of them names, keeping their sizes and each
+milestone's support.
 """
 
 from __future__ import annotations
@@ -37,7 +38,8 @@ STATISTICS = ("growth", "slope", "age_exponent")
 
 @dataclass(frozen=True)
 class StudyRow:
-    """One independent list on the common window. growth per year, p_value: laplace exact, two-sided; ``pooled`` whether it takes part in the pooling."""
+    """One independent list on the common window. growth per year, p_value: laplace exact, two-sided; ``pooled`` whether it takes part in
+    the pooling."""
 
     list: str
     n: int = 0
@@ -56,7 +58,8 @@ class StudyRow:
 
 @dataclass(frozen=True)
 class PooledRow:
-    """One statistic pooled over the lists (Hartung–Knapp), and p_equal of the test that all lists are alike, by exchanging labels within milestones."""
+    """One statistic pooled over the lists (Hartung–Knapp), and p_equal of the test that all lists are alike, by exchanging labels within
+    milestones."""
 
     statistic: str
     k: int
@@ -116,7 +119,9 @@ def lists_as_studies(record: Record, *, seed: int, replicates: int = 499, tell: 
         row, values = _study(record, members, name, start, present, seed)
         rows.append(row)
         numbers.append(values)
-    notes = [f"lists as studies: one window for all, from {start:.6g} to {present:.6g}, the stretch that every list of more than {FEWEST} milestones covers"]
+    notes = [
+        f"lists as studies: one window for all, from {start:.6g} to {present:.6g}, which every list of more than {FEWEST} milestones covers"
+    ]
     chosen = [j for j, row in enumerate(rows) if row.pooled]
     if len(chosen) < 2:
         notes.append(f"fewer than two lists have {FEWEST} counted milestones in it: nothing is pooled")
@@ -167,9 +172,20 @@ def _study(
     fraction = (window.present - window.counted) / window.span
     p = float(laplace_p(-kernels.laplace(fraction), window.n, seed))
     row = StudyRow(
-        name, window.n, slope, slope_low, slope_high, exponent.estimate, exponent.low, exponent.high, growth, low, high, p,
+        name,
+        window.n,
+        slope,
+        slope_low,
+        slope_high,
+        exponent.estimate,
+        exponent.low,
+        exponent.high,
+        growth,
+        low,
+        high,
+        p,
         window.n >= FEWEST,
-    )  # fmt: skip
+    )
     return row, {
         "growth": _with_error(growth, low, high),
         "slope": (slope, error) if slope is not None and error is not None else nothing["slope"],

@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """The verdict: a fixed sequence of questions at 5 %, as a table of rules.
 
-The first rule of the main table that holds gives the code and the sentence; the clauses that hold after it add to it. Every number said here stands in one of the
-tables of the analysis.
+The first rule of the main table that holds gives the code and the sentence; the clauses that hold after it add to it. Every number said
+here stands in one of the tables of the analysis.
 """
 
 from __future__ import annotations
@@ -19,7 +19,8 @@ FEWEST_INTERVALS = 5
 
 @dataclass(frozen=True)
 class FormTried:
-    """A form of forgetting as the verdict sees it: estimate and interval in years, adequacy, the oldest listed share, unlisted events with interval."""
+    """A form of forgetting as the verdict sees it: estimate and interval in years, adequacy, the oldest listed share, unlisted events with
+    interval."""
 
     form: str  # exponential or power
     estimate: float
@@ -44,7 +45,8 @@ class Evidence:
 
     doublings over the window with the wider 95 % interval; half_life in years with its interval (None: no forgetting needed, or unbounded);
     power: Laplace's at 1, 2 and 4 doublings for this n; smallest: fewest doublings that would show, None where none would.
-    slope_p: log_uniform's upper tail for the slope. corrected: growth per year after correction for what lists missed independently, times window over ln 2.
+    slope_p: log_uniform's upper tail for the slope. corrected: growth per year after correction for what lists missed independently, times
+    window over ln 2.
     """
 
     n: int
@@ -111,7 +113,8 @@ class Rule:
 
 @dataclass(frozen=True)
 class Verdict:
-    """code and clauses of the rules that held, the sentence, and the weakest null that the record does not rule out (None: all are ruled out)."""
+    """code and clauses of the rules that held, the sentence, and the weakest null that the record does not rule out (None: all are ruled
+    out)."""
 
     code: str
     clauses: tuple[str, ...]
@@ -134,13 +137,12 @@ def _range(e: Evidence) -> str:
 
 def _too_few(e: Evidence) -> str:
     some = (
-        f"a growth of {words.digits(e.smallest)} doublings over the window is the smallest that a list of this size would show in four cases of five"
+        f"the smallest growth that so few would show in four cases of five is {words.digits(e.smallest)} doublings over the window"
         if e.smallest is not None
         else "no growth, however large, would show in a list of this size"
     )
-    return (
-        f"Too few to tell: {_events(e)} and {e.intervals} closed intervals longer than zero; at least {FEWEST_EVENTS} and {FEWEST_INTERVALS} are needed; {some}."
-    )
+    have = f"{_events(e)} and {e.intervals} closed intervals longer than zero"
+    return f"Too few to tell: {have}; at least {FEWEST_EVENTS} and {FEWEST_INTERVALS} are needed; {some}."
 
 
 def _no_trend(e: Evidence) -> str:
@@ -151,13 +153,16 @@ def _no_trend(e: Evidence) -> str:
 def _uneven(e: Evidence) -> str:
     p2 = f" (lewis_robinson {words.p(e.p2)})" if e.p2 is not None else ""
     p1 = f" (laplace {words.p(e.p1)})" if e.p1 is not None else ""
-    return f"Uneven spacing alone gives this: a steady rate with independent intervals is ruled out{p1}, but the same intervals in another order often look as trended{p2}."
+    return (
+        f"Uneven spacing alone gives this: evenly random milestones would not{p1}, but the same intervals in another order often look as "
+        f"trended{p2}."
+    )
 
 
 def _slowing(e: Evidence) -> str:
     return (
-        f"Slowing down{_both(e)}: the milestones thin out towards the present. Look at the recent end first: recognition takes time, and the latest years may not "
-        "be listed yet."
+        f"Slowing down{_both(e)}: the milestones thin out towards the present. Look at the recent end first: recognition takes time, and "
+        "the latest years may not be listed yet."
     )
 
 
@@ -172,12 +177,13 @@ def _forgetting(e: Evidence) -> str:
     if f.form == "exponential":
         memory = f"half forgotten every {words.years(f.estimate)}"
     else:
-        memory = f"half forgotten at an age of {words.years(f.estimate)} and ever more slowly after that (listed with chance 1/(1 + age/{words.years(f.estimate)}))"
+        memory = f"half forgotten at an age of {words.years(f.estimate)} and ever more slowly after that"
     ends = f" (95 % {words.span(f.low, f.high)})"
     high = None if f.unlisted_high is None else words.count(f.unlisted_high)
     return (
-        f"The milestones crowd towards the present{_both(e)}, but a steady rate explains that as well, if it is {memory}{ends}: then {words.percent(f.oldest_share)} of "
-        f"the events as old as the oldest ({words.years(f.oldest_age)}) are listed, and {words.count(f.unlisted)} are unlisted "
+        f"The milestones crowd towards the present{_both(e)}, but a steady rate explains that as well, if it is {memory}{ends}: then "
+        f"{words.percent(f.oldest_share)} of the events as old as the oldest ({words.years(f.oldest_age)}) are listed, and "
+        f"{words.count(f.unlisted)} are unlisted "
         f"(95 % {words.between(words.count(f.unlisted_low), high)}). One list cannot say which."
     )
 
@@ -192,9 +198,8 @@ def _log_uniform(e: Evidence) -> str:
 
 
 def _shape(e: Evidence) -> str:
-    tried = [
-        f"{'2^(−age/h)' if f.form == 'exponential' else '1/(1 + age/s)'} ({words.p(f.fit_p)})" for f in e.forms if f.fit_p is not None
-    ]  # fmt: skip
+    formula = {"exponential": "2^(−age/h)", "power": "1/(1 + age/s)"}
+    tried = [f"{formula[f.form]} ({words.p(f.fit_p)})" for f in e.forms if f.fit_p is not None]
     forms = f" The forms tried: a steady rate remembered as {words.listed(tried)}; neither suffices." if tried else ""
     return f"Speeding up{_both(e)}, with a shape that simple forgetting does not give.{forms}"
 
@@ -202,8 +207,8 @@ def _shape(e: Evidence) -> str:
 def _completeness(e: Evidence) -> str:
     low, high = (None if v is None else words.digits(v) for v in (e.corrected_low, e.corrected_high))
     return (
-        f"It survives correction for what the {e.lists} lists missed independently: {words.digits(e.corrected or 0.0)} doublings over the window remain "
-        f"(95 % {words.between(low or '−∞', high)}); what all lists forgot alike stays unseen."
+        f"It survives correction for what the {e.lists} lists missed independently: {words.digits(e.corrected or 0.0)} doublings over the "
+        f"window remain (95 % {words.between(low or '−∞', high)}); what all lists forgot alike stays unseen."
     )
 
 
@@ -211,10 +216,17 @@ def _tail(e: Evidence) -> str:
     """What every sentence carries: n, the growth in doublings with its interval, the half-life, and the power at this n."""
     parts = [f"n = {e.n:,}"]
     if e.doublings is not None:
-        ends = "" if e.doublings_low is None or e.doublings_high is None else f" (95 % {words.digits(e.doublings_low)} to {words.digits(e.doublings_high)})"
+        ends = (
+            ""
+            if e.doublings_low is None or e.doublings_high is None
+            else f" (95 % {words.digits(e.doublings_low)} to {words.digits(e.doublings_high)})"
+        )
         parts.append(f"growth {words.digits(e.doublings)} doublings over {words.years(e.span)}{ends}")
     if e.half_life is not None:
-        parts.append(f"the same curve as a steady rate half forgotten every {words.years(e.half_life)} (95 % {words.span(e.half_life_low, e.half_life_high)})")
+        parts.append(
+            f"the same curve as a steady rate half forgotten every {words.years(e.half_life)} "
+            f"(95 % {words.span(e.half_life_low, e.half_life_high)})"
+        )
     elif e.doublings is not None:
         parts.append("no half-life of forgetting, since the rate does not grow")
     if e.power:
@@ -237,11 +249,19 @@ RULES: tuple[Rule, ...] = (
         5,
         "log_uniform",
         True,
-        lambda e: e.speeding and ((e.age_exponent_low is not None and e.age_exponent_low < 1) or (e.slope_p is not None and e.slope_p >= LEVEL)),
+        lambda e: (
+            e.speeding and ((e.age_exponent_low is not None and e.age_exponent_low < 1) or (e.slope_p is not None and e.slope_p >= LEVEL))
+        ),
         _log_uniform,
     ),
     Rule(6, "shape", False, lambda e: e.speeding and e.form is None, _shape),
-    Rule(7, "completeness", True, lambda e: e.speeding and e.lists >= 2 and e.corrected_low is not None and e.corrected_low > 0, _completeness),
+    Rule(
+        7,
+        "completeness",
+        True,
+        lambda e: e.speeding and e.lists >= 2 and e.corrected_low is not None and e.corrected_low > 0,
+        _completeness,
+    ),
 )
 
 SPEEDING = ("forgetting", "shape")  # the codes that clauses can follow
@@ -256,7 +276,8 @@ def judge(e: Evidence) -> Verdict:
 
 
 def weakest_null(e: Evidence) -> str | None:
-    """The first null that the record does not rule out at 5 %: steady (laplace), shuffled (lewis_robinson), recall_decay (adequate), log_uniform (slope).
+    """The first null that the record does not rule out at 5 %: steady (laplace), shuffled (lewis_robinson), recall_decay (adequate),
+    log_uniform (slope).
 
     The last two explain speeding only; None where every one that applies is ruled out, or nothing could be tested.
     """

@@ -38,7 +38,8 @@ def _placed(window: Window, ages: Floats) -> Floats:
 
 
 def recall_decay(*, half_life: float | None = None, scale: float | None = None, fitted: bool = False) -> Null:
-    """The null of forgetting with a half-life (exponential) or a scale (power), in years, exactly one of them; ``fitted`` where the record gave it."""
+    """The null of forgetting with a half-life (exponential) or a scale (power), in years, exactly one of them; ``fitted`` where the record
+    gave it."""
     if (half_life is None) == (scale is None):
         raise WrongUse("recall_decay takes a half_life or a scale, in years")
     how = "fitted" if fitted else "given"
@@ -51,4 +52,3 @@ def recall_decay(*, half_life: float | None = None, scale: float | None = None, 
             raise WrongUse(f"a scale of {scale} years is not above zero")
         make, setting = partial(_power, scale=scale), f"1/(1 + age/{scale:.4g} years), {how}"
     return Null("recall_decay", QUESTION, make, kept_ends, setting=setting, fitted=fitted)
-

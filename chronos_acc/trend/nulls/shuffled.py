@@ -13,8 +13,8 @@ Floats = npt.NDArray[np.float64]
 
 
 def _make(window: Window, rng: np.random.Generator, size: int) -> Floats:
-    """Closed intervals between milestones permuted; the oldest milestone and the open interval stay, and so do milestones tied with either end of the
-    window. Ages are rebuilt from the youngest, so that recent dates lose no digits in a long window."""
+    """Closed intervals between milestones permuted; the oldest milestone and the open interval stay, and so do milestones tied with either
+    end of the window. Ages are rebuilt from the youngest, so that recent dates lose no digits in a long window."""
     opening, closing = _kept(window)
     first, last = opening - 1, len(window.times) - closing
     mixed = rng.permuted(np.broadcast_to(np.diff(window.times[first : last + 1]), (size, max(last - first, 0))), axis=1)
