@@ -194,7 +194,8 @@ class _Spacing:
             before = float(window.times[0] - window.start)
             if renewal_at_start:
                 intervals, before, counted_first = np.concatenate([[before], intervals]), 0.0, False
-        return cls(before, intervals, window.span, counted_first, not events.closed)
+        largest = max(abs(window.start), abs(window.present))
+        return cls(before, _with_exact_ties(intervals, 8.0 * np.finfo(float).eps * largest), window.span, counted_first, not events.closed)
 
     def laplace(self, intervals: Floats) -> Floats:
         """Laplace's statistic of the records (...) with these intervals in this order."""
@@ -204,6 +205,16 @@ class _Spacing:
         n = times.shape[-1] + self.counted_first
         total = times.sum(axis=-1) + (self.before if self.counted_first else 0.0)
         return np.asarray(np.sqrt(12.0 * n) * (total / (n * self.span) - 0.5))
+
+
+def _with_exact_ties(intervals: Floats, slack: float) -> Floats:
+    """The intervals, made equal where only the rounding of their dates parts them: ties must not depend on the unit or the origin of time."""
+    order = np.argsort(intervals, kind="stable")
+    ordered = intervals[order]
+    group = np.concatenate([[0], np.cumsum(np.diff(ordered) > slack)]) if len(ordered) else np.empty(0, dtype=np.int64)
+    out = np.empty_like(intervals)
+    out[order] = ordered[np.searchsorted(group, group, side="left")]
+    return out
 
 
 def _renewal_rows(spacing: _Spacing, seed: int, replicates: int, strict_ties: bool, notes: list[str]) -> dict[str, TestRow]:

@@ -82,7 +82,7 @@ def dated_to_the_year(count: int, rng: np.random.Generator) -> dict[str, float]:
             out[name] = float((np.cumsum(reversal_law(99))[counted.astype(int)] < 0.025).mean())
         else:
             order = np.argsort(rng.random((199, 99)), axis=1)
-            p = [(1 + (kernels.reversals(row[order], ties) <= value).sum()) / 200 for row, value in zip(gaps[:400], counted[:400], strict=True)]
+            p = [(1 + (kernels.reversals(row[order], ties) <= value).sum()) / 200 for row, value in zip(gaps[:150], counted[:150], strict=True)]
             out[name] = float((np.array(p) < 0.025).mean())
     return out
 
