@@ -154,7 +154,7 @@ def suits(seed: int) -> bool:
 # --- how they wrote it down ------------------------------------------------------------------------------------------------------
 
 ERROR = {"rock": 0.005, "river": 0.02, "ice": 0.03, "people": 0.025}  # the survey's standard error as a share of age
-WORDS = ("about", "some", "roughly", "around")
+WORDS = ("about", "around", "roughly", "approximately")
 
 
 def write_survey(e: Event, entry: Entry, rng: random.Random) -> list[str]:

@@ -78,9 +78,9 @@ class Canvas:
         for row in range(self.row(y1), self.row(y0) + 1):
             for column in range(self.column(x0), self.column(x1) + 1):
                 here = self._glyph[row][column]
-                if here in ("", "─", "│", "┼"):
+                if here in ("", "─", "│", "┼", "┊", "┄"):
                     mine = "─" if level else "│"
-                    self._glyph[row][column] = mine if here in ("", mine) else "┼"
+                    self._glyph[row][column] = mine if here in ("", mine, "┊", "┄") else "┼"
                     self._ink[row][column] = ink
 
     def glyph(self, x: float, y: float, mark: str, ink: str) -> None:

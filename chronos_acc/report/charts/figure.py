@@ -26,6 +26,7 @@ _STYLE = {
     "ytick.labelcolor": palette.INK, "text.color": palette.INK, "axes.linewidth": 0.8, "svg.hashsalt": "chronos-acc", "svg.fonttype": "path",
     "pdf.fonttype": 42, "hatch.linewidth": 0.5, "path.simplify": True, "axes.unicode_minus": True,
 }  # fmt: skip
+_NOT_OURS = ("backend", "backend_fallback", "interactive", "toolbar")  # of a person's session; figures are drawn without them
 _METADATA: dict[str, dict[str, Any]] = {
     "png": {"Software": "chronos-acc"},
     "svg": {"Date": None, "Creator": "chronos-acc"},
@@ -47,7 +48,8 @@ def to_figure(data: ChartData, path: str | os.PathLike[str]) -> Path:
         from matplotlib.figure import Figure
     except ImportError:
         raise WrongUse('figures need matplotlib: pip install "chronos-acc[figures]", or draw the chart in the terminal') from None
-    with matplotlib.rc_context({**matplotlib.rcParamsDefault, **_STYLE}):
+    defaults: dict[Any, Any] = {k: v for k, v in matplotlib.rcParamsDefault.items() if k not in _NOT_OURS}
+    with matplotlib.rc_context(defaults | _STYLE):
         figure = Figure(figsize=(WIDTH, _height(data)), dpi=300, layout="constrained", facecolor=palette.PAPER)
         _compose(figure, data)
         try:
@@ -163,7 +165,7 @@ def _rule(ax: Any, s: Series) -> Any:
     handle = None
     for i in range(len(s)):
         draw, value = (ax.axvline, s.x[i]) if s.x else (ax.axhline, s.y[i])
-        handle = draw(value, color=_colour(s), lw=0.9, linestyle=(0, (4, 2.5)), zorder=2)
+        handle = draw(value, color=_colour(s), lw=0.9, linestyle=(0, (1, 2)) if s.role == "faint" else (0, (4, 2.5)), zorder=2)
     return handle
 
 

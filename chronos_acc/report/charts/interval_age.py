@@ -36,10 +36,10 @@ def build(inputs: Inputs) -> ChartData:
     for stream, (null, name) in enumerate(((LOG_UNIFORM, "picked evenly per log age, 95 %"), (STEADY, "steady rate, 95 %"))):
         x, a, b = interval_band(record, window, null, seed=inputs.seed, floor=floor, stream=stream)
         bands.append(Series(name, "band", "null", floats(x), y_low=floats(a), y_high=floats(b)))
-    slope, level, r2 = (float(v) for v in kernels.log_log(ages, gaps))
-    ends = np.array([ages.min(), ages.max()]) if len(ages) else np.empty(0)
     lines = []
+    slope, level = (float(v) for v in kernels.log_log(ages, gaps)[:2]) if len(ages) > 2 else (np.nan, np.nan)
     if np.isfinite(slope):
+        ends = np.array([ages.min(), ages.max()])
         lines.append(Series(f"least squares, slope {slope:.2f}", "line", "law", floats(ends), floats(10.0 ** (level + slope * np.log10(ends)))))
     points = Series(
         "milestone, with 95 % bars", "dots", "data", floats(ages), floats(gaps), floats(young), floats(old), floats(low), floats(high),

@@ -35,8 +35,8 @@ def build(inputs: Inputs) -> ChartData:
     common = [(place[r.list], r.slope, r.slope_low, r.slope_high) for r in studies.rows if r.slope is not None and r.list in place]
     pooled = [r for r in studies.pooled if r.statistic == "slope"]
     series = [
-        Series("1: even picking per log age", "rule", "null", (1.0,), label=("1: even picking",)),
-        Series("0: no change with age", "rule", "faint", (0.0,), label=("0: no change",)),
+        Series("1: even picking per log age", "rule", "null", (1.0,)),
+        Series("0: no change with age", "rule", "faint", (0.0,)),
         _dots("the whole list, 95 %", "faint" if common else "data", own, OWN if common else 0.0, names),
     ]
     if common:

@@ -52,16 +52,18 @@ def build(inputs: Inputs) -> ChartData:
 
 def _band(form: TippingForm, grid: Floats) -> Series:
     """Between the forgetting of both ends of the interval; an unbounded end is no forgetting at all."""
+    exponential = form.form == "exponential"
     low = form.low if form.low is not None else form.estimate
-    decay = np.exp2 if form.form == "exponential" else None
-    lower, upper = (_curve(decay is not None, h, grid) for h in (low, form.high))
-    name = f"95 % of the {'half-life' if form.form == 'exponential' else 'scale'}"
+    lower, upper = (_curve(exponential, size, grid) for size in (low, form.high))
+    name = f"95 % of the {'half-life' if exponential else 'scale'}"
     return Series(name, "band", "null", floats(grid), y_low=floats(lower), y_high=floats(upper))
 
 
 def _curve(exponential: bool, size: float | None, grid: Floats) -> Floats:
     if size is None:
         return np.ones_like(grid)
+    if size == 0:
+        return np.zeros_like(grid)
     return np.asarray(np.exp2(-grid / size) if exponential else 1.0 / (1.0 + grid / size))
 
 

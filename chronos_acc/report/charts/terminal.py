@@ -75,8 +75,7 @@ def _draw(x: Axis, panel: Panel, columns: int, rows: int, margin: int, width: in
             bands += 1
     for s in panel.series:
         if s.mark in ("line", "steps"):
-            ink, pattern = _style(panel, s, laws)
-            _stroke(canvas, x, panel.y, s, ink, pattern)
+            _stroke(canvas, x, panel.y, s, *_style(panel, s, laws))
             laws += s.role == "law"
         elif s.mark == "rule":
             _rule(canvas, x, panel.y, s)
@@ -210,7 +209,7 @@ def _legend(data: ChartData, width: int) -> list[list[tuple[str, str]]]:
     for panel in data.panels:
         bands = laws = dots = 0
         for s in panel.series:
-            mark, ink = "", s.role
+            mark, ink = "", str(s.role)
             if s.mark == "band":
                 mark, bands = SHADES[min(bands, 1)] * 2, bands + 1
             elif s.mark in ("line", "steps"):
