@@ -8,12 +8,29 @@ from dataclasses import replace
 
 from ..errors import RecordRefused, WrongUse
 from ..progress import Tell
-from . import depth, leave_out, recall_decay, recent_end, support
+from . import (
+    completeness, covariates, dating, depth, equal_effort, false_splits, granularity, importance, leave_out, lists, merging, recall_decay, recent_end, support,
+)  # fmt: skip
 from .check import Answer, Check, Context, Row
 from .growth import growth
 from .result import Bias, questions
 
-CHECKS: tuple[Check, ...] = (recall_decay.CHECK, support.CHECK, leave_out.CHECK, depth.CHECK, recent_end.CHECK)
+CHECKS: tuple[Check, ...] = (
+    recall_decay.CHECK,
+    completeness.CHECK,
+    support.CHECK,
+    importance.CHECK,
+    granularity.CHECK,
+    leave_out.CHECK,
+    depth.CHECK,
+    recent_end.CHECK,
+    dating.CHECK,
+    merging.CHECK,
+    false_splits.CHECK,
+    equal_effort.CHECK,
+    covariates.CHECK,
+    lists.CHECK,
+)
 LEAST_MILESTONES = 3
 
 __all__ = ["CHECKS", "Answer", "Bias", "Check", "Context", "Row", "run_checks"]

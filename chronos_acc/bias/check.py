@@ -3,11 +3,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
-from ..merge.entries import Entries
+from ..merge.entries import Decision, Entries
 from ..progress import Tell, silent
 from ..record import Record
 
@@ -43,6 +43,7 @@ class Context:
     milestone: Any = None
     exposure: Any = None
     tell: Tell = silent
+    decisions: Sequence[Decision] = ()  # what a person settled about pairs, for the checks that merge anew
 
 
 @dataclass(frozen=True)

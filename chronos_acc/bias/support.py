@@ -11,7 +11,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from .capture_curve import fit, steady_growth
+from .capture_curve import capture_curve, steady_growth
 from .check import Answer, Check, Context, Row
 from .growth import growth
 from .rows import ENOUGH, LEVEL, count, number, simulated_row
@@ -22,9 +22,9 @@ NULL = "steady, fitted capture curve"
 def run(context: Context) -> Answer:
     record = context.record
     published = growth(record.window)
-    curve = fit(record)
+    curve = capture_curve(record)
     if curve is None:
-        return Answer(notes=("support: needs two independent lists that share three milestones or more inside the window",))
+        return Answer(notes=("support: needs two independent lists that share five milestones or more inside the window",))
     rows: list[Row] = []
     for threshold in range(1, int(record.support.max(initial=0)) + 1):
         part = record if threshold == 1 else record.only(min_support=threshold)
@@ -35,7 +35,7 @@ def run(context: Context) -> Answer:
         null = steady_growth(curve, threshold, found.n, part.window.span, rng=rng, size=context.replicates)
         new = simulated_row(
             "support", float(threshold), found.n, found.estimate, NULL, null, published,
-            low=found.low, high=found.high, excess=found.estimate - float(np.median(null)), p_steady=found.p_value, capture_form=curve.form,
+            low=found.low, high=found.high, excess=found.estimate - float(np.median(null)), p_steady=found.p_value, capture_scale=curve.scale,
         )  # fmt: skip
         rows.append(_never_upgraded(new, published.estimate, published.p_value))
     at = 1 if len(rows) > 1 and rows[1].n >= ENOUGH else 0
