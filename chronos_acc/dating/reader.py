@@ -7,9 +7,11 @@ import re
 from ..errors import DateRefused
 from .clean import clean
 from .dating import Reading
-from .notations import NOTATIONS, Notation
+from .notations import NOTATIONS, Notation, ago, before_present, era
+from .number import split_number
 from .settings import Settings
 from .span import Span, finish
+from .units import find_unit
 
 LONGEST = 200
 """Longer texts are prose, not dates."""
@@ -64,11 +66,16 @@ def _with_unit(text: str, settings: Settings, unit: str | None) -> str:
     return f"{plain} {word.strip()}" if word and takes_unit(plain) else plain
 
 
+_OF_ZERO = {"ce": era.NOTATION, "bce": era.NOTATION, "compiled": ago.NOTATION, "1950": before_present.NOTATION, "2000": before_present.NOTATION}
+_HIGHEST = max(notation.level for notation in NOTATIONS)
+_BELOW = {level: tuple(notation for notation in NOTATIONS if notation.level < level) for level in range(_HIGHEST + 1)}
+
+
 def read_clean(text: str, settings: Settings) -> tuple[Notation, Span]:
     """The one reading of a cleaned text and its notation; raises DateRefused with a reason that follows the text."""
     if len(text) > LONGEST:
         raise DateRefused(f"is longer than {LONGEST} characters; give the date alone")
-    found = _try(text, settings, len(NOTATIONS))
+    found = _try(text, settings, _HIGHEST + 1)
     if found is None:
         raise DateRefused(f"is read by no notation; {_hint(text)}")
     return found
@@ -100,8 +107,16 @@ def _try(text: str, settings: Settings, below: int) -> tuple[Notation, Span] | N
     first: tuple[Notation, Span] | None = None
     if not text:
         return None
-    for notation in NOTATIONS:
-        if notation.level >= below:
+    quantity = split_number(text, settings.decimal)
+    if quantity is not None and quantity[1]:  # most texts of most lists: a number and a unit, which no other notation reads (tested)
+        unit = find_unit(quantity[1])
+        if unit is not None and unit.zero in _OF_ZERO:
+            notation = _OF_ZERO[unit.zero]
+            span = notation.read(text, settings, part)
+            return None if span is None else (notation, span)
+    signs = frozenset(text)
+    for notation in NOTATIONS if below > _HIGHEST else _BELOW[below]:
+        if notation.marks and notation.marks.isdisjoint(signs):
             continue
         span = notation.read(text, settings, part)
         if span is None:

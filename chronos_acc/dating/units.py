@@ -56,6 +56,7 @@ def _table() -> dict[str, Unit]:
     def put(unit: Unit, *spellings: str) -> None:
         for spelling in spellings:
             table.setdefault(" ".join(spelling.split()), unit)
+        table.setdefault(unit.name, unit)  # the usual spelling is found at once
 
     for power, name in _NAMES.items():
         compiled, bp, b2k = Unit(name, power, "compiled"), Unit(f"{name} BP" if power else "BP", power, "1950"), Unit(f"{name} b2k" if power else "b2k", power, "2000")
@@ -98,4 +99,4 @@ def tidy_unit(text: str) -> str:
 
 def find_unit(text: str) -> Unit | None:
     """The unit that a spelling stands for, or None."""
-    return UNITS.get(tidy_unit(text))
+    return UNITS.get(text) or UNITS.get(tidy_unit(text))

@@ -39,4 +39,4 @@ def age(number: Number, unit: Unit, settings: Settings) -> Span:
                 ("digits",) if number.whole and number.digits[-1] == "0" else ())
 
 
-NOTATION = Notation("ago", "66.0 Ma", "an age in a, ka, Ma, Ga or in words, counted back from the compile year", read)
+NOTATION = Notation("ago", "66.0 Ma", "an age in a, ka, Ma, Ga or in words, counted back from the compile year", read, marks=frozenset("aAyY"))

@@ -19,4 +19,4 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     return age(found[0], unit, settings) if unit is not None and unit.zero in ("1950", "2000") else None
 
 
-NOTATION = Notation("before present", "11650 cal BP", "an age counted back from 1950 (BP) or 2000 (b2k)", read)
+NOTATION = Notation("before present", "11650 cal BP", "an age counted back from 1950 (BP) or 2000 (b2k)", read, marks=frozenset("bB"))

@@ -40,4 +40,4 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     return flat("century", low, high, f"{unit} {number}{' BCE' if low < 1 else ''}, {years}")
 
 
-NOTATION = Notation("century", "19th century", "a century or millennium", read)
+NOTATION = Notation("century", "19th century", "a century or millennium", read, marks=frozenset("cCmM"))

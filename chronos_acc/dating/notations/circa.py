@@ -51,4 +51,4 @@ def widen(span: Span, settings: Settings) -> Span:
                          uses=(*span.uses, *uses))
 
 
-NOTATION = Notation("circa", "c. 1850", "a date said to be about right", read, level=3)
+NOTATION = Notation("circa", "c. 1850", "a date said to be about right", read, level=3, marks=frozenset("cCaAoOeE~?"))

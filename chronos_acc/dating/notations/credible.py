@@ -42,4 +42,4 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
                          assumed=best.assumed or first.assumed or last.assumed)
 
 
-NOTATION = Notation("interval", "2.1 (95% CI 2.4–1.9) Ma", "a best date with its 95 % interval", read, level=2)
+NOTATION = Notation("interval", "2.1 (95% CI 2.4–1.9) Ma", "a best date with its 95 % interval", read, level=2, marks=frozenset("%"))

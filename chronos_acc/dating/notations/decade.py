@@ -38,4 +38,4 @@ def _years(number: int, length: int, before: bool) -> tuple[str, str]:
     return (f"{number + length - 1} BCE", f"{number} BCE") if before else (str(number), str(number + length - 1))
 
 
-NOTATION = Notation("decade", "1850s", "a decade, or a century written as 1500s", read)
+NOTATION = Notation("decade", "1850s", "a decade, or a century written as 1500s", read, marks=frozenset("s"))

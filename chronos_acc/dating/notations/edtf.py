@@ -43,4 +43,4 @@ def _why(shaped: re.Match[str]) -> str:
     return "is no day of the calendar; check the month and the day"
 
 
-NOTATION = Notation("edtf", "1985-04-12", "ISO 8601-2:2019 (EDTF), levels 0 to 2", read)
+NOTATION = Notation("edtf", "1985-04-12", "ISO 8601-2:2019 (EDTF), levels 0 to 2", read, marks=frozenset("-/X[{?~%YS"))

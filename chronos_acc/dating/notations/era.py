@@ -47,4 +47,4 @@ def era_year(number: Number, unit: Unit, settings: Settings) -> Span:
     return Span("year", start + 0.5 - half, start + 0.5, start + 0.5 + half, words, start, start + 1.0, last=last, uses=rounded)
 
 
-NOTATION = Notation("era", "44 BCE", "a year with BCE, BC, CE or AD before or after it", read)
+NOTATION = Notation("era", "44 BCE", "a year with BCE, BC, CE or AD before or after it", read, marks=frozenset("cCdD"))

@@ -41,4 +41,4 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     return Span("limit", low, high if low == -inf else low, high, f"{meaning} {inner.words.split(', ±')[0]}", low, high, assumed=inner.assumed, uses=uses, remarks=inner.remarks)
 
 
-NOTATION = Notation("limit", "before 1850", "a date with one bound; the other is the list's limit", read, level=4)
+NOTATION = Notation("limit", "before 1850", "a date with one bound; the other is the list's limit", read, level=4, marks=frozenset("<>eEoOuUiIbB"))

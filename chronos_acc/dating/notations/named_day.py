@@ -94,4 +94,4 @@ def day_span(year: int, month: int, day: int, calendar: Literal["gregorian", "ju
     return flat("day", *day_bounds(year, month, day, calendar), f"the day {name}{_in(calendar)}", uses)
 
 
-NOTATION = Notation("named day", "12 April 1961", "a day, month or season by name", read)
+NOTATION = Notation("named day", "12 April 1961", "a day, month or season by name", read, marks=frozenset("aeiouAEIOU"))

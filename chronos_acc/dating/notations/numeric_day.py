@@ -80,4 +80,4 @@ def _refuse_split(year: str, tail: str) -> None:
     raise DateRefused(f"is ambiguous: the years {int(year)} to {int(full)} ({int(year)}–{full}){month}{dual}; write one of them out")
 
 
-NOTATION = Notation("numeric day", "13/04/1848", "a day in numbers, in the list's order", read)
+NOTATION = Notation("numeric day", "13/04/1848", "a day in numbers, in the list's order", read, marks=frozenset("/.-"))

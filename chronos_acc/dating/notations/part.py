@@ -55,4 +55,4 @@ def cut(low: float, high: float, share: tuple[float, float]) -> tuple[float, flo
     return low + first, high if share[1] == 1.0 else low + last
 
 
-NOTATION = Notation("part", "early 19th century", "early, mid or late, or a half, third or quarter, of a longer time", read, level=1)
+NOTATION = Notation("part", "early 19th century", "early, mid or late, or a half, third or quarter, of a longer time", read, level=1, marks=frozenset("ldrLDR"))

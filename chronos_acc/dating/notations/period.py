@@ -13,8 +13,8 @@ from .notation import Notation, Part
 
 def read(text: str, settings: Settings, part: Part) -> Span | None:
     """A name of the period table, with the bounds of its row."""
-    if not text[0].isalpha():
-        return None
+    if text.upper() == text.lower() and text.isascii():
+        return None  # no letter, no name
     table = settings.periods or shipped_periods()
     row = table.find(text)
     if row is None:
@@ -26,4 +26,4 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     return flat("period", ends[0].low, ends[1].high, words)._replace(assumed=ends[0].assumed or ends[1].assumed)
 
 
-NOTATION = Notation("period", "Cretaceous", "a named period of the period table", read)
+NOTATION = Notation("period", "Cretaceous", "a named period of the period table", read, marks=frozenset())

@@ -16,10 +16,12 @@ from .notation import Notation, Part
 _SIGMA = re.compile(
     r" ?[(\[,]? ?(?:at |with )?(?:(?P<n>[0-9](?:\.[0-9]+)?)[ -]?(?:σ|sigmas?\b|s\.?d\.?(?![a-z])|s\.?e\.?(?![a-z])|standard deviations?)|(?P<share>68|95)(?:\.[0-9]+)? ?%(?: ?(?:ci|confidence|level|c\.i\.))*)(?: errors?| level)? ?[)\]]?(?= |\Z)",
     re.IGNORECASE)
+_SIGMA_MARKS = frozenset("σsS%")
 _ERROR = r"([0-9][0-9.,']*|[.,][0-9]+)"
 _BOTH = re.compile(rf"(.*?[^ ]) ?(?:±|\+ ?/ ?-|\+-) ?{_ERROR} ?(%)? ?([^\d%±+].*)?\Z")
 _SIDES = re.compile(rf"(.*?[^ (]) ?\(? ?([+-]) ?{_ERROR} ?[/,;]? ?([+-]) ?{_ERROR} ?\)? ?([^\d±+].*)?\Z")
 _BRACKET = re.compile(r"(.*[0-9])\(([0-9]{1,4})\) ?([^\d±+].*)?\Z")
+_BARE = re.compile(r"[-+0-9.,' ]+\Z")
 _YEARS = frozenset(("years", "year", "yrs", "yr", "y", "a"))
 
 
@@ -36,7 +38,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if "±" not in text and "+" not in text and ")" not in text:
         return None
     sigma: float | None = None
-    stated = _SIGMA.search(text)
+    stated = _SIGMA.search(text) if not _SIGMA_MARKS.isdisjoint(text) else None
     if stated:
         sigma = float(stated["n"]) if stated["n"] else (Z975 if stated["share"] == "95" else 1.0)
         text = f"{text[:stated.start()]} {text[stated.end():]}".strip()
@@ -77,7 +79,7 @@ def _own(error: _Error, sigma: float | None, settings: Settings, part: Part) -> 
         return None
     unit = find_unit(error.tail)
     years = error.tail.lower().rstrip(".") in _YEARS
-    if not years and (unit is None or unit.zero != "compiled"):
+    if not years and (unit is None or unit.zero != "compiled" or _BARE.match(error.head)):
         return None
     span = part(error.head, 1)
     if span is None or not span.last or (not years and not span.back):
@@ -116,4 +118,4 @@ def _size(amount: str, error: _Error, span: Span, settings: Settings) -> float:
     return size.value()
 
 
-NOTATION = Notation("plus-minus", "66.0 ± 0.05 Ma", "a date with its error: ±, +/-, asymmetric, or of the last digits in brackets", read, level=2)
+NOTATION = Notation("plus-minus", "66.0 ± 0.05 Ma", "a date with its error: ±, +/-, asymmetric, or of the last digits in brackets", read, level=2, marks=frozenset("±+)"))

@@ -25,4 +25,4 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     return None if span is None else span._replace(words=f"{span.words}, calibrated by the list's word", remarks=(*span.remarks, "marked as radiocarbon; read as calibrated"))
 
 
-NOTATION = Notation("radiocarbon", "4500 14C BP", "radiocarbon years, which are refused unless the list says how", read, level=6)
+NOTATION = Notation("radiocarbon", "4500 14C BP", "radiocarbon years, which are refused unless the list says how", read, level=6, marks=frozenset("cCwW"))

@@ -19,6 +19,7 @@ _WORDED = (
     re.compile(r"from (.+?) (?:to|until|till|through|thru|up to) (.+)\Z", re.IGNORECASE),
     re.compile(r"(.+?) ?(?:-to-| to | until | till | through | thru | up to | or )(.+)\Z", re.IGNORECASE),
 )
+_HAS_WORD = re.compile(r"[ -](?:to|until|till|through|thru|or|and)[ -]", re.IGNORECASE)
 _DASHES = re.compile(r" ?(?:–|--+) ?")
 _HYPHEN = re.compile(r"(?<=[\w.)'?])-(?=[\w.+~?-])")
 _ISO = re.compile(r"[?~%]?[+-]?[0-9X]{4}[?~%]?-[?~%]?[0-9X]{2}(?![0-9X])")
@@ -47,7 +48,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
 
 def _splits(text: str) -> list[tuple[str, str, bool]]:
     """Where a text may come apart, and whether the second number may be shortened there (not at a hyphen: that is ISO 8601's)."""
-    for form in _WORDED:
+    for form in _WORDED if _HAS_WORD.search(text) else ():
         found = form.match(text)
         if found:
             return [(found[1], found[2], True)]
@@ -198,4 +199,4 @@ def _brief(span: Span) -> str:
     return span.words.split(", ±")[0].split(", its trailing zeros")[0]
 
 
-NOTATION = Notation("range", "450–400 BCE", "two dates with a dash or a word between them", read, level=4)
+NOTATION = Notation("range", "450–400 BCE", "two dates with a dash or a word between them", read, level=4, marks=frozenset("-–oOuUiIaA"))

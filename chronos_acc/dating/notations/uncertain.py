@@ -20,4 +20,4 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     return None if span is None else span._replace(remarks=(*span.remarks, "marked uncertain; the bounds are those of the date itself"))
 
 
-NOTATION = Notation("uncertain", "44 BCE?", "a question mark behind a date, which moves no bound", read, level=5)
+NOTATION = Notation("uncertain", "44 BCE?", "a question mark behind a date, which moves no bound", read, level=5, marks=frozenset("?"))
