@@ -20,6 +20,7 @@ import numpy as np
 from ..errors import ListRefused
 from .ledger import Ledger, open_for_reading
 from .linking import active_decisions, stored_options
+from .orders import apart, statements
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -162,7 +163,7 @@ def _at(ledger: Ledger, threshold: float, rows: Sequence[tuple[object, ...]], so
     links = ledger.rows("SELECT a, b, score FROM ledger.link WHERE score IS NOT NULL ORDER BY a, b")
     a, b = (np.array([place[int(row[k])] for row in links], dtype=np.int64) for k in (0, 1))
     score = np.array([float(row[2]) for row in links], dtype=float)
-    settled = {(min(place[d.a], place[d.b]), max(place[d.a], place[d.b])): d.verdict for d in active_decisions(ledger)}
+    settled = {(min(place[d.a], place[d.b]), max(place[d.a], place[d.b])): d.verdict for d in [*apart(statements(ledger)), *active_decisions(ledger)]}
     same, different = ([p for p, v in settled.items() if v == verdict] for verdict in ("same", "different"))
     label = build(source, a, b, score, threshold, same, different)[0].labels()
     return pairs_inside(((int(e), int(label[place[int(e)]])) for e in ids if int(e) in judged), source_of)

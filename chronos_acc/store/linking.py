@@ -68,10 +68,13 @@ def _relink(ledger: Ledger, options: LinkOptions | None, tell: Tell) -> LinkSumm
     notes: list[str] = []
     chosen = options if options is not None else stored_options(ledger)
     entries, _ = read_entries(ledger)
+    if not len(entries):
+        return _nothing(ledger, chosen)
     if options is None and chosen.prefer is not None and chosen.prefer not in entries.sources:
         notes.append(f"the preferred list {chosen.prefer!r} is no longer there; linked without a preference")
         chosen = replace(chosen, prefer=None, pooling="mixture" if chosen.pooling == "preferred" else chosen.pooling)
-    linked = link(entries, active_decisions(ledger), chosen, tell=tell)
+    decided, stated = active_decisions(ledger), orders.statements(ledger)
+    linked = _blocked(link(entries, [*orders.apart(stated), *decided], chosen, tell=tell), entries, decided)
     tell("pooling", 0.9)
     pooled = pool(entries, linked.milestone, chosen.pooling, chosen.prefer, ancestry(ledger))
     tell("writing milestones", 0.95)
@@ -90,7 +93,7 @@ def _relink(ledger: Ledger, options: LinkOptions | None, tell: Tell) -> LinkSumm
         frame[column] = values
     ledger.insert("ledger.milestone", frame)
     titles = dict(zip(pooled.id.tolist(), pooled.title, strict=True))
-    known = orders.find(ledger, dict(zip(entries.id.tolist(), linked.milestone.tolist(), strict=True)), titles)
+    known = orders.find(stated, dict(zip(entries.id.tolist(), linked.milestone.tolist(), strict=True)), titles)
     if known.pairs:
         earlier, later, who = zip(*known.pairs, strict=True)
         ledger.insert("ledger.known_order", {"earlier": list(earlier), "later": list(later), "stated_by": list(who)})
@@ -106,6 +109,26 @@ def _relink(ledger: Ledger, options: LinkOptions | None, tell: Tell) -> LinkSumm
         milestones=len(pooled),
         notes=tuple(notes),
     )
+
+
+def _blocked(linked: Linked, entries: Entries, decided: Sequence[Decision]) -> Linked:
+    """Pairs that a known order keeps apart are blocked; "different" is kept for what a person decided."""
+    settled = {(min(d.a, d.b), max(d.a, d.b)) for d in decided}
+    state = linked.state.astype(object)
+    for q in np.nonzero(linked.state == "different")[0]:
+        if (int(entries.id[linked.a[q]]), int(entries.id[linked.b[q]])) not in settled:
+            state[q] = "blocked"
+    return replace(linked, state=state.astype(np.str_))
+
+
+def _nothing(ledger: Ledger, options: LinkOptions) -> LinkSummary:
+    """No entry, no milestone."""
+    for name in ("link", "member", "milestone", "known_order"):
+        ledger.run(f"DELETE FROM ledger.{name}")
+    ledger.set_about("linked", "yes")
+    ledger.set_about("link_options", json.dumps(asdict(options)))
+    ledger.set_about("link_notes", "[]")
+    return LinkSummary(0, 0, 0, 0, 0, tuple(_decision_notes(ledger)))
 
 
 def _write_links(ledger: Ledger, entries: Entries, linked: Linked) -> None:

@@ -10,6 +10,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from ..errors import ListRefused, RecordRefused
+from ..merge.entries import Decision
 from .ledger import Ledger, open_for_writing
 
 
@@ -21,40 +22,64 @@ class Orders:
     notes: tuple[str, ...] = ()
 
 
-def find(ledger: Ledger, milestone: Mapping[int, int], titles: Mapping[int, str]) -> Orders:
-    """Orders between milestones. ``milestone`` maps entry id to milestone id, ``titles`` milestone id to title.
+@dataclass(frozen=True)
+class Statement:
+    """"earlier precedes later", who states it, and the entries (ids) that have these titles: a list speaks of its own entries, a file of any list's."""
 
-    A list's statement speaks of that list's entries; a file's of entries of any list. Raises RecordRefused when the statements form
-    a circle, which is named; a title nobody has is remarked and left out.
-    """
-    rows = ledger.rows("SELECT e.entry, s.name, e.title FROM ledger.entry AS e JOIN ledger.source AS s ON s.source = e.source ORDER BY e.entry")
+    earlier: str
+    later: str
+    who: str
+    first: tuple[int, ...]
+    second: tuple[int, ...]
+
+
+def statements(ledger: Ledger) -> list[Statement]:
+    """All stated orders: those of sheets in order of the lists, then those of files."""
     stated: list[tuple[str, str, str, str | None]] = []
     for name, text in ledger.rows("SELECT name, precedes FROM ledger.source WHERE precedes IS NOT NULL ORDER BY source"):
         stated += [(str(a), str(b), f"list {name}", str(name)) for a, b in json.loads(text)]
     for origin, a, b in ledger.rows("SELECT origin, earlier, later FROM ledger.stated_order ORDER BY origin, earlier, later"):
-        stated.append((a, b, f"file {origin}", None))
+        stated.append((str(a), str(b), f"file {origin}", None))
     if not stated:
-        return Orders(())
+        return []
     by_title: dict[tuple[str | None, str], list[int]] = {}
+    rows = ledger.rows("SELECT e.entry, s.name, e.title FROM ledger.entry AS e JOIN ledger.source AS s ON s.source = e.source ORDER BY e.entry")
     for entry, name, title in rows:
-        for key in ((name, _key(title)), (None, _key(title))):
-            by_title.setdefault(key, []).append(int(entry))
+        for scope in (str(name), None):
+            by_title.setdefault((scope, _key(title)), []).append(int(entry))
+    return [
+        Statement(a, b, who, tuple(by_title.get((scope, _key(a)), ())), tuple(by_title.get((scope, _key(b)), ()))) for a, b, who, scope in stated
+    ]
+
+
+def apart(stated: Sequence[Statement]) -> list[Decision]:
+    """What precedes something is something else: such entries must not be linked, however alike they look."""
+    pairs = dict.fromkeys((min(i, j), max(i, j)) for s in stated for i in s.first for j in s.second if i != j)
+    return [Decision(i, j, "different") for i, j in pairs]
+
+
+def find(stated: Sequence[Statement], milestone: Mapping[int, int], titles: Mapping[int, str]) -> Orders:
+    """Orders between milestones. ``milestone`` maps entry id to milestone id, ``titles`` milestone id to title.
+
+    Raises RecordRefused when the statements form a circle, which is named, or when both ends were decided to be one milestone; a title
+    that nobody has, or that stands in several milestones, is remarked and left out.
+    """
     notes: list[str] = []
     pairs: dict[tuple[int, int], str] = {}
-    for a, b, who, scope in stated:
+    for s in stated:
         ends = []
-        for title in (a, b):
-            found = {milestone[e] for e in by_title.get((scope, _key(title)), []) if e in milestone}
+        for title, entries in ((s.earlier, s.first), (s.later, s.second)):
+            found = {milestone[e] for e in entries if e in milestone}
             if len(found) > 1:
-                notes.append(f"{who} states an order for {title!r}, which stands in {len(found)} milestones: left out; make the title unique")
+                notes.append(f"{s.who} states an order for {title!r}, which stands in {len(found)} milestones: left out; make the title unique")
             elif not found:
-                notes.append(f"{who} states an order for {title!r}, which is no entry's title: left out")
+                notes.append(f"{s.who} states an order for {title!r}, which is no entry's title: left out")
             else:
                 ends.append(found.pop())
         if len(ends) == 2:
             if ends[0] == ends[1]:
-                raise RecordRefused(f"{who} states that {a!r} precedes {b!r}, but both are one milestone; part them in review or withdraw the order")
-            pairs.setdefault((ends[0], ends[1]), who)
+                raise RecordRefused(f"{s.who} states that {s.earlier!r} precedes {s.later!r}, but both are one milestone; part them in review or withdraw the order")
+            pairs.setdefault((ends[0], ends[1]), s.who)
     circle = cycle([*pairs])
     if circle:
         steps = [f"{titles.get(i, i)!r} before {titles.get(j, j)!r} ({pairs[i, j]})" for i, j in zip(circle, [*circle[1:], circle[0]], strict=True)]

@@ -62,13 +62,20 @@ def make(path: Path, lists: Mapping[str, Sequence[Row]], link: bool = True, **so
 
 
 KILN, MILL, BRIDGE = "First kiln of the valley", "Water mill at Harnoy", "Stone bridge over the Isven"
-WORDS = ("harbour", "quarry", "lantern", "meadow", "furnace", "granary", "archive", "causeway", "orchard", "signal", "tannery", "weir")
+ALPHA = (
+    "Copper found in the northern scarp", "Salt road opened", "Plague year at Tolm", "Guild of dyers chartered", "Cathedral roof burns", "Silver coin struck",
+    "Earthquake in autumn", "University statutes sealed", "Dyke along the marshes", "Printing house licensed", "Observatory dome built", "Vaccination made duty",
+)  # fmt: skip
+BETA = (
+    "Windmills reach Brayle", "Heresy trial of the weavers", "Long frost", "Glass blown at Orrin", "Census ordered", "Opera founded",
+    "Railway to Vessik", "Telegraph exchange", "Potato blight", "Womens franchise", "Aerodrome", "Reservoir filled",
+)  # fmt: skip
 
 
 def two_lists(path: Path) -> Path:
-    """Two lists that share two of four milestones, with different years for one of them; enough strangers to measure chance likeness."""
-    far = [(f"{a} {b} of the {c}", 500.0 + 37 * i) for i, (a, b, c) in enumerate(zip(WORDS, WORDS[3:] + WORDS[:3], WORDS[7:] + WORDS[:7], strict=True))]
-    near = [(f"the {c} and the {a}", 519.0 + 37 * i) for i, (a, c) in enumerate(zip(WORDS[5:] + WORDS[:5], WORDS[1:] + WORDS[:1], strict=True))]
+    """Two lists that share two of four milestones, with different years for one of them among strangers."""
+    far = [(t, 500.5 + 97 * i) for i, t in enumerate(ALPHA)]
+    near = [(t, 531.5 + 97 * i) for i, t in enumerate(BETA)]
     return make(
         path,
         {
