@@ -116,7 +116,7 @@ def _score_pairs(
 ) -> tuple[Floats, dict[str, Floats]]:
     """Scores and parts of the pairs shown. Candidates keep theirs; others (joined through a third, or by a decision) are scored as if they stood alone."""
     similarity = titles.similarity(a, b)
-    seen = features(entries, a, b, similarity, near, model.comparable)
+    seen = features(entries, titles, a, b, similarity, near, model.comparable)
     alone = rate(model, seen, np.arange(len(a)), np.arange(len(a), 2 * len(a)), 2 * len(a) + 1)
     k = len(entries)
     keys = rival_a * k + rival_b

@@ -10,11 +10,11 @@ pair stand beside those of its rivals: an entry has at most one partner in a lis
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 
 import numpy as np
 
-from .candidates import Candidates, close_in_time, slack
+from .candidates import Bools, Candidates, close_in_time, slack
 from .entries import Entries, Floats, Ints
 from .titles import Titles
 
@@ -26,10 +26,14 @@ CHANCE_COUNT = 2000.0  # pairs
 SAME_COUNT = 20.0  # pairs
 SHARE_LISTED = 0.4  # of the shorter list, also in the other
 CATEGORY_AGREES = 0.9  # of same milestones
+CHANCE_AGREES = 0.3  # of different ones
 PRECISE_DATES = np.array([0.30, 0.25, 0.17, 0.13, 0.08, 0.05, 0.02])
 WIDE_DATES = np.array([0.12, 0.18, 0.20, 0.20, 0.15, 0.10, 0.05])
 FAR_SAMPLE = 150_000
+HOPELESS = 1e-5  # a probability under the prior model
 ROUNDS = 40
+STRATA = 3
+MOST_SHARED = 0.75  # no two lists are so alike that an entry without a partner would be a surprise
 
 
 def _prior_chance() -> Floats:
@@ -61,11 +65,11 @@ class Scores:
 class Model:
     """Both halves of each part, ready to score any pair."""
 
-    title_ratio: Floats  # (bins,) log likelihood ratio
+    title_ratio: Floats  # (strata, bins) log likelihood ratio
     date_ratio: Floats  # (2, bins) precise, wide
     category_ratio: Floats  # (2,) disagree, agree
     share: Floats  # (lists, lists) expected share of the shorter list that the other names too
-    comparable: np.ndarray[tuple[int, int], np.dtype[np.bool_]]  # (lists, lists) lists that share a vocabulary of categories
+    comparable: Bools  # (lists, lists) lists that share a vocabulary of categories
     notes: tuple[str, ...] = ()
 
 
@@ -74,6 +78,7 @@ class Features:
     """What the model looks at, one row a pair."""
 
     similarity: Floats
+    stratum: Ints  # how much the shorter of the two titles says: 0 little to 2 much
     date_bin: Ints
     regime: Ints
     agree: Ints  # 0 disagree, 1 agree, -1 no part
@@ -81,8 +86,12 @@ class Features:
     list_b: Ints
     crowd: Floats  # the larger of the two numbers of candidates
 
+    def only(self, chosen: Bools) -> Features:
+        """The same for some of the pairs."""
+        return Features(*(getattr(self, f.name)[chosen] for f in fields(self)))
 
-def features(entries: Entries, a: Ints, b: Ints, similarity: Floats, near: Ints, comparable: np.ndarray[tuple[int, int], np.dtype[np.bool_]]) -> Features:
+
+def features(entries: Entries, titles: Titles, a: Ints, b: Ints, similarity: Floats, near: Ints, comparable: Bools) -> Features:
     """Features of pairs at positions a and b."""
     room = slack(entries)
     reach = 0.5 * (entries.latest - entries.earliest) + room
@@ -93,6 +102,7 @@ def features(entries: Entries, a: Ints, b: Ints, similarity: Floats, near: Ints,
     known = (code[a] >= 0) & (code[b] >= 0) & comparable[list_a, list_b]
     return Features(
         similarity=similarity,
+        stratum=strata(titles, a, b),
         date_bin=np.clip(np.searchsorted(DATE_EDGES, np.minimum(gap, 1.0), side="left") - 1, 0, len(DATE_EDGES) - 2).astype(np.int64),
         regime=wide.astype(np.int64),
         agree=np.where(known, (code[a] == code[b]).astype(np.int64), -1),
@@ -106,29 +116,33 @@ def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Sco
     """Estimate the model on the candidates, and score them."""
     comparable = _shared_vocabulary(entries)
     chance, far_pairs = _measured_chance(entries, titles, found)
-    seen = features(entries, found.a, found.b, found.similarity, found.near, comparable)
+    seen = features(entries, titles, found.a, found.b, found.similarity, found.near, comparable)
     k, lists = len(entries), len(entries.sources)
     key_a, key_b = found.a * lists + seen.list_b, found.b * lists + seen.list_a
-    size = np.bincount(entries.source, minlength=lists).astype(float)
-    shorter = np.minimum(size[:, None], size[None, :])
-    title_bin = _title_bin(found.similarity)
-    same = _prior_same()
     share = np.full((lists, lists), SHARE_LISTED)
     dates = np.log(np.stack([PRECISE_DATES, WIDE_DATES])) - np.log(np.diff(DATE_EDGES))
-    category = np.log(np.array([(1 - CATEGORY_AGREES) / 0.7, CATEGORY_AGREES / 0.3]))
-    model = Model(_monotone_log_ratio(same, chance), dates, category, share, comparable)
-    scores = rate(model, seen, key_a, key_b, k * lists)
+    category = np.log(np.array([(1 - CATEGORY_AGREES) / (1 - CHANCE_AGREES), CATEGORY_AGREES / CHANCE_AGREES]))
+    model = Model(np.stack([_monotone_log_ratio(_prior_same(), c) for c in chance]), dates, category, share, comparable)
+    prior = rate(model, seen, key_a, key_b, k * lists)
+    first = prior.score
+    others = seen.only(prior.title < 0)  # how dates and categories agree by chance is measured on neighbours of unlike titles
+    date_chance, agree_chance = _date_chance(others), _agree_chance(others)
+    held = first > HOPELESS  # the rest cannot rise, and in a crowded span it is nearly all
+    some, some_a, some_b = seen.only(held), key_a[held], key_b[held]
+    title_bin = _title_bin(some.similarity)
+    size = np.bincount(entries.source, minlength=lists).astype(float)
+    shorter = np.minimum(size[:, None], size[None, :])
+    p = first[held]
     for _ in range(ROUNDS):
-        p, before = scores.score, scores.score
-        mass = np.bincount(title_bin, weights=p, minlength=len(same)) + SAME_COUNT * _prior_same()
         model = Model(
-            _monotone_log_ratio(mass / mass.sum(), chance), _date_ratio(seen, p), _category_ratio(seen, p), _share(seen, p, shorter), comparable
-        )
-        scores = rate(model, seen, key_a, key_b, k * lists)
-        if len(p) == 0 or np.abs(scores.score - before).max() < 1e-4:
+            _title_ratio(some, title_bin, p, chance), _date_ratio(some, p, date_chance), _category_ratio(some, p, agree_chance),
+            _share(some, p, shorter), comparable,
+        )  # fmt: skip
+        before, p = p, rate(model, some, some_a, some_b, k * lists).score
+        if not len(p) or np.abs(p - before).max() < 1e-3:
             break
-    notes = _remarks(far_pairs, float(scores.score.sum()))
-    return Model(model.title_ratio, model.date_ratio, model.category_ratio, model.share, comparable, notes), scores
+    scores = rate(model, seen, key_a, key_b, k * lists)
+    return Model(model.title_ratio, model.date_ratio, model.category_ratio, model.share, comparable, _remarks(far_pairs, float(p.sum()))), scores
 
 
 def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> Scores:
@@ -143,7 +157,7 @@ def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> S
 def log_odds_parts(model: Model, seen: Features) -> tuple[Floats, Floats, Floats, Floats]:
     """Log likelihood ratios of title, date and category, and the log prior odds."""
     centre = 0.5 * (TITLE_EDGES[1:] + TITLE_EDGES[:-1])
-    title = np.interp(seen.similarity, centre, model.title_ratio)
+    title = np.select([seen.stratum == g for g in range(STRATA)], [np.interp(seen.similarity, centre, r) for r in model.title_ratio])
     date = model.date_ratio[seen.regime, seen.date_bin]
     category = np.where(seen.agree < 0, 0.0, model.category_ratio[np.maximum(seen.agree, 0)])
     share = model.share[seen.list_a, seen.list_b]
@@ -154,18 +168,39 @@ def _title_bin(similarity: Floats) -> Ints:
     return np.asarray(np.clip(np.searchsorted(TITLE_EDGES, similarity, side="right") - 1, 0, len(TITLE_EDGES) - 2), dtype=np.int64)
 
 
+def strata(titles: Titles, a: Ints, b: Ints) -> Ints:
+    """(q,) third of the titles' weights in which the lighter of two titles lies: "Drum" and "Drum" agree by chance more often than longer titles do."""
+    edges = np.quantile(titles.mass, [1 / 3, 2 / 3])
+    return np.asarray(np.searchsorted(edges, np.minimum(titles.mass[a], titles.mass[b]), side="left"), dtype=np.int64)
+
+
+def _title_ratio(seen: Features, title_bin: Ints, p: Floats, chance: Floats) -> Floats:
+    bins = chance.shape[1]
+    count = np.bincount(seen.stratum * bins + title_bin, weights=p, minlength=STRATA * bins).reshape(STRATA, bins)
+    overall = count.sum(axis=0) + SAME_COUNT * _prior_same()
+    overall /= overall.sum()
+    out = np.empty_like(chance)
+    for g in range(STRATA):
+        mass = count[g] + SAME_COUNT * overall
+        out[g] = _monotone_log_ratio(mass / mass.sum(), chance[g])
+    return out
+
+
 def _measured_chance(entries: Entries, titles: Titles, found: Candidates) -> tuple[Floats, int]:
     """Distribution of title similarity among different milestones, and the number of far pairs it rests on."""
     a, b = _far_pairs(entries)
     bins = len(TITLE_EDGES) - 1
-    far = np.bincount(_title_bin(titles.similarity(a, b)), minlength=bins)
-    chance = (far + CHANCE_COUNT * _prior_chance()) / (len(a) + CHANCE_COUNT)
+    stratum = strata(titles, a, b)
+    far = np.bincount(stratum * bins + _title_bin(titles.similarity(a, b)), minlength=STRATA * bins).reshape(STRATA, bins)
+    overall = (far.sum(axis=0) + CHANCE_COUNT * _prior_chance()) / (len(a) + CHANCE_COUNT)
+    chance = (far + CHANCE_COUNT * overall) / (far.sum(axis=1, keepdims=True) + CHANCE_COUNT)
     total = found.pairs_within(entries.source)
     within = np.bincount(_title_bin(found.within), minlength=bins).astype(float)
     within[-1] = 0.0  # the very same title twice in one list may be one milestone listed twice
     within[0] = max(total - len(found.within), 0)
-    neighbours = (within + CHANCE_COUNT * chance) / (within.sum() + CHANCE_COUNT)
-    return neighbours, len(a)
+    lift = (within + CHANCE_COUNT * overall) / (within.sum() + CHANCE_COUNT) / overall
+    chance = chance * lift
+    return chance / chance.sum(axis=1, keepdims=True), len(a)
 
 
 def _far_pairs(entries: Entries) -> tuple[Ints, Ints]:
@@ -188,23 +223,30 @@ def _monotone_log_ratio(same: Floats, chance: Floats) -> Floats:
     return np.asarray(np.log(np.maximum(ratio, 1e-12)))
 
 
-def _date_ratio(seen: Features, p: Floats) -> Floats:
+def _date_chance(others: Features) -> Floats:
+    """(2, bins) distribution of the gap between dates of different milestones close in time, precise and wide."""
     bins = len(DATE_EDGES) - 1
-    out = np.empty((2, bins))
-    for regime, prior in enumerate((PRECISE_DATES, WIDE_DATES)):
-        here = seen.regime == regime
-        same = np.bincount(seen.date_bin[here], weights=p[here], minlength=bins) + SAME_COUNT * prior
-        chance = np.bincount(seen.date_bin[here], weights=1 - p[here], minlength=bins) + SAME_COUNT * np.diff(DATE_EDGES)
-        out[regime] = -_monotone_log_ratio(chance / chance.sum(), same / same.sum())
-    return out
+    count = np.bincount(others.regime * bins + others.date_bin, minlength=2 * bins).reshape(2, bins) + SAME_COUNT * np.diff(DATE_EDGES)
+    return np.asarray(count / count.sum(axis=1, keepdims=True))
 
 
-def _category_ratio(seen: Features, p: Floats) -> Floats:
-    known = seen.agree >= 0
-    agree = seen.agree[known] == 1
-    same = (p[known & (seen.agree == 1)].sum() + SAME_COUNT * CATEGORY_AGREES) / (p[known].sum() + SAME_COUNT)
-    chance = ((1 - p[known])[agree].sum() + SAME_COUNT * 0.3) / ((1 - p[known]).sum() + SAME_COUNT)
-    same = max(same, chance)  # agreement is never evidence against
+def _date_ratio(seen: Features, p: Floats, chance: Floats) -> Floats:
+    bins = len(DATE_EDGES) - 1
+    count = np.bincount(seen.regime * bins + seen.date_bin, weights=p, minlength=2 * bins).reshape(2, bins)
+    mass = count + SAME_COUNT * np.stack([PRECISE_DATES, WIDE_DATES])
+    same = mass / mass.sum(axis=1, keepdims=True)
+    return -np.stack([_monotone_log_ratio(c, s) for c, s in zip(chance, same, strict=True)])  # nearer is never evidence against
+
+
+def _agree_chance(others: Features) -> float:
+    """Share of different milestones close in time whose categories agree."""
+    known = others.agree >= 0
+    return float(((others.agree == 1).sum() + SAME_COUNT * CHANCE_AGREES) / (known.sum() + SAME_COUNT))
+
+
+def _category_ratio(seen: Features, p: Floats, chance: float) -> Floats:
+    same = (p[seen.agree == 1].sum() + SAME_COUNT * CATEGORY_AGREES) / (p[seen.agree >= 0].sum() + SAME_COUNT)
+    same = float(np.clip(same, chance, 0.99))  # agreement is never evidence against, and disagreement never rules out
     return np.asarray(np.log(np.array([(1 - same) / (1 - chance), same / chance])))
 
 
@@ -215,7 +257,7 @@ def _share(seen: Features, p: Floats, shorter: Floats) -> Floats:
     matched = matched + matched.T
     i, j = np.triu_indices(lists, 1)
     overall = (matched[i, j].sum() + 10 * SHARE_LISTED) / (shorter[i, j].sum() + 10)
-    return np.asarray(np.clip((matched + 10 * overall) / (shorter + 10), 0.01, 0.95))
+    return np.asarray(np.clip((matched + 10 * overall) / (shorter + 10), 0.01, MOST_SHARED))
 
 
 def _category_codes(entries: Entries) -> Ints:
@@ -223,7 +265,7 @@ def _category_codes(entries: Entries) -> Ints:
     return np.array([names[c.casefold().strip()] if c else -1 for c in entries.category], dtype=np.int64)
 
 
-def _shared_vocabulary(entries: Entries) -> np.ndarray[tuple[int, int], np.dtype[np.bool_]]:
+def _shared_vocabulary(entries: Entries) -> Bools:
     """(lists, lists) True where two lists use the same categories: two at least, and most of each list's entries in words of the other."""
     code, lists = _category_codes(entries), len(entries.sources)
     out = np.zeros((lists, lists), dtype=bool)

@@ -21,7 +21,7 @@ from scipy import sparse
 Floats = npt.NDArray[np.float64]
 Ints = npt.NDArray[np.int64]
 
-ALIKE = 0.40  # words below this share of grams are no counterparts
+ALIKE = 0.35  # words below this share of grams are no counterparts
 PSEUDO_TITLES = 40.0  # strength of the prior below, in titles: it matters in small sets only
 # Share of titles in which a word is expected before anything was counted: grammatical words, and the words of events as such. With many titles the
 # counted shares take over, in any language.
