@@ -4,7 +4,6 @@
 from __future__ import annotations
 
 import argparse
-import difflib
 import os
 import sys
 from collections.abc import Sequence
@@ -58,6 +57,8 @@ def _run(words: list[str], out: Output) -> int:
             return _program(options, out)
         entry = find(name)
         if entry is None:
+            import difflib
+
             near = difflib.get_close_matches(name, [c.name for c in COMMANDS], 1)
             hint = f"did you mean {near[0]}?" if near else "see chronos-acc --help"
             raise WrongUse(f"no command {name!r}; {hint}")

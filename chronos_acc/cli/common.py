@@ -8,10 +8,9 @@ import os
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from .output import Output
-
 if TYPE_CHECKING:
     from ..record import Record
+    from .output import Output
 
 
 def timeline(options: argparse.Namespace) -> Path:
@@ -19,13 +18,13 @@ def timeline(options: argparse.Namespace) -> Path:
     return Path(options.db or os.environ.get("CHRONOS_ACC_DB") or "timeline.duckdb")
 
 
-def chosen_record(options: argparse.Namespace, out: Output) -> Record:
-    """The record that the shared options choose; its remarks go to stderr."""
+def chosen_record(options: argparse.Namespace, out: Output | None = None) -> Record:
+    """The record that the shared options choose; its remarks go to ``out``, unless the result carries them itself."""
     from ..store.timeline import record
 
     found = record(timeline(options), present=options.present, start=options.start, sources=options.sources, min_support=options.min_support,
                    category=options.category)  # fmt: skip
-    for note in found.notes:
+    for note in found.notes if out is not None else ():
         out.remark(note)
     return found
 

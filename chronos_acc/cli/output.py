@@ -4,10 +4,8 @@
 from __future__ import annotations
 
 import os
-import shutil
 import sys
 import time
-from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, TextIO
 
 if TYPE_CHECKING:
@@ -16,18 +14,18 @@ if TYPE_CHECKING:
 PIPE_WIDTH = 160  # no terminal: wide enough for every table of ours, so that nothing is dropped
 
 
-@dataclass
 class Output:
     """Where things go and how. Made once, in ``main``."""
 
-    format: str = "table"
-    table: str | None = None
-    quiet: bool = False
-    stdout: TextIO = field(default_factory=lambda: sys.stdout)
-    stderr: TextIO = field(default_factory=lambda: sys.stderr)
-    _begun: float = field(default_factory=time.monotonic)
-    _shown: float = 0.0
-    _drawn: bool = False
+    def __init__(self, *, quiet: bool = False, stdout: TextIO | None = None, stderr: TextIO | None = None) -> None:
+        self.format = "table"
+        self.table: str | None = None
+        self.quiet = quiet
+        self.stdout = stdout or sys.stdout
+        self.stderr = stderr or sys.stderr
+        self._begun = time.monotonic()
+        self._shown = 0.0
+        self._drawn = False
 
     @property
     def width(self) -> int:
@@ -36,6 +34,8 @@ class Output:
         if given.isdigit() and int(given) > 0:
             return max(int(given), 20)
         if self._is_terminal(self.stdout):
+            import shutil
+
             return max(shutil.get_terminal_size((80, 24)).columns, 20)
         return PIPE_WIDTH
 

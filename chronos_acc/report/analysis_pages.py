@@ -3,7 +3,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from typing import Any
 
 import pandas as pd
@@ -33,20 +33,20 @@ TREND_COLUMNS: dict[str, tuple[Column, ...]] = {
         C("sensitive_to", "sensitive to", "text", 8),
     ),
     "rate_laws": (
-        C("law", "law"), C("parameter", "parameter"), C("estimate", "estimate", "number"), C("low", "low", "number", 1), C("high", "high", "number", 1),
-        C("low_robust", "low robust", "number", 5), C("high_robust", "high robust", "number", 5), C("weight", "weight", "p", 2), C("aicc", "AICc", "number", 4),
+        C("law", "law"), C("parameter", "parameter"), C("estimate", "estimate", "right"), C("low", "low", "right", 1), C("high", "high", "right", 1),
+        C("low_robust", "low robust", "right", 5), C("high_robust", "high robust", "right", 5), C("weight", "weight", "p", 2), C("aicc", "AICc", "number", 4),
         C("log_likelihood", "log L", "number", 6), C("bic", "BIC", "number", 9), C("fit_p_shape", "fit: shape p", "p", 3), C("fit_p_clustering", "fit: spacing p", "p", 5),
         C("doubling_time", "doubling", "span", 4), C("same_curve_as", "same curve as", "text", 7), C("lr_p", "LR p", "p", 6),
     ),
     "age_exponent": (C("era", "era"), C("estimate", "exponent", "number"), C("low", "low", "number"), C("high", "high", "number"), C("n", "n", "count")),
     "regressions": (
-        C("predictor", "on"), C("estimator", "estimator"), C("slope", "slope", "number"), C("low", "low", "number"), C("high", "high", "number"),
-        C("std_error", "std error", "number", 5), C("r_squared", "R²", "number", 1), C("n", "n", "count", 3), C("null", "null", "text", 2),
-        C("null_low", "null low", "number", 2), C("null_median", "null median", "number", 2), C("null_high", "null high", "number", 2), C("p_value", "p (null)", "p", 2),
+        C("predictor", "on"), C("estimator", "estimator", "text", 4), C("slope", "slope", "number"), C("low", "low", "number", 3), C("high", "high", "number", 3),
+        C("std_error", "std error", "number", 5), C("r_squared", "R²", "number", 1), C("n", "n", "count", 3), C("null", "null", "text", 4),
+        C("null_low", "null low", "number", 1), C("null_median", "null median", "number", 1), C("null_high", "null high", "number", 1), C("p_value", "p (null)", "p"),
     ),
     "nulls": (
-        C("null", "null model"), C("statistic", "statistic"), C("observed", "observed", "number"), C("low", "null low", "number"), C("median", "null median", "number"),
-        C("high", "null high", "number"), C("difference", "difference", "number", 5), C("p_value", "p", "p"),
+        C("null", "null model"), C("setting", "with", "text", 4), C("statistic", "statistic"), C("observed", "observed", "number"), C("low", "null low", "number", 1), C("median", "null median", "number", 2),
+        C("high", "null high", "number", 1), C("difference", "difference", "number", 5), C("p_value", "p", "p"),
     ),
     "lists": (
         C("list", "list"), C("n", "n", "count"), C("slope", "slope", "number", 2), C("slope_low", "low", "number", 4), C("slope_high", "high", "number", 4),
@@ -54,10 +54,6 @@ TREND_COLUMNS: dict[str, tuple[Column, ...]] = {
         C("growth", "growth per yr", "number", 1), C("growth_low", "low", "number", 3), C("growth_high", "high", "number", 3), C("p_value", "p", "p", 1),
     ),
 }  # fmt: skip
-
-
-def _laid_out(name: str, frame: pd.DataFrame, columns: Mapping[str, tuple[Column, ...]], questions: Mapping[str, str], below: Sequence[str] = ()) -> Table:
-    return Table(name, frame, questions.get(name, ""), columns.get(name), tuple(below))
 
 
 def _record_frame(record: Mapping[str, Any]) -> pd.DataFrame:
@@ -77,28 +73,32 @@ def _record_frame(record: Mapping[str, Any]) -> pd.DataFrame:
 
 
 def _law_rows(frame: pd.DataFrame) -> pd.DataFrame:
-    """One row a parameter, the law's own columns on its first row."""
+    """One row a parameter, the law's own columns on its first row; calendar years written as such."""
     rows: list[dict[str, Any]] = []
     for row in frame.to_dict("records"):
         parameters = row.get("parameters") or {}
         for i, key in enumerate(parameters or {"": None}):
-            one = {k: v for k, v in row.items() if k not in ("parameters", "low", "high", "low_robust", "high_robust")} if i == 0 else {"law": ""}
-            one.update(parameter=key, estimate=parameters.get(key))
-            for end in ("low", "high", "low_robust", "high_robust"):
+            one = {k: v for k, v in row.items() if k not in ("parameters", *_ENDS)} if i == 0 else {"law": ""}
+            write = numbers.when if key in ("t_star", "year") else numbers.number
+            one.update(parameter=key, estimate=write(parameters.get(key)))
+            for end in _ENDS:
                 bounds = row.get(end)
-                one[end] = bounds.get(key) if isinstance(bounds, Mapping) else None
+                one[end] = write(bounds.get(key)) if isinstance(bounds, Mapping) and key in bounds else "–"
             rows.append(one)
     return pd.DataFrame(rows)
 
 
-def trend_tables(trend: Any) -> tuple[Table, ...]:
-    """All tables of a trend, in reading order."""
+_ENDS = ("low", "high", "low_robust", "high_robust")
+SHOWN = ("record", "tests", "rate_laws", "age_exponent", "regressions", "nulls", "lists", "next", "track_record")
+NULL_STATISTICS = ("slope", "r_squared", "age_exponent")
+
+
+def trend_tables(trend: Any, full: bool) -> tuple[Table, ...]:
+    """All tables of a trend in reading order; those that bias shows in full stand aside unless ``full``."""
     document, frames = trend.to_dict(), trend.tables()
     tables = []
-    for name in ("record", "tests", "rate_laws", "age_exponent", "regressions", "nulls", "lists"):
-        frame = frames.get(name, pd.DataFrame())
-        screen = None
-        below: list[str] = []
+    for name, frame in sorted(frames.items(), key=lambda item: SHOWN.index(item[0]) if item[0] in SHOWN else len(SHOWN)):
+        screen, below = None, []
         if name == "record":
             screen = _record_frame(document["record"])
         elif name == "rate_laws" and not frame.empty:
@@ -106,24 +106,25 @@ def trend_tables(trend: Any) -> tuple[Table, ...]:
             below.append("growth and doubling time describe a curve; a singular date (t_star) is a property of a curve, not a forecast")
         elif name == "tests":
             below.append("p exact: by simulation given n, two-sided except anderson_darling; p adjusted: step-down over the tests")
-        elif name == "nulls":
+        elif name == "regressions" and not frame.empty:
+            screen = frame[frame["null_median"].notna()] if "null_median" in frame else frame
+            below.append("the null is picking evenly per decade of age, where the slope is 1 by construction; more estimators: --table regressions")
+        elif name == "nulls" and not frame.empty:
+            screen = frame[frame["statistic"].isin(NULL_STATISTICS)]
             below.append("each null makes whole lists with the same datings; p: share of them at least as far out (upper tail for slope and R²)")
-        elif name == "lists" and frame.empty:
-            continue
-        table = _laid_out(name, frame, TREND_COLUMNS, TREND_QUESTIONS, below)
-        tables.append(Table(name, frame, table.question, table.columns, table.below, screen=screen))
-    for name, frame in frames.items():
-        if name not in TREND_QUESTIONS or name in ("next", "track_record"):
-            if name not in {t.name for t in tables}:
-                tables.append(Table(name, frame, TREND_QUESTIONS.get(name, name.replace("_", " ").capitalize())))
+            below.append("every statistic: --table nulls")
+        if full and name in ("regressions", "nulls"):
+            screen = None
+        aside = (name not in SHOWN and not full) or (frame.empty and name in ("lists", "next", "track_record"))
+        tables.append(Table(name, frame, TREND_QUESTIONS.get(name, name.replace("_", " ").capitalize()), TREND_COLUMNS.get(name), tuple(below), screen=screen, aside=aside))
     return tuple(tables)
 
 
-def trend_page(trend: Any) -> Page:
+def trend_page(trend: Any, full: bool = False) -> Page:
     """Everything ``trend`` says; the verdict stands last so that it stays on the screen."""
     document = trend.to_dict()
     close = [*(f"note: {n}" for n in document["notes"]), *([""] if document["notes"] else []), "VERDICT", document["verdict"]]
-    return Page(document, trend_tables(trend), "tests", close=tuple(close))
+    return Page(document, trend_tables(trend, full), "tests", close=tuple(close))
 
 
 ROW = (
@@ -132,8 +133,8 @@ ROW = (
 )  # fmt: skip
 
 
-def bias_tables(bias: Any) -> tuple[Table, ...]:
-    """All tables of the bias checks that could run, the summary first."""
+def bias_tables(bias: Any, full: bool) -> tuple[Table, ...]:
+    """All tables of the bias checks that could run, the summary first; the others stand aside unless ``full``."""
     from ..bias import CHECKS
 
     questions = {c.name: c.question for c in CHECKS}
@@ -149,7 +150,7 @@ def bias_tables(bias: Any) -> tuple[Table, ...]:
             columns = (*ROW, *(C(str(k), str(k).replace("_", " "), _kind(frame, str(k)), 7) for k in frame.columns if str(k) not in {c.key for c in ROW} | {"check"}))
         if frame.empty and name != "summary":
             continue
-        tables.append(Table(name, frame, questions.get(name, name), columns))
+        tables.append(Table(name, frame, questions.get(name, name), columns, aside=not full and name != "summary"))
     return tuple(tables)
 
 
@@ -163,8 +164,8 @@ def _kind(frame: pd.DataFrame, key: str) -> str:
     return "number" if pd.api.types.is_float_dtype(frame[key]) else "text"
 
 
-def bias_page(bias: Any) -> Page:
-    """The summary, then a table a check, then what could not run."""
+def bias_page(bias: Any, full: bool = False) -> Page:
+    """The summary, then (if ``full``) a table a check, then what could not run."""
     document = bias.to_dict()
     notes = document.get("notes", [])
-    return Page(document, bias_tables(bias), "summary", close=tuple(f"note: {n}" for n in notes))
+    return Page(document, bias_tables(bias, full), "summary", close=tuple(f"note: {n}" for n in notes))

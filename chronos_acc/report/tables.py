@@ -22,6 +22,7 @@ KINDS = {
     "when": numbers.when,
     "yes": numbers.truth,
     "bar": None,
+    "right": None,  # text set to the right: numbers that are formatted already
 }
 
 
@@ -49,6 +50,7 @@ class Table:
     below: tuple[str, ...] = ()
     empty: str = "nothing to show"
     screen: pd.DataFrame | None = None
+    aside: bool = False  # not on the page; printed when asked for by name
 
     @property
     def shown(self) -> pd.DataFrame:
@@ -73,7 +75,7 @@ class Page:
     def chosen(self, name: str | None) -> Sequence[Table]:
         """All tables, or the one of that name; raises KeyError."""
         if name is None:
-            return self.tables
+            return [t for t in self.tables if not t.aside]
         found = [t for t in self.tables if t.name == name]
         if not found:
             raise KeyError(name)

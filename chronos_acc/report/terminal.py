@@ -45,6 +45,10 @@ def draw(page: Page, width: int, colour: bool, only: str | None = None) -> str:
             console.print(Text(page.headings[table.name].upper(), style="bold"))
             console.print()
         _draw_table(console, table, width)
+    asides = [t.name for t in page.tables if t.aside]
+    if only is None and asides:
+        console.print()
+        console.print(Text(f"more, by name: --table {' · '.join(asides)}", style="dim"))
     if only is None and page.close:
         console.print()
         for line in page.close:

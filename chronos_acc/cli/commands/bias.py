@@ -16,16 +16,17 @@ if TYPE_CHECKING:
 
 def _arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--checks", type=names, metavar="A,B", help="these checks only")
+    parser.add_argument("--full", action="store_true", help="every table of every check, not the summary alone")
     parser.add_argument("--exposure", metavar="FILE.csv", help="year,exposure for the exposure check")
 
 
 def _run(options: argparse.Namespace, out: Output) -> int:
     from ...bias import run_checks
     from ...bias.check import Context
-    from ...report.pages import bias_page
+    from ...report.analysis_pages import bias_page
     from ...store.timeline import entries
 
-    record = chosen_record(options, out)
+    record = chosen_record(options)
     exposure = None
     if options.exposure:
         from pathlib import Path
@@ -36,7 +37,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     rows, milestone = entries(timeline(options))
     context = Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, exposure=exposure, tell=out.tell)
     bias = run_checks(context, names=options.checks)
-    out.page(bias_page(bias))
+    out.page(bias_page(bias, full=options.full or options.checks is not None))
     return 0
 
 

@@ -33,7 +33,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     from pathlib import Path
 
     choices = read_choices(Path(options.choices)) if options.choices else None
-    record = chosen_record(options, out)
+    record = chosen_record(options)
     rows, milestone = entries(timeline(options))
     context = Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, tell=out.tell)
     grid = run_grid(context, choices=choices, joint=options.joint, tell=out.tell)

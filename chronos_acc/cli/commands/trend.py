@@ -14,16 +14,16 @@ if TYPE_CHECKING:
 
 
 def _arguments(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("--full", action="store_true", help="every table: all nulls and estimators, leverage, forgetting, completeness")
     parser.add_argument("--next", dest="next_event", action="store_true", help="the waiting time to the next milestone under each law, with its track record")
     parser.add_argument("--exposure", metavar="FILE.csv", help="year,exposure: count time in people, scholars or publications instead of years")
-    parser.add_argument("--hac", action="store_true", help="add autocorrelation-robust standard errors (from 100 milestones on; marked)")
 
 
 def _run(options: argparse.Namespace, out: Output) -> int:
-    from ...report.pages import trend_page
+    from ...report.analysis_pages import trend_page
     from ...trend.analysis import analyse
 
-    record = chosen_record(options, out)
+    record = chosen_record(options)
     exposure = None
     if options.exposure:
         from pathlib import Path
@@ -33,7 +33,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         exposure = read_exposure(Path(options.exposure))
     trend = analyse(record, seed=options.seed, draws=options.draws, exposure=exposure, next_event=options.next_event, command=command_line("trend", options),
                     tell=out.tell)  # fmt: skip
-    out.page(trend_page(trend))
+    out.page(trend_page(trend, full=options.full))
     if trend.verdict_code == "too_few":
         out.error("too few milestones to tell; the verdict says what such a list could show")
         return 1
