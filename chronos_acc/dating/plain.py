@@ -11,7 +11,7 @@ as written, ± 5·10^(−d−1). With a unit of UNITS that counts back, unsigned
     earliest = best − half, latest = best + half
 
 "length" leaves leading zeros out. The zero is the compile year Y as Y.0, 1950 or 2000. Whatever is not covered (PLAIN does not match, "-0", an
-era, radiocarbon, the compile year unknown, latest after the end of the compile year) is left to `read`: then `plain` gives None.
+era, radiocarbon, the compile year unknown, latest after the end of the compile year, beyond 1e15 years) is left to `read`: then `plain` gives None.
 """
 
 from __future__ import annotations
@@ -19,6 +19,7 @@ from __future__ import annotations
 import re
 
 from .settings import Settings
+from .span import FARTHEST
 from .units import B2K_YEAR, BP_YEAR, Unit, find_unit
 
 PLAIN = r"^[+-]?[0-9]+(\.[0-9]+)?$"
@@ -73,6 +74,8 @@ def plain(number: str, unit: str | None, settings: Settings) -> tuple[float, flo
         zeros = 0 if places or settings.digits == "all" else max(0, min(len(digits) - len(digits.rstrip("0")), len(digits) - settings.digits))
         best, half = zero - float(f"{number}e{back.power}"), float(f"5e{back.power + (-len(places) if places else zeros) - 1}")
         name = AGO_NAME if back.zero == "compiled" else BP_NAME
+    if not -FARTHEST <= best - half <= best + half <= FARTHEST:
+        return None
     if settings.compiled is not None and best + half > settings.compiled + 1:
         return None
     return best - half, best, best + half, name

@@ -63,12 +63,13 @@ def _rows(count: int) -> str:
 
 def date_rows(ledger: Ledger, rows: Rows, settings: Settings, tell: Tell = silent) -> Dates:
     """Make the view ``dated``; see the head of this file."""
-    keys = tuple(key for key in DATE_COLUMNS if key in rows.columns)
+    keys = tuple(key for key in DATE_COLUMNS if key == "date" or key in rows.columns)
+    undated = " AND ".join(f"l.{key} IS NULL" for key in ("date", "earliest", "latest") if key in keys)
     listed = ", ".join(keys)
     ledger.run("DROP VIEW IF EXISTS dated")
     ledger.run(
-        f"CREATE OR REPLACE TEMP TABLE list_texts AS SELECT {listed}, count(*) AS rows, min(rowid) AS first FROM list_rows "
-        f"WHERE p_kind IS NULL AND title IS NOT NULL AND date IS NOT NULL AND length(date) <= {TEXT_LIMIT} GROUP BY {listed}"
+        f"CREATE OR REPLACE TEMP TABLE list_texts AS SELECT {listed}, count(*) AS rows, min(rowid) AS first FROM list_rows AS l "
+        f"WHERE p_kind IS NULL AND title IS NOT NULL AND NOT ({undated}) AND coalesce(length(date), 0) <= {TEXT_LIMIT} GROUP BY {listed}"
     )
     seen = Dates()
     distinct = ledger.rows(f"SELECT {listed}, rows FROM list_texts ORDER BY first")
@@ -79,7 +80,7 @@ def date_rows(ledger: Ledger, rows: Rows, settings: Settings, tell: Tell = silen
         if rounded:
             seen.defaults["digits"] += rounded
     codes = ledger.notation_codes([NAMES[kind] for (kind,) in ledger.rows("SELECT DISTINCT p_kind FROM list_rows WHERE p_kind IS NOT NULL ORDER BY 1")])
-    _view(ledger, rows, keys, bool(distinct), codes, settings)
+    _view(ledger, rows, keys, undated, bool(distinct), codes, settings)
     return seen
 
 
@@ -126,7 +127,7 @@ def _read(ledger: Ledger, keys: Sequence[str], distinct: list[tuple[Any, ...]], 
         tell("reading dates", min(1.0, (start + len(chunk)) / len(distinct)))
 
 
-def _view(ledger: Ledger, rows: Rows, keys: Sequence[str], has_readings: bool, codes: Mapping[str, int], settings: Settings) -> None:
+def _view(ledger: Ledger, rows: Rows, keys: Sequence[str], undated: str, has_readings: bool, codes: Mapping[str, int], settings: Settings) -> None:
     columns = set(rows.columns)
 
     def column(key: str, kind: str = "VARCHAR") -> str:
@@ -136,7 +137,7 @@ def _view(ledger: Ledger, rows: Rows, keys: Sequence[str], has_readings: bool, c
     number = f"TRY_CAST({importance} AS DOUBLE)" if "importance" in columns else "CAST(NULL AS DOUBLE)"
     checks = [
         ("l.title IS NULL", literal("the row has no title")),
-        ("l.date IS NULL", literal("the row has no date")),
+        (undated, literal("the row has no date")),
         (f"length(l.date) > {TEXT_LIMIT}", f"'the date has ' || length(l.date) || ' characters; at most {TEXT_LIMIT} are read'"),
     ]
     if has_readings:
@@ -157,7 +158,7 @@ def _view(ledger: Ledger, rows: Rows, keys: Sequence[str], has_readings: bool, c
     join = ""
     if has_readings:
         join = " LEFT JOIN list_readings AS r ON " + " AND ".join(
-            f"r.{key} = l.{key}" if key == "date" else f"r.{key} IS NOT DISTINCT FROM l.{key}" for key in keys
+            f"r.{key} = l.{key}" if len(keys) == 1 else f"r.{key} IS NOT DISTINCT FROM l.{key}" for key in keys
         )
     ledger.run(
         f"CREATE TEMP VIEW dated AS SELECT l.rowid AS place, {rows.row if rows.row == 'row' else 'l.' + rows.row} AS row, l.title, "

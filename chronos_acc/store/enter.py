@@ -88,14 +88,19 @@ def enter(
 
 def _number(ledger: Ledger) -> int:
     """``list_nth``: nth and duplicate of entries whose title stands more than once in the list. Returns the number of duplicates."""
-    ledger.run("DROP TABLE IF EXISTS list_nth")
+    # Hashes are grouped first, because few titles stand twice and numbers are grouped faster than texts.
     ledger.run(
-        "CREATE TEMP TABLE list_nth AS "
-        "WITH repeated AS (SELECT title FROM dated WHERE reason IS NULL GROUP BY title HAVING count(*) > 1) "
-        "SELECT place, row_number() OVER (PARTITION BY title ORDER BY place) AS nth, "
-        "row_number() OVER (PARTITION BY title, earliest, best, latest, normal ORDER BY place) > 1 AS duplicate "
-        "FROM dated WHERE reason IS NULL AND title IN (SELECT title FROM repeated)"
+        "CREATE OR REPLACE TEMP TABLE list_repeated AS "
+        "SELECT hash(title) AS title FROM list_rows WHERE title IS NOT NULL GROUP BY hash(title) HAVING count(*) > 1"
     )
+    ledger.run(
+        "CREATE OR REPLACE TEMP TABLE list_nth AS SELECT place, row_number() OVER (PARTITION BY title ORDER BY place) AS nth, "
+        "row_number() OVER (PARTITION BY title, earliest, best, latest, normal ORDER BY place) > 1 AS duplicate "
+        "FROM dated WHERE reason IS NULL AND hash(title) IN (SELECT title FROM list_repeated)"
+        if ledger.value("SELECT count(*) FROM list_repeated")
+        else "CREATE OR REPLACE TEMP TABLE list_nth (place BIGINT, nth BIGINT, duplicate BOOLEAN)"
+    )
+    ledger.run("DROP TABLE list_repeated")
     return int(ledger.value("SELECT count(*) FROM list_nth WHERE duplicate"))
 
 

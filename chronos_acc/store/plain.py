@@ -10,9 +10,11 @@ from collections.abc import Sequence
 
 from ..dating import Settings
 from ..dating.plain import AGO_NAME, BP_NAME, PLAIN_AGE, PLAIN_DECIMAL_YEAR, PLAIN_YEAR, YEAR_NAME, plain_unit, zero_of
-from ..dating.units import UNITS
+from ..dating.span import FARTHEST
 from .ledger import Ledger
+from .table import quoted as literal
 
+UNITS_LIMIT = 50  # different units in a column that are looked at; rows with others are read as texts
 NAMES = {1: YEAR_NAME, 2: AGO_NAME, 3: BP_NAME}
 _SPOILS = ("sigma", "plus_minus", "earliest", "latest")  # with one of these a row is more than its number
 
@@ -24,9 +26,14 @@ def plain_sql(ledger: Ledger, settings: Settings, keys: Sequence[str], source: s
         return none
     alone = " AND ".join(f"{key} IS NULL" for key in _SPOILS if key in keys) or "true"
     if "unit" in keys:
-        _units(ledger, settings)
+        # No join: it would shuffle the rows, and a row's number is its position.
         spelled = "coalesce(lower(replace(unit, '.', '')), '')"
-        known = f"SELECT s.*, u.kind AS p_kind, u.power AS p_power, u.zero AS p_zero FROM {source} AS s LEFT JOIN list_units AS u ON u.spelling = {spelled}"
+        given = [str(unit) for (unit,) in ledger.rows(f"SELECT DISTINCT {spelled} AS u FROM {source} ORDER BY u LIMIT {UNITS_LIMIT}")]
+        units = [(literal(unit), *found) for unit in given if (found := _kind(unit or None, settings))]
+        if not units:
+            return none
+        columns = [f"CASE {spelled} {' '.join(f'WHEN {unit[0]} THEN {unit[i]!r}' for unit in units)} END" for i in (1, 2, 3)]
+        known = f"SELECT *, {columns[0]} AS p_kind, {columns[1]} AS p_power, CAST({columns[2]} AS DOUBLE) AS p_zero FROM {source}"
         kinds = {1, 2, 3}
     else:
         found = _kind(None, settings)
@@ -59,6 +66,7 @@ def plain_sql(ledger: Ledger, settings: Settings, keys: Sequence[str], source: s
         half.append(f"WHEN p_kind > 1 THEN CAST('5e' || (p_power - 1 + CASE WHEN p_places > 0 THEN -p_places ELSE {zeros} END) AS DOUBLE)")
     made = f"SELECT *, CASE {' '.join(best)} END AS p_best, CASE {' '.join(half)} END AS p_half FROM ({places})"
     covered = "p_best IS NOT NULL AND NOT regexp_matches(date, '^-[0.]+$')" if 1 in kinds else "p_best IS NOT NULL"
+    covered += f" AND p_best - p_half >= {-FARTHEST}::DOUBLE AND p_best + p_half <= {FARTHEST}::DOUBLE"
     if settings.compiled is not None:
         covered += f" AND p_best + p_half <= {settings.compiled + 1}::DOUBLE"
     return (
@@ -75,11 +83,3 @@ def _kind(unit: str | None, settings: Settings) -> tuple[int, int, float] | None
     zero = zero_of(back, settings)
     return None if zero is None else (2 if back.zero == "compiled" else 3, back.power, zero)
 
-
-def _units(ledger: Ledger, settings: Settings) -> None:
-    """``list_units``: every spelling of a unit, and "" for rows without one, under these settings."""
-    rows = [(spelling, _kind(spelling or None, settings)) for spelling in ("", *UNITS)]
-    known = [(spelling, *found) for spelling, found in rows if found is not None]
-    columns = {name: [row[i] for row in known] for i, name in enumerate(("spelling", "kind", "power", "zero"))}
-    ledger.run("CREATE OR REPLACE TEMP TABLE list_units (spelling VARCHAR, kind TINYINT, power INTEGER, zero DOUBLE)")
-    ledger.insert("list_units", columns)

@@ -50,7 +50,9 @@ def fill(ledger: Ledger, table: Table, columns: Mapping[str, int], settings: Set
 
 
 def _trimmed(column: str) -> str:
-    return f"nullif(trim({column}, {literal(SPACES)}), '')"
+    """SQL of a cell without the spaces around it, NULL where nothing is left; cells that begin and end in plain letters are not searched."""
+    odd = " OR ".join(f"NOT ({column}[{end}] BETWEEN '!' AND '~')" for end in (1, -1))
+    return f"CASE WHEN {odd} THEN nullif(trim({column}, {literal(SPACES)}), '') ELSE {column} END"
 
 
 def _by_database(ledger: Ledger, table: Table, columns: Mapping[str, int], kept: frozenset[int], settings: Settings) -> Rows | None:
@@ -58,16 +60,22 @@ def _by_database(ledger: Ledger, table: Table, columns: Mapping[str, int], kept:
     if fast is None:
         return None
     chosen = [f"{_trimmed(f'c{place}')} AS {quoted(key)}" for key, place in columns.items()]
+    if "date" not in columns:
+        chosen.append("CAST(NULL AS VARCHAR) AS date")
     if kept:
         named = rest_names(table.header, kept)
         pairs = ", ".join(f"{literal(name)}, nullif(c{place}, '')" for place, name in named.items())
         chosen.append(f"nullif(CAST(json_merge_patch('{{}}', json_object({pairs})) AS VARCHAR), '{{}}') AS rest")
     try:
-        select = plain_sql(ledger, settings, tuple(columns), f"(SELECT {', '.join(chosen)} FROM ({fast.query}))")
-        ledger.run(f"CREATE TEMP TABLE list_rows AS {select}", fast.parameters)
+        source, parameters = f"(SELECT {', '.join(chosen)} FROM ({fast.query}))", fast.parameters
+        if "unit" in columns:  # the units are looked at before the rows are
+            ledger.run(f"CREATE OR REPLACE TEMP TABLE list_cells AS FROM {source}", parameters)
+            source, parameters = "list_cells", ()
+        ledger.run(f"CREATE TEMP TABLE list_rows AS {plain_sql(ledger, settings, tuple(columns), source)}", parameters)
     except duckdb.Error:  # out of the ordinary after all: read line by line, where each line answers for itself
         ledger.run("DROP TABLE IF EXISTS list_rows")
         return None
+    ledger.run("DROP TABLE IF EXISTS list_cells")
     count = int(ledger.value("SELECT count(*) FROM list_rows"))
     if fast.rows is not None and count != fast.rows:
         ledger.run("DROP TABLE list_rows")
@@ -79,7 +87,7 @@ def _line_by_line(ledger: Ledger, table: Table, columns: Mapping[str, int], kept
     import pandas as pd
 
     named = rest_names(table.header, kept)
-    fields = ", ".join(f"{quoted(key)} VARCHAR" for key in ("raw", *columns, "rest"))
+    fields = ", ".join(f"{quoted(key)} VARCHAR" for key in dict.fromkeys(("raw", *columns, "date", "rest")))
     ledger.run(f"CREATE OR REPLACE TEMP TABLE list_cells (row BIGINT, {fields})")
     rows = Rows(tuple(columns), "row", bool(kept), True, 0)
     lines = _guarded(table.lines(frozenset(columns.values()), kept), name)

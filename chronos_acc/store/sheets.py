@@ -295,6 +295,8 @@ def columns_of(header: Sequence[str], sheet: Sheet, name: str) -> dict[str, int]
             hint = nearest_header(wanted, header)
             raise SheetRefused(f"{sheet.path}: [columns] {key} is {wanted!r}, but {name} has the columns {shown}{hint}")
     for key in NEEDED:
+        if key == "date" and "earliest" in found and "latest" in found:
+            continue  # bounds of their own date a row as well
         if key not in found:
             raise ListRefused(
                 f"{name}: no column {key!r}; its columns are {shown}; name the right one under [columns] of a sheet "

@@ -14,7 +14,7 @@ from ..errors import ListRefused, WrongUse
 from .table import Asked, clip
 
 BLOCK = 1 << 23
-BINARY_SHARE = 0.1  # of the first 64 KiB that may be control characters
+BINARY_SHARE = 0.05  # of the first 64 KiB that may be control characters
 _MARKS = ((codecs.BOM_UTF32_LE, "utf-32"), (codecs.BOM_UTF32_BE, "utf-32"), (codecs.BOM_UTF8, "utf-8"), (codecs.BOM_UTF16_LE, "utf-16"), (codecs.BOM_UTF16_BE, "utf-16"))
 _KINDS = (
     (b"PK\x03\x04", "a zip archive or an Excel workbook"),
