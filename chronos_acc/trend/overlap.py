@@ -194,8 +194,8 @@ class _Problem:
         gradient[-1] -= over_beta - float((np.abs(over_alpha) * np.sign(beta)).sum())
         return value, gradient
 
-    def climb(self, theta: Floats, growth: float | None = None) -> tuple[Floats, float] | None:
-        """The maximum from a start, growth times window held at ``growth`` where given."""
+    def climb(self, theta: Floats, growth: float | None = None, shape: Floats | None = None) -> tuple[Floats, float] | None:
+        """The maximum from a start, growth times window held at ``growth`` where given. ``shape``: a first guess of the inverse information."""
         from scipy.optimize import minimize
 
         free = slice(0, len(theta)) if growth is None else slice(1, len(theta))
@@ -209,7 +209,10 @@ class _Problem:
             value, gradient = self.value(full)
             return -value, -gradient[free]
 
-        result = minimize(negative, base[free], jac=True, method="BFGS", options={"gtol": 1e-6, "maxiter": 400})
+        options: dict[str, object] = {"gtol": 1e-6, "maxiter": 400}
+        if shape is not None:
+            options["hess_inv0"] = shape
+        result = minimize(negative, base[free], jac=True, method="BFGS", options=options)
         if not np.isfinite(result.fun):
             return None
         base[free] = result.x
@@ -240,6 +243,11 @@ class _Problem:
         from scipy.optimize import brentq
 
         width = 2.0 if covariance is None else float(np.clip(1.96 * np.sqrt(covariance[0, 0]), 0.2, 1e4))
+        # what the other parameters' information is with growth held: near the maximum the climbs then take few steps
+        shape = None if covariance is None else np.linalg.inv(np.linalg.inv(covariance)[1:, 1:])
+        shape = None if shape is None else (shape + shape.T) / 2
+        if shape is not None and not np.linalg.eigvalsh(shape)[0] > 0:
+            shape = None
         ends: list[float | None] = []
         for side in (-1.0, 1.0):
             last = theta
@@ -248,7 +256,7 @@ class _Problem:
                 nonlocal last
                 start = last.copy()
                 start[0] = g
-                found = self.climb(start, g)
+                found = self.climb(start, g, shape)
                 if found is None:
                     return CHI2_95
                 last = found[0]
@@ -259,7 +267,7 @@ class _Problem:
             for _ in range(12):
                 far = float(theta[0]) + side * reach
                 if drop(far) > 0:
-                    end = float(brentq(drop, near, far, xtol=1e-5 * max(1.0, abs(far)), rtol=1e-9))
+                    end = float(brentq(drop, near, far, xtol=1e-4 * width, rtol=1e-9))
                     break
                 near, reach = far, 1.6 * reach
             ends.append(end)

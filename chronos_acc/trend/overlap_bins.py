@@ -127,19 +127,22 @@ def _fit(histories: Bools, counts: Floats, pairs: tuple[tuple[int, int], ...]) -
     for _ in range(200):
         mu = np.exp(np.minimum(design @ beta, 500.0))
         information = (design * mu[:, None]).T @ design
-        if np.linalg.cond(information) > 1e14:
+        try:
+            step = np.linalg.solve(information, design.T @ (counts - mu))
+        except np.linalg.LinAlgError:
             return None
-        step = np.linalg.solve(information, design.T @ (counts - mu))
         length = 1.0
         while value(beta + length * step) < here - 1e-12 * abs(here) and length > 1e-8:
             length /= 2
         beta = beta + length * step
         here = value(beta)
-        if np.abs(step).max() < 1e-11:
+        if np.abs(step).max() < 1e-9:
             break
     else:
         return None
     mu = np.exp(design @ beta)
+    if np.linalg.cond((design * mu[:, None]).T @ design) > 1e12:  # a maximum that runs off to infinity
+        return None
     with np.errstate(divide="ignore", invalid="ignore"):
         deviance = 2 * float(np.where(counts > 0, counts * np.log(counts / mu), 0.0).sum() - (counts - mu).sum())
     n, k = float(counts.sum()), design.shape[1]
