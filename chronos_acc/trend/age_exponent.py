@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The age exponent: how steeply milestones thin out with age, on a scale that needs no interval between them.
 
 Ages have density proportional to a^(-s) between the youngest and the oldest, which are kept: s = 0 is a steady rate, 0 < s < 1 partial forgetting, s = 1

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Null laws with a closed form: of the number of reversals, and of A² in large samples."""
 
 from __future__ import annotations

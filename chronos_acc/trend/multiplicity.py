@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Adjusting p-values when several tests look at one record."""
 
 from __future__ import annotations

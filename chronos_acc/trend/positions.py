@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Where the counted events stand in their window, as fractions of it: what tests and laws work on.
 
 Both the position x = (t - start)/span and the age v = (present - t)/span are kept, each from its own difference, so that neither

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Rate laws fitted to one window: estimates, intervals, weights, and whether each law fits at all.
 
 log L = sum ln rate(t_i) - integral of the rate over the window, in events per year, without n!. Intervals are profile likelihoods, twice: Poisson, and

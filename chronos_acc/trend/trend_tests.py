@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Five tests of trend in one window, each with an exact p-value, and their joint adjustment.
 
 Two families, by what they take for granted. *Steady*: laplace, mil_hdbk_189 and anderson_darling ask whether events fall as under a

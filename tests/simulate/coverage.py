@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """How often the 95 % intervals of laws and exponents hold the truth: `python -m tests.simulate.coverage [records]`. Prints Markdown tables."""
 
 from __future__ import annotations

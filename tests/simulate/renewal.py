@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Records with spacing of any kind: equilibrium renewal processes in operational time, bent by a growing rate."""
 
 from __future__ import annotations

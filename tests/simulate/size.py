@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """How often each test calls a trend where there is none: `python -m tests.simulate.size [records]`. Prints Markdown tables; nominal 5 %."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The age exponent: its likelihood by brute force, recovery, coverage, eras, and degenerate records."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The family of rate laws: each law's density, share, inverse, fit and interval against slow second implementations on the raw likelihood."""
 
 from __future__ import annotations

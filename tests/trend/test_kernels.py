@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The vectorised statistics against slow second implementations."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Published and recomputed values for trend tests and rate laws, each with its source."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Rate laws on one window: likelihoods from the definition, scaling, weights, fit, recovery, and degenerate records."""
 
 from __future__ import annotations

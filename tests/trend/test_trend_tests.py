@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The five tests on one window: exact laws, ties, adjustment, properties, degenerate records, and error rates."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Rate laws, which are forgetting curves too: one small file each."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """What a rate law is: a density on the unit window with its fit, its cumulated share, its inverse and its profile interval.
 
 Each law is used alike for one record and for many at once: arrays end in the events of one record. Laws work in scaled time (x = position,

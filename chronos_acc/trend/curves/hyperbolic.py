@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The hyperbolic rate, a/(t_star - t): it would pass every bound at t_star, which lies after the present.
 
 theta is tau = ln((t_star - present)/window), +inf where the likelihood only rises towards t_star -> infinity: then the law is the steady one.

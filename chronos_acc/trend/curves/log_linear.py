@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The log-linear rate, a·exp(growth·t) (Cox and Lewis 1966): the rate doubles every ln 2/growth years.
 
 theta is k = growth × window. The likelihood of one record depends on its mean age alone, so that the estimate has the closed form

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The power law of reliability growth, rate ∝ (t - start)^(exponent - 1) (Crow 1974): above 1 speeding, below 1 slowing.
 
 theta is the exponent; its origin is the start of the window, so it has an interval only where a start was given.

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The steady rate: as many events in any year as in any other (homogeneous Poisson process)."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The step: one rate before a date, another after it. Judged by its bootstrap likelihood ratio only.
 
 theta is (position of the step, share of the events before it). On either side at least max(5, a tenth) of the events; between two events the
