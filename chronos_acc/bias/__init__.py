@@ -9,7 +9,7 @@ from dataclasses import replace
 from ..errors import RecordRefused, WrongUse
 from ..progress import Tell
 from . import (
-    completeness, covariates, dating, depth, equal_effort, false_splits, granularity, importance, leave_out, lists, merging, recall_decay, recent_end, support,
+    completeness, covariates, dating, depth, equal_effort, exposure, false_splits, granularity, importance, leave_out, lists, merging, recall_decay, recent_end, support,
 )  # fmt: skip
 from .check import Answer, Check, Context, Row
 from .growth import growth
@@ -30,6 +30,7 @@ CHECKS: tuple[Check, ...] = (
     equal_effort.CHECK,
     covariates.CHECK,
     lists.CHECK,
+    exposure.CHECK,
 )
 LEAST_MILESTONES = 3
 
