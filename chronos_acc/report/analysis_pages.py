@@ -169,3 +169,26 @@ def bias_page(bias: Any, full: bool = False) -> Page:
     document = bias.to_dict()
     notes = document.get("notes", [])
     return Page(document, bias_tables(bias, full), "summary", close=tuple(f"note: {n}" for n in notes))
+
+
+def grid_tables(grid: Any) -> tuple[Table, ...]:
+    """The tables of a grid; every combination stands aside."""
+    questions = {
+        "summary": "How many defensible combinations find speeding, and how many the opposite?",
+        "joint": "How often would a null record give as much?",
+        "variance": "Which choice moves the answer most?",
+        "extremes": "Which combinations stand at the ends?",
+        "choices": "What was varied?",
+        "invalid": "Which combinations make no sense, and why?",
+        "own": "Where do your own choices lie?",
+    }
+    tables = []
+    for name, frame in grid.tables().items():
+        tables.append(Table(name, frame, questions.get(name, name.replace("_", " ").capitalize()), None, aside=name == "combinations" or frame.empty))
+    return tuple(tables)
+
+
+def grid_page(grid: Any) -> Page:
+    """What the combinations say together."""
+    document = grid.to_dict()
+    return Page(document, grid_tables(grid), "combinations", close=tuple(f"note: {n}" for n in document.get("notes", [])))

@@ -202,3 +202,10 @@ def decisions_page(frame: pd.DataFrame) -> Page:
         Column("verdict", "verdict"), Column("status", "status"), Column("who", "who", "text", 3), Column("decided_at", "when", "text", 4), Column("why", "why", "text", 5),
     )  # fmt: skip
     return frame_page("decisions", frame, "What has been settled, and does it hold?", columns, empty="nothing has been settled yet; chronos-acc review shows what waits")
+
+
+def charts_page(charts: Sequence[Any]) -> Page:
+    """The kinds of chart."""
+    rows = [{"kind": c.name, "question": c.question, "needs": c.needs} for c in charts]
+    columns = (Column("kind", "kind"), Column("question", "question it answers"), Column("needs", "needs", "text", 2))
+    return Page(rows, (Table("charts", pd.DataFrame(rows), "What can be drawn?", columns, ("in the terminal: chronos-acc chart KIND; for print: --to FILE.svg",)),), "charts")

@@ -31,7 +31,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     if options.exposure:
         from pathlib import Path
 
-        from ...store.formats.exposure import read_exposure
+        from ...trend.exposure import read_exposure
 
         exposure = read_exposure(Path(options.exposure))
     rows, milestone = entries(timeline(options))

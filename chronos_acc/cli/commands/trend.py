@@ -28,7 +28,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     if options.exposure:
         from pathlib import Path
 
-        from ...store.formats.exposure import read_exposure
+        from ...trend.exposure import read_exposure
 
         exposure = read_exposure(Path(options.exposure))
     trend = analyse(record, seed=options.seed, draws=options.draws, exposure=exposure, next_event=options.next_event, command=command_line("trend", options),
