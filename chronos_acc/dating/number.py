@@ -6,7 +6,7 @@ import re
 from functools import lru_cache
 from typing import Literal, NamedTuple
 
-_TAIL = r"(?P<power>[eE]\+?[0-9]{1,2}|\s?[x×*·]\s?10\s?(?:\^|\*\*)\s?[0-9]{1,2})?"
+_TAIL = r"(?P<power>[eE][+-]?[0-9]{1,3}|\s?[x×*·]\s?10\s?(?:\^|\*\*)\s?[0-9]{1,2})?"
 
 
 def _pattern(mark: str, group: str) -> str:

@@ -18,7 +18,7 @@ LONGEST = 200
 
 _NO_UNIT_WORDS = re.compile(
     r"\b(?:circa|ca?|approximately|approx|about|around|roughly|between|and|from|to|through|until|till|before|after|since|prior|post|ante|by|up|not|no|"
-    r"earlier|later|than|older|younger|sigma|sd|s\.d|probably|perhaps|possibly|ci|hpd)\b\.?|[0-9][eE]\+?(?=[0-9])|[x×*] ?10(?=\^| \^|\*\*)|σ", re.IGNORECASE)
+    r"earlier|later|than|older|younger|sigma|sd|s\.d|probably|perhaps|possibly|ci|hpd)\b\.?|[0-9][eE][+-]?(?=[0-9])|[x×*] ?10(?=\^| \^|\*\*)|σ", re.IGNORECASE)
 _SHOULD_STAND = re.compile(r"[^\W\d_]|[/:\[\]{}]|\.\.|\A-?[0-9]{4}-[0-9]{2}(?:-[0-9]{2})?\Z|[0-9][.][0-9]+[.]")
 
 
@@ -85,10 +85,10 @@ _HINTS = (
     (re.compile(r"[0-9],[0-9]{1,2}(?![0-9])|[0-9],[0-9]{4}"), "a comma groups thousands and needs three digits behind it; set decimal = \",\" if it is the list's decimal mark"),
     (re.compile(r"[0-9]\.[0-9]{3}\.[0-9]"), "a point is the decimal mark; set decimal = \",\" if points group thousands in this list"),
     (re.compile(r"[0-9] ?years?\Z", re.IGNORECASE), "years alone may be a length of time; write \"years ago\", or the calendar year without a unit"),
-    (re.compile(r"\b(?:unknown|open|uuuu)\b|[0-9]u", re.IGNORECASE), "that is an older draft's form; write X for an unspecified digit, .. for an open end, nothing for an unknown one"),
-    (re.compile(r"[0-9]\.\.[0-9]|[\[{]"), "write a set without spaces as [1667,1668] (one of) or {1667..1672} (all of)"),
     (re.compile(r"\bturn of|\bbeginning|\bend of|\bstart of", re.IGNORECASE), "say early, mid or late, or give the years"),
     (re.compile(r"\A[^0-9]*\Z"), "it has no number and is no name of the period table; give a date"),
+    (re.compile(r"\b(?:unknown|open|uuuu)\b|[0-9]u", re.IGNORECASE), "that is an older draft's form; write X for an unspecified digit, .. for an open end, nothing for an unknown one"),
+    (re.compile(r"[0-9]\.\.[0-9]|[\[{]"), "write a set without spaces as [1667,1668] (one of) or {1667..1672} (all of)"),
 )
 
 

@@ -76,8 +76,8 @@ def close(span: Span, settings: Settings) -> tuple[Span, list[str]]:
         else:
             raise DateRefused("has no late end; give the compile year, set latest_limit (or reach) in the list's sheet, or give the latest year")
         remarks.append(f"the open late end was closed at {latest:.12g} by {by}")
-    if earliest > latest:
-        raise DateRefused(f"would end at {latest:.12g} before it begins at {earliest:.12g}, by the limits of the list; check the limits and the compile year")
+    if earliest >= latest:
+        raise DateRefused(f"would end at {latest:.12g} and begin at {earliest:.12g}, by the limits of the list; check the limits and the compile year")
     return span._replace(earliest=earliest, best=middle(earliest, latest), latest=latest), remarks
 
 

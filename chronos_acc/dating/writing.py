@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from decimal import Decimal
-
 from .calendar import day_bounds, from_julian_day, julian_day
 from .dating import Dating, Reading
 from .settings import DEFAULTS
@@ -25,9 +23,8 @@ def write(dating: Dating) -> str:
 
 
 def _plain(year: float) -> str:
-    """All the digits of a float64, with a point and without an exponent, so that it is read as written."""
-    text = format(Decimal(repr(year + 0.0)), "f")
-    return text if "." in text else f"{text}.0"
+    """The shortest digits that give a float64 back, with a point or an exponent, so that it is read as written and not as a whole year."""
+    return repr(year + 0.0)
 
 
 def _day(low: float, high: float) -> str | None:

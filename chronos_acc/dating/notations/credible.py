@@ -5,14 +5,15 @@ from __future__ import annotations
 import re
 
 from ...errors import DateRefused
+from ..number import split_number
 from ..settings import Settings
 from ..span import Span
 from .notation import Notation, Part
 
 _FORM = re.compile(
     r"(?P<best>[^(\[]*[0-9][^(\[]*?) ?[(\[] ?(?P<share>[0-9.]+) ?% ?(?:ci|c\.i\.|hpd|hdi|cri|confidence interval|credible interval|interval|range)?[:=,]? ?"
-    r"(?P<low>[+-]?[0-9][0-9.,' ]*?) ?(?:to|–|-|,) ?(?P<high>[+-]?[0-9][0-9.,']*)(?: ?(?P<own>[^\d\])][^\])]*))?[)\]] ?(?P<tail>.*)\Z", re.IGNORECASE)
-_NUMBER = re.compile(r"[+-]?[0-9.,' ]+\Z")
+    r"(?P<low>[+-]?[0-9][0-9.,' ]*?(?:e[+-]?[0-9]+)?) ?(?:to|–|-|,) ?(?P<high>[+-]?[0-9][0-9.,']*(?:e[+-]?[0-9]+)?)(?: ?(?P<own>[^\d\])][^\])]*))?[)\]] ?(?P<tail>.*)\Z", re.IGNORECASE)
+_NUMBER = re.compile(r"[+-]?[0-9.,' ]+(?:e[+-]?[0-9]+)?\Z")
 
 
 def read(text: str, settings: Settings, part: Part) -> Span | None:
@@ -30,7 +31,8 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     best = part(f"{head} {tail}".strip(), 1)
     if best is None or not best.last:
         return None
-    own = found["own"] or tail or re.sub(r"\A[+-]?[0-9.,' ]+", "", head)
+    written = split_number(head, settings.decimal)
+    own = found["own"] or tail or (written[1] if written else "")
     ends = [part(f"{found[name]} {own}".strip(), 1) for name in ("low", "high")]
     if ends[0] is None or ends[1] is None:
         return None

@@ -6,11 +6,13 @@ import re
 
 from ...errors import DateRefused
 from ..edtf import edtf
+from ..number import Number
 from ..settings import Settings
 from ..span import Span, flat
 from .notation import Notation, Part
 
 _HYPHENS = re.compile(r"(-?[0-9]{4})-([0-9]{2})(?:-([0-9]{2}))?\Z")
+_YEAR = re.compile(r"-?([0-9]{4})[?~%]?\Z")
 _BACKWARDS = re.compile(r"-?[0-9]{4}[-0-9]*/-?[0-9]{4}[-0-9]*\Z")
 _JULIAN_ENDS = 1582 + 287 / 365  # 15 October 1582, the first day of the Gregorian calendar
 
@@ -31,7 +33,8 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if found.kind in ("day", "month") and found.earliest < _JULIAN_ENDS:
         uses += ("calendar",)
     span = flat(found.kind, found.earliest, found.latest, found.words, uses)
-    return span._replace(last=1.0) if found.kind == "year" and found.latest - found.earliest == 1.0 else span
+    whole = _YEAR.match(text)  # a year by itself is a number, for circa and plus-minus
+    return span._replace(last=float(10 ** Number("", whole[1], 0, 0).significant(settings.digits))) if whole else span
 
 
 def _why(shaped: re.Match[str]) -> str:

@@ -33,8 +33,7 @@ def era_year(number: Number, unit: Unit, settings: Settings) -> Span:
         raise DateRefused(f"gives a part of a year with {unit.name}, which counts whole years; use a decimal year without an era")
     if value == 0:
         raise DateRefused(f"names a year 0 {unit.name}, which no era has: 1 BCE is followed by 1 CE; write year 0 without an era for 1 BCE")
-    at_least = settings.digits if unit.zero == "bce" else 2
-    places = max(0, unit.power + number.significant(at_least))
+    places = max(0, unit.power + number.significant(settings.digits))
     last = float(10**places)
     if unit.zero == "ce":
         half = 0.5 if number.whole and not unit.power else max(last / 2, 0.5)

@@ -22,7 +22,7 @@ _WORDED = (
 _HAS_WORD = re.compile(r"[ -](?:to|until|till|through|thru|or|and)[ -]", re.IGNORECASE)
 _DASHES = re.compile(r" ?(?:–|--+) ?")
 _HYPHEN = re.compile(r"(?<=[\w.)'?])-(?=[\w.+~?-])")
-_ISO = re.compile(r"[?~%]?[+-]?[0-9X]{4}[?~%]?-[?~%]?[0-9X]{2}(?![0-9X])")
+_ISO = re.compile(r"[?~%]?[+-]?[0-9X]{4}[?~%]?-[?~%]?[0-9X]{2}(?=\Z|[T/?~%-])")
 _FOUR_TWO = re.compile(r"(?:.*[^0-9.,])?([0-9]{4})-([0-9]{1,2})(?![0-9.,])(?P<tail>.*)\Z")
 _DAY_MONTH_YEAR = re.compile(r"[0-9]{1,2}(?:st|nd|rd|th)?-[^\W\d_]{3,9}\.?[- ]-?[0-9]+\Z")  # 12-Apr-1961 is one day
 _NOW = frozenset(("present", "the present", "now", "today", "date", "present day"))
@@ -182,6 +182,8 @@ def _one_sided(start: Span, right: str, left_tail: str, settings: Settings, part
 
 
 def _ordered(start: Span, end: Span, settings: Settings) -> Span:
+    if "normal" in (start.shape, end.shape):
+        raise DateRefused("gives an error at the end of a range; give the bounds alone, or one date with its error")
     if (start.low, start.high) == (end.low, end.high):
         raise DateRefused(f"is a range from {_brief(start)} to itself; write that date alone")
     if start.low > end.low:
