@@ -2,7 +2,7 @@
 -- question: Where do lists date the same event differently, and by how much?
 -- parameters:
 --   at_least = 0: difference of the best years, in years, at least
---   limit = 20: rows shown at most
+--   rows = 20: rows shown at most
 -- columns:
 --   milestone: id of the milestone
 --   title: its title
@@ -16,4 +16,4 @@ SELECT milestone, title, source_a, date_a, source_b, date_b, difference, gap
 FROM disagreement
 WHERE abs(difference) >= coalesce(getvariable('at_least')::DOUBLE, 0)
 ORDER BY abs(difference) DESC, milestone, source_a, source_b, date_a, date_b, difference, gap
-LIMIT coalesce(getvariable('limit')::BIGINT, 20)
+LIMIT coalesce(getvariable('rows')::BIGINT, 20)

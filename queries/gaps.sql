@@ -3,7 +3,7 @@
 -- parameters:
 --   present = NULL: the present, decimal year; the end of the earliest compile year without it
 --   start = NULL: only milestones from this decimal year on
---   limit = 20: rows shown at most
+--   rows = 20: rows shown at most
 -- columns:
 --   rank: 1 is the longest
 --   title: milestone before the gap
@@ -15,4 +15,4 @@
 SELECT rank, title, year, next_title, next_year, interval, times_median
 FROM gaps
 ORDER BY rank
-LIMIT coalesce(getvariable('limit')::BIGINT, 20)
+LIMIT coalesce(getvariable('rows')::BIGINT, 20)

@@ -3,7 +3,7 @@
 -- parameters:
 --   present = NULL: the present, decimal year; the end of the earliest compile year without it
 --   start = NULL: only milestones from this decimal year on
---   limit = 20: rows shown at most
+--   rows = 20: rows shown at most
 -- columns:
 --   milestone: id of the milestone before the jump
 --   title: its title
@@ -15,4 +15,4 @@ SELECT milestone, title, year, age, age - interval AS next_age, age / (age - int
 FROM intervals
 WHERE NOT open AND age > interval
 ORDER BY ratio DESC, milestone
-LIMIT coalesce(getvariable('limit')::BIGINT, 20)
+LIMIT coalesce(getvariable('rows')::BIGINT, 20)

@@ -1,7 +1,7 @@
 -- SPDX-License-Identifier: Apache-2.0
 -- question: Which grids and reports were made from this timeline?
 -- parameters:
---   limit = 100: rows shown at most
+--   rows = 100: rows shown at most
 -- columns:
 --   run: id of the run
 --   run_at: when, UTC
@@ -13,4 +13,4 @@
 SELECT run, run_at, command, version, seed, draws, record
 FROM runs
 ORDER BY run DESC
-LIMIT coalesce(getvariable('limit')::BIGINT, 100)
+LIMIT coalesce(getvariable('rows')::BIGINT, 100)

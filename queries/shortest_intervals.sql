@@ -3,7 +3,7 @@
 -- parameters:
 --   present = NULL: the present, decimal year; the end of the earliest compile year without it
 --   start = NULL: only milestones from this decimal year on
---   limit = 20: rows shown at most
+--   rows = 20: rows shown at most
 -- columns:
 --   milestone: id of the milestone
 --   title: its title
@@ -15,4 +15,4 @@
 SELECT i.milestone, i.title, i.year, p.title AS next_title, p.best AS next_year, i.interval, p.earliest < i.latest AS swappable
 FROM intervals AS i JOIN milestones AS p ON p.milestone = i.next_milestone
 ORDER BY i.interval, i.year, i.milestone
-LIMIT coalesce(getvariable('limit')::BIGINT, 20)
+LIMIT coalesce(getvariable('rows')::BIGINT, 20)
