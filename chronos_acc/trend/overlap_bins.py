@@ -124,7 +124,7 @@ def _fit(histories: Bools, counts: Floats, pairs: tuple[tuple[int, int], ...]) -
         return float(counts @ eta - np.exp(np.minimum(eta, 500.0)).sum())
 
     here = value(beta)
-    for _ in range(200):
+    for _ in range(60):
         mu = np.exp(np.minimum(design @ beta, 500.0))
         information = (design * mu[:, None]).T @ design
         try:
@@ -136,6 +136,8 @@ def _fit(histories: Bools, counts: Floats, pairs: tuple[tuple[int, int], ...]) -
             length /= 2
         beta = beta + length * step
         here = value(beta)
+        if np.abs(beta).max() > 25.0:  # on its way to infinity
+            return None
         if np.abs(step).max() < 1e-9:
             break
     else:
