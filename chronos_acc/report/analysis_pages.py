@@ -191,4 +191,4 @@ def grid_tables(grid: Any) -> tuple[Table, ...]:
 def grid_page(grid: Any) -> Page:
     """What the combinations say together."""
     document = grid.to_dict()
-    return Page(document, grid_tables(grid), "combinations", close=tuple(f"note: {n}" for n in document.get("notes", [])))
+    return Page(document, grid_tables(grid), "combinations", close=(*(f"note: {n}" for n in document.get("notes", [])), "", grid.sentence))
