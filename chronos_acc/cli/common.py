@@ -24,8 +24,9 @@ def chosen_record(options: argparse.Namespace, out: Output | None = None) -> Rec
 
     found = record(timeline(options), present=options.present, start=options.start, sources=options.sources, min_support=options.min_support,
                    category=options.category)  # fmt: skip
-    for note in found.notes if out is not None else ():
-        out.remark(note)
+    if out is not None:
+        for note in found.notes:
+            out.remark(note)
     return found
 
 

@@ -27,14 +27,12 @@ def _run(options: argparse.Namespace, out: Output) -> int:
 
     settings = Settings(compiled=options.compiled)
     if options.sheet:
-        from dataclasses import replace
         from pathlib import Path
 
         from ...store.sheets import read_sheet
 
-        settings = read_sheet(Path(options.sheet)).settings
-        if options.compiled is not None:
-            settings = replace(settings, compiled=options.compiled)
+        sheet = Path(options.sheet)
+        settings = read_sheet(sheet, stem=sheet.stem, compiled=options.compiled).settings
     rows: list[dict[str, Any]] = []
     for text in options.texts:
         try:

@@ -59,7 +59,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         out.page(frame_page("review", pd.DataFrame([row]), "What was decided?", below=below))
         return 0
     if options.pair and options.verdict:
-        decisions.decide(db, *options.pair, options.verdict, who=who, why=options.why)
+        decisions.decide(db, options.pair[0], options.pair[1], options.verdict, who=who, why=options.why)
         relink(db, tell=out.tell)
         out.page(decisions_page(decisions.listing(db)))
         return 0
