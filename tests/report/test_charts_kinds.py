@@ -11,6 +11,9 @@ import numpy as np
 import pytest
 
 from chart_records import log_uniform, several_lists
+from chronos_acc.bias.check import Context
+from chronos_acc.bias.grid import run_grid
+from chronos_acc.bias.grid.choices import choices_of
 from chronos_acc.errors import ChronosError, RecordRefused, WrongUse
 from chronos_acc.record import Record
 from chronos_acc.report import charts
@@ -176,3 +179,32 @@ def test_small_and_odd_records_are_drawn_or_refused_in_one_line(kind, name):
     else:
         assert all(len(line) <= 80 for line in to_terminal(data).splitlines())
         json.dumps(data.to_dict(), allow_nan=False)
+
+
+@pytest.fixture(scope="module")
+def small_grid():
+    choices = choices_of({"arbitrary": {"predictor": ["log10_age", "order"], "young_end": ["open", "last"]}, "question": {"response": ["log10_interval", "rate"]}}, "t", "0")
+    return run_grid(Context(record=several_lists(), draws=20), choices, joint=60, workers=1)
+
+
+def test_grid_sorts_every_combination_and_shows_its_options(small_grid):
+    data = chart("grid", record=several_lists(), grid=small_grid)
+    points = _series(data, "combination")
+    valid = [line for line in small_grid.lines if line.z is not None]
+    assert list(points.y) == sorted(line.z for line in valid) and len(points) == len(valid)
+    strips = data.panels[1]
+    for row, name in enumerate(strips.y.names):
+        choice, option = name.split(": ")
+        used = sum(str(line.options[choice.replace(" ", "_")]) == option for line in valid)
+        assert sum(len(s) for s in strips.series if s.y and s.y[0] == row) == used
+    own = _series(data, "your own")
+    assert own.y == tuple(line.z for line in valid if line.own)
+    band = _series(data, "steady records")
+    assert all(low <= high for low, high in zip(band.y_low, band.y_high, strict=True))
+    assert all(len(line) <= 80 for line in to_terminal(data).splitlines())
+    assert data.to_dict() == chart("grid", record=several_lists(), grid=small_grid).to_dict()
+
+
+def test_grid_is_not_guessed():
+    with pytest.raises(WrongUse, match="run_grid"):
+        chart("grid", record=several_lists())

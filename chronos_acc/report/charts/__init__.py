@@ -12,7 +12,7 @@ import difflib
 from typing import TYPE_CHECKING
 
 from ...errors import WrongUse
-from . import completeness, cumulative, interval_age, lists, recall, support
+from . import completeness, cumulative, grid, interval_age, lists, recall, support
 from .data import Axis, ChartData, Panel, Series
 from .figure import ENDINGS, to_figure
 from .kind import Chart, Inputs
@@ -26,7 +26,7 @@ if TYPE_CHECKING:
     from ...trend.analysis import Trend
 
 CHARTS: tuple[Chart, ...] = (
-    interval_age.CHART, cumulative.CHART, recall.CHART, completeness.CHART, lists.CHART, support.CHART,
+    interval_age.CHART, cumulative.CHART, recall.CHART, completeness.CHART, lists.CHART, grid.CHART, support.CHART,
 )  # fmt: skip
 
 __all__ = ["CHARTS", "ENDINGS", "Axis", "Chart", "ChartData", "Inputs", "Panel", "Series", "chart", "to_figure", "to_terminal"]

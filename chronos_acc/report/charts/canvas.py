@@ -10,7 +10,7 @@ from collections.abc import Iterator
 _BITS = ((0x01, 0x08), (0x02, 0x10), (0x04, 0x20), (0x40, 0x80))
 SHADES = "░▒▓"
 _PLAIN = {
-    **dict(zip("░▒▓●○◆◇▲△■□·", ".:#*o*<A^##.", strict=True)),
+    **dict(zip("░▒▓█●○◆◇▲△■□·", ".:##*o*<A^##.", strict=True)),
     **dict(zip("─│┼├┤┬┴└┘┌┐╭╮╰╯┊┄┃━╌▸–−×…", "-|+++++++++++++:-|=->--x.", strict=True)),
     **dict(zip("⁻⁰¹²³⁴⁵⁶⁷⁸⁹", "-0123456789", strict=True)),
 }

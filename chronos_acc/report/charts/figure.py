@@ -19,6 +19,7 @@ from .data import Axis, ChartData, Panel, Series
 from .ticks import ticks
 
 WIDTH, HEIGHT = 6.7, 4.3  # inches: a text column of 170 mm
+CROWD = 250  # points from which marks become small
 ENDINGS = ("png", "svg", "pdf")
 _STYLE = {
     "font.family": "DejaVu Sans", "font.size": 8.5, "axes.titlesize": 10, "axes.labelsize": 8.5, "axes.edgecolor": palette.QUIET,
@@ -134,13 +135,16 @@ def _panel(ax: Any, x: Axis, panel: Panel, handles: dict[str, Any]) -> None:
         elif s.mark == "ticks":
             _bars(ax, s)
             tall = 11 if panel.y.names else 7
-            handle = ax.plot(s.x, s.y, linestyle="none", marker="|", ms=tall, mew=0.9, color=_colour(s), zorder=4, clip_on=False)[0]
+            many = x.scale == "linear" and x.high - x.low > CROWD
+            style = {"ms": 8, "mew": 0.5, "alpha": 0.45, "zorder": 4} if many else {"ms": tall, "mew": 0.9, "zorder": 4}
+            handle = ax.plot(s.x, s.y, linestyle="none", marker="|", color=_colour(s), clip_on=False, **style)[0]
         else:
             _bars(ax, s)
             hollow = s.role == "open"
+            size = 5.5 if hollow or s.role == "mark" else 1.6 if len(s) > CROWD else 3.8
             handle = ax.plot(
-                s.x, s.y, linestyle="none", marker="D" if s.role in ("open", "mark") else palette.MARKS[dots % 4], ms=5.5 if hollow or s.role == "mark" else 3.8,
-                mfc=palette.PAPER if hollow else _colour(s), mec=_colour(s) if hollow else palette.PAPER, mew=1.3 if hollow else 0.4, zorder=6 if hollow else 5,
+                s.x, s.y, linestyle="none", marker="D" if s.role in ("open", "mark") else palette.MARKS[dots % 4], ms=size,
+                mfc=palette.PAPER if hollow else _colour(s), mec=_colour(s) if hollow else palette.PAPER, mew=1.3 if hollow else 0.0 if size < 2 else 0.4, zorder=6 if hollow else 5,
             )[0]  # fmt: skip
             dots += s.role == "data"
         if s.name and len(s):

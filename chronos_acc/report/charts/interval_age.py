@@ -4,12 +4,15 @@
 from __future__ import annotations
 
 import numpy as np
+import numpy.typing as npt
 
 from ...trend import kernels
 from ...trend.nulls import LOG_UNIFORM, STEADY
 from .bands import interval_band
 from .data import Axis, ChartData, Panel, Series, floats, limits
 from .kind import Chart, Inputs, age_axis, at_least, least_age
+
+Floats = npt.NDArray[np.float64]
 
 
 def build(inputs: Inputs) -> ChartData:
@@ -50,15 +53,27 @@ def build(inputs: Inputs) -> ChartData:
     heights = np.concatenate([gaps, open_age, *(s.y for s in lines), *(s.y_low for s in bands), *(s.y_high for s in bands)])
     bottom, top = limits(heights, "log", 0.04)
     joined = window.joined
-    notes = (f"{joined} milestones share their date with the one before; an interval of zero has no place on a log axis.",) if joined else ()
+    notes = []
+    if joined:
+        notes.append(f"{joined} milestones share their date with the one before; an interval of zero has no place on a log axis")
+    if len(ages) and len(bands[0]):
+        out = _outside(bands[0], ages, gaps)
+        notes.append(f"{out} of {len(ages)} intervals lie outside the band of even picking; chance alone puts about {0.05 * len(ages):.0f} there")
     return ChartData(
         "interval_age",
         CHART.question,
         age_axis(record, [*ages, *open_age, *(a for s in bands for a in s.x)]),
         (Panel(Axis("interval to the next", "years", bottom, top, "log", style="length"), (*bands, *lines, points, still)),),
-        "A straight cloud with slope near 1 is what even picking per log age gives by itself; only points outside both bands need another explanation.",
-        notes,
+        "A straight cloud with slope near 1 is what even picking per log age gives by itself; only points outside the bands ask for another explanation.",
+        tuple(notes),
     )
+
+
+def _outside(band: Series, ages: Floats, gaps: Floats) -> int:
+    """Intervals outside a band, which is carried on level beyond its ends."""
+    x, at = np.log(band.x), np.log(ages)
+    low, high = np.interp(at, x, np.log(band.y_low)), np.interp(at, x, np.log(band.y_high))
+    return int(((np.log(gaps) < low - 1e-9) | (np.log(gaps) > high + 1e-9)).sum())
 
 
 CHART = Chart("interval_age", "Do intervals shrink with age, and would making the list do that?", "three milestones", build)

@@ -19,7 +19,8 @@ _SGR = {
     "data": "1", "open": "1;33", "null": "2", "faint": "2", "mark": "1;31", "axis": "2", "title": "1",
     "law0": "36", "law1": "35", "law2": "33", "law3": "34",
 }  # fmt: skip
-_LEAST_ROWS = 6
+_CROWD = "·░▒▓█"
+_LEAST_ROWS = 8
 
 
 def to_terminal(data: ChartData, width: int = 80, height: int = 24, colour: bool = False, ascii_only: bool = False) -> str:
@@ -53,7 +54,7 @@ def _share_rows(panels: tuple[Panel, ...], rows: int) -> list[int]:
 
 
 def _marks(axis: Axis, rows: int, width: int) -> list[tuple[float, str]]:
-    most = max(2, min(round(rows / 2.5), 8))
+    most = max(3, min(round(rows / 2.5), 8))
     return [(v, _cut(plain(t), max(width // 3, 8))) for v, t in ticks(axis, most)]
 
 
@@ -156,6 +157,9 @@ def _dots(canvas: Canvas, x: Axis, y: Axis, s: Series, index: int) -> None:
 
 
 def _ticks(canvas: Canvas, x: Axis, y: Axis, s: Series) -> None:
+    if len(s) > 2 * canvas.columns or (y.names and x.high - x.low > 3 * canvas.columns):
+        _crowd(canvas, x, y, s)
+        return
     for i in range(len(s)):
         a, b = _along(x, s.x[i]), _height(y, s.y[i])
         if s.x_low and math.isfinite(s.x_low[i]) and math.isfinite(s.x_high[i]):
@@ -166,6 +170,21 @@ def _ticks(canvas: Canvas, x: Axis, y: Axis, s: Series) -> None:
         place = _along(x, a), _height(y, b)
         if all(map(math.isfinite, place)):
             canvas.glyph(*place, "┃" if canvas.at(*place) in ("│", "┃") else "│", s.role)
+
+
+def _crowd(canvas: Canvas, x: Axis, y: Axis, s: Series) -> None:
+    """Ticks too many to part: each cell as dark as the share of its width that they fill."""
+    count: dict[tuple[int, int], int] = {}
+    for a, b in zip(s.x, s.y, strict=True):
+        place = _along(x, a), _height(y, b)
+        if all(map(math.isfinite, place)):
+            at = canvas.row(place[1]), canvas.column(place[0])
+            count[at] = count.get(at, 0) + 1
+    # whole numbers along a linear axis fill a cell when each stands there; elsewhere the fullest cell is the measure
+    full = (x.high - x.low) / canvas.columns if x.scale == "linear" else max(count.values(), default=1)
+    for (row, column), k in count.items():
+        mark = _CROWD[min(int(k / full * len(_CROWD)), len(_CROWD) - 1)]
+        canvas.glyph((column + 0.5) / canvas.columns, 1 - (row + 0.5) / canvas.rows, mark, s.role)
 
 
 def _clip(place: float, otherwise: float) -> float:
@@ -223,7 +242,7 @@ def _legend(data: ChartData, width: int) -> list[list[tuple[str, str]]]:
             elif s.mark == "rule":
                 mark = "┊" if s.x else "┄"
             elif s.mark == "ticks":
-                mark = "│"
+                mark = _CROWD[-1] if panel.y.names and data.x.high - data.x.low > 3 * width else "│"
             if s.name and s.name not in seen and len(s):
                 seen.add(s.name)
                 items.append((mark, plain(s.name), ink))
