@@ -250,7 +250,7 @@ def analyse(
     tell("overlap of the lists", 0.75)
     capture = corrected_growth(record, window)
     studies = lists_as_studies(record, seed=seed)
-    evidence = _evidence(window, tests, laws, exponents, nulls, tip, capture, seed)
+    evidence = evidence_of(window, tests, laws, exponents, nulls, tip, capture, seed)
     following = None
     if next_event:
         from .next_event import next_event as following_event
@@ -299,7 +299,7 @@ def _given(half_life: float | None, scale: float | None) -> tuple[Null, ...]:
     return tuple(out if scale is None else [*out, recall_decay(scale=scale)])
 
 
-def _evidence(
+def evidence_of(
     window: Window,
     tests: TestsResult,
     laws: LawsResult,
