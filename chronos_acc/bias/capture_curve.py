@@ -72,7 +72,7 @@ def steady_growth(curve: CaptureFit, threshold: int, n: int, span: float, *, rng
         cdf = np.concatenate([np.zeros((len(mass), 1)), mass / np.maximum(mass[:, -1:], 1e-300)], axis=1)
         for i, u in enumerate(rng.random((len(mass), n))):
             out[first + i] = np.interp(u, cdf[i], edges).mean()
-    return np.asarray(growth_of_mean_age(np.clip(out / span, 1e-300, 1 - 1e-16)) / span)
+    return np.asarray(growth_of_mean_age(np.clip(out / span, 1e-15, 1 - 1e-15)) / span)
 
 
 def _parameters(curve: CaptureFit, rng: np.random.Generator, size: int) -> tuple[Floats, Floats]:

@@ -124,7 +124,7 @@ def _coarse(context: Context, published: Growth) -> list[Row]:
 def _coarsened(ages: Floats, precision: float, span: float) -> Floats:
     step = np.log1p(precision)
     rounded = np.minimum(np.exp(np.round(np.log(ages) / step) * step), span)
-    return np.asarray(growth_of_mean_age(np.clip(rounded.mean(axis=-1) / span, 1e-300, 1 - 1e-16)) / span)
+    return np.asarray(growth_of_mean_age(np.clip(rounded.mean(axis=-1) / span, 1e-15, 1 - 1e-15)) / span)
 
 
 def _digits(context: Context, published: Growth) -> list[Row]:

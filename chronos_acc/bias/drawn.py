@@ -50,7 +50,7 @@ def drawn_growth(window: Window, dates: Floats) -> Drawn:
     for size in np.unique(n):
         p[n == size] = two_sided(mean[n == size], int(size))
     swaps = float((np.diff(dates, axis=1) < 0).mean()) if dates.size and dates.shape[1] > 1 else 0.0
-    return Drawn(np.asarray(growth_of_mean_age(np.clip(mean, 1e-300, 1 - 1e-16)) / span), p, n, mean, span, swaps)
+    return Drawn(np.asarray(growth_of_mean_age(np.clip(mean, 1e-15, 1 - 1e-15)) / span), p, n, mean, span, swaps)
 
 
 def drawn_row(check: str, setting: str, found: Drawn, published: Growth, **more: Any) -> Row | None:

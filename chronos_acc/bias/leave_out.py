@@ -101,7 +101,7 @@ def _without_each(record: Record) -> Floats:
     total, n = ages.sum(), window.n
     out = np.full(len(window.times), growth(window).estimate or 0.0)
     first = window.opening
-    out[first : first + n] = growth_of_mean_age(np.clip((total - ages) / (n - 1) / window.span, 1e-300, 1 - 1e-16)) / window.span
+    out[first : first + n] = growth_of_mean_age(np.clip((total - ages) / (n - 1) / window.span, 1e-15, 1 - 1e-15)) / window.span
     if window.opened_by_milestone and window.opening == 1:  # the next milestone opens the window
         keep = np.ones(len(record), bool)
         keep[window.index[0]] = False

@@ -81,7 +81,7 @@ class Offset:
 
 
 def _newton(target: float, ages: Floats, log_mass: Floats) -> float:
-    k = float(growth_of_mean_age(np.array(np.clip(target, 1e-300, 1 - 1e-16))))
+    k = float(growth_of_mean_age(np.array(np.clip(target, 1e-15, 1 - 1e-15))))
     low, high = -np.inf, np.inf
     for _ in range(200):
         e = log_mass - k * ages

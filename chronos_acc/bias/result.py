@@ -76,7 +76,7 @@ class Bias:
             "published": plain(self.published.estimate),
             "published_p_value": plain(self.published.p_value),
             "finding": finding,
-            "report": answer.report,
+            "report": f"{answer.report}: {finding}" if answer.report else finding,
         }
 
     @property

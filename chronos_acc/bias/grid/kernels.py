@@ -55,7 +55,7 @@ def growth_and_z(times: Floats, frame: Frame) -> tuple[Floats, Floats, int]:
     with np.errstate(invalid="ignore", divide="ignore"):
         mean = (present - times[:, first:last].mean(axis=1)) / span
     good = (span > 0) & np.isfinite(mean)
-    mean = np.where(good, np.clip(mean, 1e-300, 1 - 1e-16), 0.5)
+    mean = np.where(good, np.clip(mean, 1e-15, 1 - 1e-15), 0.5)
     tail = np.clip(mean_cdf(mean, n), 1e-13, 1 - 1e-13)
     z = np.clip(-ndtri(tail), -FURTHEST, FURTHEST)
     with np.errstate(invalid="ignore", divide="ignore"):

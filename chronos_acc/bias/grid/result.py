@@ -116,6 +116,7 @@ class Grid:
     def sentence(self) -> str:
         """The first question of the user's own in a sentence."""
         rows = self._summary()
+        rows = [r for r in rows if r["valid"]]
         if not rows:
             return "no combination could be run"
         r = next((x for x in rows if x["own"]), rows[0])
@@ -124,7 +125,7 @@ class Grid:
             f"{_percent(r['share_slowing'])} slowing; median z {r['median_z']:.2f}"
         )
         if r["p_share"] is not None:
-            text += f"; as large a significant share arises in {_percent(r['p_share'])} of {self.null} records (p = {r['p_share']:.3g})"
+            text += f"; {self.null} records give as large a significant share with p = {r['p_share']:.2g}"
         return text
 
     def _summary(self) -> list[dict[str, Any]]:
