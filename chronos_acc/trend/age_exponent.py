@@ -1,9 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """The age exponent: how steeply milestones thin out with age, on a scale that needs no interval between them.
 
-Ages have density proportional to a^(-s) between the youngest and the oldest, which are kept: s = 0 is a steady rate, 0 < s < 1 partial forgetting, s = 1
-picking evenly per unit of log age, s > 1 steeper than any such picking. With L = ln(oldest/youngest) and v = ln(a/youngest)/L the others have density
-proportional to exp((1 - s) L v) on (0, 1): the log-linear likelihood again, in log age.
+Ages have density proportional to a^(-s) between the youngest and the oldest, which are kept: s = 0 is a steady rate, 0 < s < 1
+partial forgetting, s = 1 picking evenly per unit of log age, s > 1 steeper than any such picking. With L = ln(oldest/youngest) and
+v = ln(a/youngest)/L the others have density proportional to exp((1 - s) L v) on (0, 1): the log-linear likelihood again, in log
+age.
 """
 
 from __future__ import annotations
@@ -23,8 +24,9 @@ FEWEST_FOR_THIRDS = 24  # milestones from which the record is looked at in third
 
 @dataclass(frozen=True)
 class ExponentRow:
-    """The exponent of one stretch of ages with its 95 % profile interval. n: milestones in it, the kept youngest and oldest among them; youngest and
-    oldest in years. None where fewer than three milestones, or ages all alike, leave nothing to estimate."""
+    """The exponent of one stretch of ages with its 95 % profile interval. n: milestones in it, the kept youngest and oldest among
+    them; youngest and oldest in years. None where fewer than three milestones, or ages all alike, leave nothing to estimate.
+    """
 
     era: str
     estimate: float | None
@@ -38,9 +40,9 @@ class ExponentRow:
 def age_exponent(window: Window, eras: Sequence[tuple[str, float, float]] | None = None) -> tuple[ExponentRow, ...]:
     """The exponent of the whole record, then of each era.
 
-    eras: (name, from year, to year), both ends counted in; without them the ranked ages are cut in thirds where there are at least 24, neighbours sharing the
-    age at the cut. All milestones of the window take part, the one that opens it too; ages are floored at half the finest dating unit, and an age of
-    zero with no unit to floor it is left out.
+    eras: (name, from year, to year), both ends counted in; without them the ranked ages are cut in thirds where there are at least
+    24, neighbours sharing the age at the cut. All milestones of the window take part, the one that opens it too; ages are floored
+    at half the finest dating unit, and an age of zero with no unit to floor it is left out.
     """
     ages = _ages(window.present - window.times, window.finest_unit)
     rows = [_row("whole record", ages)]
@@ -56,7 +58,9 @@ def age_exponent(window: Window, eras: Sequence[tuple[str, float, float]] | None
 
 
 def exponents(ages: Floats, critical: float = CHI2_95) -> tuple[Floats, Floats, Floats]:
-    """Estimate and profile interval for many records at once: ages (..., n) above zero, in any order, n at least 3, oldest above youngest."""
+    """Estimate and profile interval for many records at once: ages (..., n) above zero, in any order, n at least 3, oldest above
+    youngest.
+    """
     logs = np.sort(np.log(ages), axis=-1)
     youngest, length = logs[..., :1], logs[..., -1] - logs[..., 0]
     v = (logs[..., 1:-1] - youngest) / length[..., None]

@@ -1,8 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """Lists that give counts per bin of time only: the same rate laws, fitted to the counts.
 
-Given their sum, counts are multinomial with the law's share of each bin, so no date inside a bin is made up. Counts scatter more than Poisson where events
-come in bunches: Pearson's dispersion says by how much, and a second interval allows for it (quasi-likelihood; McCullagh and Nelder 1989).
+Given their sum, counts are multinomial with the law's share of each bin, so no date inside a bin is made up. Counts scatter more
+than Poisson where events come in bunches: Pearson's dispersion says by how much, and a second interval allows for it
+(quasi-likelihood; McCullagh and Nelder 1989).
 """
 
 from __future__ import annotations
@@ -23,6 +24,7 @@ from .rate_laws import CHI2_95
 if TYPE_CHECKING:
     import pandas as pd
 
+OF_THE_LAW = ("log_likelihood", "aicc", "bic", "deviance", "dispersion", "lr", "lr_p", "same_curve_as")
 GRIDS: dict[str, Floats] = {
     "log_linear": np.concatenate([-np.geomspace(1e6, 0.25, 60), np.geomspace(0.25, 1e6, 60)]),
     "power_law": np.linspace(-6.0, 14.0, 81),  # logarithm of the exponent
@@ -32,9 +34,10 @@ GRIDS: dict[str, Floats] = {
 
 @dataclass(frozen=True)
 class CountRow:
-    """One law fitted to counts. log_likelihood = sum(c ln mu - mu) over bins, without c!; deviance against one rate a bin; dispersion: Pearson's sum of squares
-    over its degrees of freedom; low_robust and high_robust allow for it.
-    lr and lr_p: twice the log-likelihood over the steady law, and its p (hyperbolic: half of it, on the boundary; step: bootstrap)."""
+    """One law fitted to counts. log_likelihood = sum(c ln mu - mu) over bins, without c!; deviance against one rate a bin;
+    dispersion: Pearson's sum of squares over its degrees of freedom; low_robust and high_robust allow for it. lr and lr_p: twice
+    the log-likelihood over the steady law, and its p (hyperbolic: half of it, on the boundary; step: bootstrap).
+    """
 
     law: str
     parameters: dict[str, float | None]
@@ -74,15 +77,19 @@ class CountsResult:
             for name, value in r.parameters.items():
                 line: dict[str, object] = {"law": r.law, "parameter": name, "estimate": value, "low": r.low[name], "high": r.high[name]}
                 line.update(low_robust=r.low_robust[name], high_robust=r.high_robust[name])
-                line.update({k: getattr(r, k) for k in ("log_likelihood", "aicc", "bic", "deviance", "dispersion", "lr", "lr_p", "same_curve_as")})
+                line.update({key: getattr(r, key) for key in OF_THE_LAW})
                 out.append(line)
         return pd.DataFrame(out)
 
 
-def fit_counts(edges: Sequence[float] | Floats, counts: Sequence[int] | Floats, *, seed: int = 1, replicates: int = 499) -> CountsResult:
-    """Fit the rate laws to counts (q,) between edges (q + 1,) in decimal years; the window is the first to the last edge, its start a given start.
+def fit_counts(
+    edges: Sequence[float] | Floats, counts: Sequence[int] | Floats, *, seed: int = 1, replicates: int = 499
+) -> CountsResult:
+    """Fit the rate laws to counts (q,) between edges (q + 1,) in decimal years; the window is the first to the last edge, its start
+    a given start.
 
-    Raises WrongUse for edges that do not rise or counts that are no whole numbers, RecordRefused for fewer than two bins or no event.
+    Raises WrongUse for edges that do not rise or counts that are no whole numbers, RecordRefused for fewer than two bins or no
+    event.
     """
     e, c = np.asarray(edges, dtype=float), np.asarray(counts, dtype=float)
     if e.ndim != 1 or c.shape != (len(e) - 1,) or not np.isfinite(e).all() or not (np.diff(e) > 0).all():
@@ -98,7 +105,8 @@ def fit_counts(edges: Sequence[float] | Floats, counts: Sequence[int] | Floats, 
     notes = []
     for row in rows:
         if row.log_likelihood is None:
-            why = f"needs {step.fewest(place.n)} events on each side of an edge" if row.law == "step" else "has no best parameter: all events lie in one outer bin"
+            sides = f"needs {step.fewest(place.n)} events on each side of an edge"
+            why = sides if row.law == "step" else "has no best parameter: all events lie in one outer bin"
             notes.append(f"{row.law} {why}.")
     worst = max((r.dispersion for r in rows if r.dispersion is not None), default=1.0)
     if worst > 1.5:
@@ -216,9 +224,7 @@ def _sides(interval: dict[str, tuple[float | None, float | None]]) -> Ends:
     return {name: pair[0] for name, pair in interval.items()}, {name: pair[1] for name, pair in interval.items()}
 
 
-def _profile(
-    curve: Curve, value: Callable[[float], float], p: float, top: float, base: float, critical: float, place: Place
-) -> Ends:
+def _profile(curve: Curve, value: Callable[[float], float], p: float, top: float, base: float, critical: float, place: Place) -> Ends:
     """Ends of the profile interval in years; None where the likelihood never falls so far."""
 
     def over(at: float) -> float:
@@ -260,16 +266,31 @@ def _step_row(x: Floats, c: Floats, place: Place, base: float, seed: int, replic
     if replicates:
         null = np.random.default_rng([seed, 5500]).multinomial(place.n, np.diff(x), size=replicates)
         p = (1 + int((_best_step(null.astype(float), x, place.n)[0] >= gain[0] * (1 - 1e-12)).sum())) / (replicates + 1)
-    parameters: dict[str, float | None] = {"year": place.start + place.span * float(x[first]), "before": float(before), "after": float(after)}
+    year = place.start + place.span * float(x[first])
+    parameters: dict[str, float | None] = {"year": year, "before": float(before), "after": float(after)}
     n = place.n
     return CountRow(
-        "step", parameters, nothing, nothing, nothing, nothing, fitted, -2 * fitted + 6 + 24 / (n - 4) if n > 4 else None, -2 * fitted + 3 * float(np.log(n)),
-        deviance, dispersion, 2.0 * float(gain[0]), p, None,
-    )  # fmt: skip
+        "step",
+        parameters,
+        nothing,
+        nothing,
+        nothing,
+        nothing,
+        fitted,
+        -2 * fitted + 6 + 24 / (n - 4) if n > 4 else None,
+        -2 * fitted + 3 * float(np.log(n)),
+        deviance,
+        dispersion,
+        2.0 * float(gain[0]),
+        p,
+        None,
+    )
 
 
 def _best_step(c: Floats, x: Floats, n: int) -> tuple[Floats, np.ndarray[tuple[int, ...], np.dtype[np.intp]]]:
-    """Gain in log-likelihood over steady of the best edge, and the edge, for rows of counts; -inf where no edge leaves enough events on both sides."""
+    """Gain in log-likelihood over steady of the best edge, and the edge, for rows of counts; -inf where no edge leaves enough
+    events on both sides.
+    """
     before = np.cumsum(c, axis=1)[:, :-1]
     inner = x[1:-1]
     least = step.fewest(n)

@@ -1,9 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """Exposure: time counted in people, scholars or publications instead of years.
 
-With e(t) the exposure of year t, operational time runs at the speed e(t). A process that is steady per unit of exposure is steady in operational time, so
-every test, law and null of the package answers "is it speeding up beyond the exposure?" when it is given the record in operational time
-(the time-rescaling theorem; Brown et al. 2002).
+With e(t) the exposure of year t, operational time runs at the speed e(t). A process that is steady per unit of exposure is steady
+in operational time, so every test, law and null of the package answers "is it speeding up beyond the exposure?" when it is given
+the record in operational time (the time-rescaling theorem; Brown et al. 2002).
 """
 
 from __future__ import annotations
@@ -28,8 +28,9 @@ Floats = npt.NDArray[np.float64]
 class Exposure:
     """years (q,) increasing decimal years, values (q,) exposure per year, above zero.
 
-    Where every row is one year after the one before, a row is the exposure of its calendar year [Y, Y + 1); otherwise rows are instants and the exposure runs
-    straight between them. Past the last row it stays as it is, for one more step between rows at most.
+    Where every row is one year after the one before, a row is the exposure of its calendar year [Y, Y + 1); otherwise rows are
+    instants and the exposure runs straight between them. Past the last row it stays as it is, for one more step between rows at
+    most.
     """
 
     years: Floats
@@ -74,10 +75,12 @@ class Exposure:
 
 
 def operational(record: Record, exposure: Exposure | tuple[Sequence[float], Sequence[float]] | Any) -> Record:
-    """The record in operational time, scaled so that the window keeps its present and its length: its years are mean years of exposure.
+    """The record in operational time, scaled so that the window keeps its present and its length: its years are mean years of
+    exposure.
 
-    exposure: an Exposure, a pair (years, values), or a table with columns year and exposure. Datings go along by their bounds. Raises RecordRefused where
-    the rows do not cover the window. Log-likelihoods of laws are then per operational year: they compare laws, not a run with exposure and one without.
+    exposure: an Exposure, a pair (years, values), or a table with columns year and exposure. Datings go along by their bounds.
+    Raises RecordRefused where the rows do not cover the window. Log-likelihoods of laws are then per operational year: they compare
+    laws, not a run with exposure and one without.
     """
     series = _as_exposure(exposure)
     window = record.window
@@ -102,8 +105,15 @@ def operational(record: Record, exposure: Exposure | tuple[Sequence[float], Sequ
     normal[record.owner[record.kind == NORMAL]] = True
     # what stands exactly at the ends of the window stays there exactly
     best = np.where(record.best == window.start, window.start, best)
-    note = f"Time runs in exposure, {len(series.years)} rows from {series.years[0]:g} to {series.years[-1]:g}: {total:.4g} in all, scaled to the {window.span:g} years of the window."
-    more = (f"Past {series.years[-1]:g} the last exposure is taken to go on.",) if window.present > series.years[-1] + series.yearly else ()
+    note = (
+        f"Time runs in exposure, {len(series.years)} rows from {series.years[0]:g} to {series.years[-1]:g}: {total:.4g} in all, "
+        f"scaled to the {window.span:g} years of the window."
+    )
+    more = (
+        (f"Past {series.years[-1]:g} the last exposure is taken to go on.",)
+        if window.present > series.years[-1] + series.yearly
+        else ()
+    )
     return replace(
         record,
         best=best,

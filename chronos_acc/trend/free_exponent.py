@@ -1,9 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """The hyperbolic law with its exponent free, a/(t_star - t)^p: on request only, and never a headline.
 
-Its two parameters trade against one another: with t_star -> infinity it is the log-linear law, with t_star -> present a power of age. So the interval
-of t_star touches the present or has no upper end for most records of the size of a list, and it says so. For a given t_star the logarithm of
-t_star - t has an exponential density on a known stretch, so p has the closed form of the log-linear law.
+Its two parameters trade against one another: with t_star -> infinity it is the log-linear law, with t_star -> present a power of
+age. So the interval of t_star touches the present or has no upper end for most records of the size of a list, and it says so. For a
+given t_star the logarithm of t_star - t has an exponential density on a known stretch, so p has the closed form of the log-linear
+law.
 """
 
 from __future__ import annotations
@@ -24,8 +25,9 @@ GRID = 441
 
 @dataclass(frozen=True)
 class FreeHyperbolic:
-    """t_star (year, None at infinity) and p with 95 % profile intervals (None: no end), log-likelihood in events per year, and lr: twice
-    its gain over p = 1. touches_present: the interval of t_star reaches the present."""
+    """t_star (year, None at infinity) and p with 95 % profile intervals (None: no end), log-likelihood in events per year, and lr:
+    twice its gain over p = 1. touches_present: the interval of t_star reaches the present.
+    """
 
     t_star: float | None
     t_star_low: float | None
@@ -45,7 +47,7 @@ def fit_free_hyperbolic(window: Window) -> FreeHyperbolic:
     events = positions(window)
     n, v = events.n, events.v
     if n < 3:
-        return FreeHyperbolic(None, None, None, None, None, None, None, None, False, n, ("t_star and p need at least three counted events.",))
+        return FreeHyperbolic(*(None,) * 8, False, n, ("t_star and p need at least three counted events.",))
     taus = np.linspace(NEAREST, FARTHEST, GRID)
     values, _ = _profile(taus, v)
     best = int(np.argmax(values))
@@ -61,8 +63,12 @@ def fit_free_hyperbolic(window: Window) -> FreeHyperbolic:
     fall = 2.0 * n * (top - values) - CHI2_95
     inside = np.nonzero(fall <= 0)[0]
     first, last = (int(inside[0]), int(inside[-1])) if len(inside) else (best, best)
-    star_low = events.present if first == 0 else _year(_crossing(taus[first - 1], min(taus[first], tau), top, v), events.present, events.span)
-    star_high = None if last == GRID - 1 else _year(_crossing(taus[last + 1], max(taus[last], tau), top, v), events.present, events.span)
+    star_low = (
+        events.present if first == 0 else _year(_crossing(taus[first - 1], min(taus[first], tau), top, v), events.present, events.span)
+    )
+    star_high = (
+        None if last == GRID - 1 else _year(_crossing(taus[last + 1], max(taus[last], tau), top, v), events.present, events.span)
+    )
     p_low, p_high = (None, None) if at_infinity or at_present else _exponent_interval(p, top, taus, v)
     base = float(hyperbolic.mean_log_density(hyperbolic.estimate(events.x, v)[0], v))
     notes = ["With p free t_star is no headline: it trades against p."]

@@ -47,7 +47,9 @@ def null_p(null: Floats, observed: float, upper_tail: bool = False) -> Floats:
 
 
 def monte_carlo_p(observed: float, null: Floats, upper_tail: bool = False) -> float:
-    """(1 + draws at least as extreme)/(B + 1); two-sided is the doubled smaller tail. Draws within rounding of the observed count as equal."""
+    """(1 + draws at least as extreme)/(B + 1); two-sided is the doubled smaller tail. Draws within rounding of the observed count
+    as equal.
+    """
     slack = 1e-10 * max(abs(observed), float(np.abs(null).max(initial=0.0)))
     above = 1 + int((null >= observed - slack).sum())
     if upper_tail:
@@ -57,10 +59,11 @@ def monte_carlo_p(observed: float, null: Floats, upper_tail: bool = False) -> fl
 
 
 def step_down_min_p(observed: Floats, null: Floats) -> Floats:
-    """Step-down min-p adjustment (Westfall and Young 1993): observed (f,) p-values, null (B, f) p-values of the same null draws, jointly.
+    """Step-down min-p adjustment (Westfall and Young 1993): observed (f,) p-values, null (B, f) p-values of the same null draws,
+    jointly.
 
-    The smallest p-value is judged against the law of the smallest of all f, the next against the smallest of the others, and so on; adjusted
-    p-values never fall on the way. Strong control where, as here, the tests share their null.
+    The smallest p-value is judged against the law of the smallest of all f, the next against the smallest of the others, and so on;
+    adjusted p-values never fall on the way. Strong control where, as here, the tests share their null.
     """
     order = np.argsort(observed, kind="stable")
     out = np.empty(len(observed))

@@ -1,10 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """How long until the next milestone, under each rate law, never without how such statements would have fared before.
 
-Given a fitted law the number of events up to a wait w after the present is Poisson with mean M(w), the law's rate cumulated; the wait passes w with
-probability exp(-M(w)). The track record refits every law at every past milestone, the window closed by it, and looks at the wait that followed:
-share of waits inside the 50 and 95 % ranges, mean log density (the log score), and the probability integral transform, uniform for a law that
-is right. Nothing is tuned in hindsight.
+Given a fitted law the number of events up to a wait w after the present is Poisson with mean M(w), the law's rate cumulated; the
+wait passes w with probability exp(-M(w)). The track record refits every law at every past milestone, the window closed by it, and
+looks at the wait that followed: share of waits inside the 50 and 95 % ranges, mean log density (the log score), and the probability
+integral transform, uniform for a law that is right. Nothing is tuned in hindsight.
 """
 
 from __future__ import annotations
@@ -29,15 +29,18 @@ if TYPE_CHECKING:
 FEWEST = 5  # counted events before a past milestone from which its wait is forecast
 MOST = 200  # past milestones looked at, the latest ones
 CAUTION = (
-    "These waits say what a fitted curve would give if nothing about the making of milestones or of the list changed; they leave out that the latest milestones are not "
-    "yet recognised, that the curve was chosen on the same record, and the error of its parameters. Read no row without its track record."
+    "These waits say what a fitted curve would give if nothing about the making of milestones or of the list changed; they leave out that "
+    "the latest milestones are not yet recognised, that the curve was chosen on the same record, and the error of its parameters. Read no "
+    "row without its track record."
 )
 
 
 @dataclass(frozen=True)
 class NextRow:
-    """Wait from the present to the next milestone under one law, in years: median, 50 % and 95 % ranges (None: longer than any time with that
-    probability). rate_now per year; chance_never: probability that no further milestone comes at all; waited: years since the last milestone."""
+    """Wait from the present to the next milestone under one law, in years: median, 50 % and 95 % ranges (None: longer than any time
+    with that probability). rate_now per year; chance_never: probability that no further milestone comes at all; waited: years since
+    the last milestone.
+    """
 
     law: str
     rate_now: float | None
@@ -52,9 +55,11 @@ class NextRow:
 
 @dataclass(frozen=True)
 class TrackRow:
-    """How a law's earlier forecasts fared: forecasts made, shares of waits inside the 50 and 95 % ranges, mean log density of the wait that came
-    (log_score, years; None where a wait was impossible under the law), its gain over the steady law, mean of the probability integral transform (above one
-    half: waits longer than forecast), Kolmogorov-Smirnov p of its uniformity, and how many waits the law had ruled out."""
+    """How a law's earlier forecasts fared: forecasts made, shares of waits inside the 50 and 95 % ranges, mean log density of the
+    wait that came (log_score, years; None where a wait was impossible under the law), its gain over the steady law, mean of the
+    probability integral transform (above one half: waits longer than forecast), Kolmogorov-Smirnov p of its uniformity, and how
+    many waits the law had ruled out.
+    """
 
     law: str
     forecasts: int
@@ -69,7 +74,9 @@ class TrackRow:
 
 @dataclass(frozen=True)
 class ForecastRow:
-    """One earlier forecast: at which year, under which law, its 50 and 95 % ranges, the wait that came, its log density and its transform."""
+    """One earlier forecast: at which year, under which law, its 50 and 95 % ranges, the wait that came, its log density and its
+    transform.
+    """
 
     year: float
     law: str
@@ -96,7 +103,12 @@ class NextEvent:
         import pandas as pd
 
         out = {}
-        for name, rows, kind in (("next", self.rows, NextRow), ("track_record", self.track_record, TrackRow), ("forecasts", self.forecasts, ForecastRow)):
+        parts = (
+            ("next", self.rows, NextRow),
+            ("track_record", self.track_record, TrackRow),
+            ("forecasts", self.forecasts, ForecastRow),
+        )
+        for name, rows, kind in parts:
             out[name] = pd.DataFrame([asdict(r) for r in rows], columns=list(kind.__dataclass_fields__))
         return out
 
@@ -107,7 +119,9 @@ class NextEvent:
 
 @dataclass(frozen=True)
 class _Wait:
-    """One law after the present: inverse(m) is the wait at which m events are expected (inf: never), expected(w) and log_rate(w) its opposite."""
+    """One law after the present: inverse(m) is the wait at which m events are expected (inf: never), expected(w) and log_rate(w)
+    its opposite.
+    """
 
     rate: float
     inverse: Callable[[float], float]
@@ -121,7 +135,9 @@ class _Wait:
 
 
 def next_event(window: Window, *, seed: int = 1, tell: Tell = silent) -> NextEvent:
-    """The next milestone after the present, with its track record. Nothing here is random: the seed is taken like everywhere and not used."""
+    """The next milestone after the present, with its track record. Nothing here is random: the seed is taken like everywhere and
+    not used.
+    """
     events = positions(window)
     laws = [c for c in CURVES if not (c.name == "power_law" and window.opened_by_milestone)]
     rows = []
@@ -132,9 +148,18 @@ def next_event(window: Window, *, seed: int = 1, tell: Tell = silent) -> NextEve
             continue
         wait = _wait(fit)
         rows.append(
-            NextRow(curve.name, wait.rate, wait.quantile(0.5), wait.quantile(0.25), wait.quantile(0.75), wait.quantile(0.025), wait.quantile(0.975),
-                    float(np.exp(-wait.total)) if np.isfinite(wait.total) else 0.0, waited)
-        )  # fmt: skip
+            NextRow(
+                curve.name,
+                wait.rate,
+                wait.quantile(0.5),
+                wait.quantile(0.25),
+                wait.quantile(0.75),
+                wait.quantile(0.025),
+                wait.quantile(0.975),
+                float(np.exp(-wait.total)) if np.isfinite(wait.total) else 0.0,
+                waited,
+            )
+        )
     forecasts = _forecasts(window, [c.name for c in laws], tell)
     track = tuple(_track(curve.name, forecasts) for curve in laws)
     notes = [CAUTION]
@@ -210,10 +235,17 @@ def _forecasts(window: Window, laws: list[str], tell: Tell) -> list[ForecastRow]
             density = wait.log_rate(wait_seen) - expected
             out.append(
                 ForecastRow(
-                    float(dates[i]), curve.name, wait.quantile(0.25), wait.quantile(0.75), wait.quantile(0.025), wait.quantile(0.975), wait_seen,
-                    density if np.isfinite(density) else None, float(-np.expm1(-expected)),
+                    float(dates[i]),
+                    curve.name,
+                    wait.quantile(0.25),
+                    wait.quantile(0.75),
+                    wait.quantile(0.025),
+                    wait.quantile(0.975),
+                    wait_seen,
+                    density if np.isfinite(density) else None,
+                    float(-np.expm1(-expected)),
                 )
-            )  # fmt: skip
+            )
     return out
 
 
@@ -221,9 +253,13 @@ def _until(window: Window, date: float) -> Positions:
     """The window as it stood when this milestone came: it closes the window and is not counted."""
     seen = window.times <= date
     cut = replace(
-        window, index=window.index[seen], times=window.times[seen], present=date, closing=int((window.times == date).sum()),
+        window,
+        index=window.index[seen],
+        times=window.times[seen],
+        present=date,
+        closing=int((window.times == date).sum()),
         unit=window.unit[seen] if len(window.unit) == len(window.times) else window.unit,
-    )  # fmt: skip
+    )
     return positions(cut)
 
 

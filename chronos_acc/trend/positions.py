@@ -40,10 +40,11 @@ class Positions:
 def positions(window: Window) -> Positions:
     """The counted events of a window as fractions of it, equal dates spread at fixed mid-ranks within their dating.
 
-    k milestones dated alike to a width w stand at best + w (r - 1/2 - k/2)/k, r = 1..k, the width shrunk to stay inside the window, so their mean stays
-    and with it Laplace's statistic and the growth of the log-linear law. Closed intervals are those of the dates as given, from the milestone that
-    stands at the start (or the first one) to the one that stands at the present (or the last one); milestones in the same
-    instant as the opener count with it. An empty window (no length or no event) gives empty arrays.
+    k milestones dated alike to a width w stand at best + w (r - 1/2 - k/2)/k, r = 1..k, the width shrunk to stay inside the window,
+    so their mean stays and with it Laplace's statistic and the growth of the log-linear law. Closed intervals are those of the
+    dates as given, from the milestone that stands at the start (or the first one) to the one that stands at the present (or the
+    last one); milestones in the same instant as the opener count with it. An empty window (no length or no event) gives empty
+    arrays.
     """
     first = max(window.opening - 1, 0)
     last = len(window.times) - max(window.closing - 1, 0)

@@ -1,10 +1,11 @@
 # SPDX-License-Identifier: Apache-2.0
 """Rate laws fitted to one window: estimates, intervals, weights, and whether each law fits at all.
 
-log L = sum ln rate(t_i) - integral of the rate over the window, in events per year, without n!. Intervals are profile likelihoods, twice: Poisson, and
-robust against renewal spacing: the likelihood may fall further, by the dispersion of the spacing (``robust_critical``). Fit has two sides: ``fit_p_shape``, Anderson-Darling on the positions rescaled by the law, which sees
-a wrong law; ``fit_p_clustering``, Kolmogorov-Smirnov on the rescaled intervals against the exponential (Brown et al. 2002), which sees dependence. Both
-by parametric bootstrap in which every replicate is fitted anew.
+log L = sum ln rate(t_i) - integral of the rate over the window, in events per year, without n!. Intervals are profile likelihoods,
+twice: Poisson, and robust against renewal spacing: the likelihood may fall further, by the dispersion of the spacing
+(``robust_critical``). Fit has two sides: ``fit_p_shape``, Anderson-Darling on the positions rescaled by the law, which sees a wrong
+law; ``fit_p_clustering``, Kolmogorov-Smirnov on the rescaled intervals against the exponential (Brown et al. 2002), which sees
+dependence. Both by parametric bootstrap in which every replicate is fitted anew.
 """
 
 from __future__ import annotations
@@ -27,16 +28,22 @@ if TYPE_CHECKING:
     import pandas as pd
 
 CHI2_95 = 3.841458820694124  # upper 5 % point of chi-square on one degree of freedom
+OF_THE_LAW = (
+    "log_likelihood", "aicc", "bic", "weight", "lr", "lr_p", "fit_p_shape", "fit_p_clustering", "rate_at_start", "rate_now",
+    "doubling_time", "same_curve_as", "formula", "n", "k",
+)  # fmt: skip
 CELLS = 2_000_000  # bootstrap replicates are made in chunks of about this many cells
 
 
 @dataclass(frozen=True)
 class LawRow:
-    """One fitted law. Objects hold one value a parameter, None where unbounded or not computed; rates per year, dates in decimal years.
+    """One fitted law. Objects hold one value a parameter, None where unbounded or not computed; rates per year, dates in decimal
+    years.
 
-    low and high: 95 % profile interval; low_robust and high_robust: the same, robust against renewal spacing. aicc is None where n <= k + 1. weight: Akaike
-    weight among the regular laws. lr and lr_p: twice the log-likelihood over the steady law, and its p (chi-square; hyperbolic: half of it,
-    since steady lies on the boundary; step: bootstrap). doubling_time in years, negative where the rate halves.
+    low and high: 95 % profile interval; low_robust and high_robust: the same, robust against renewal spacing. aicc is None where n
+    <= k + 1. weight: Akaike weight among the regular laws. lr and lr_p: twice the log-likelihood over the steady law, and its p
+    (chi-square; hyperbolic: half of it, since steady lies on the boundary; step: bootstrap). doubling_time in years, negative where
+    the rate halves.
     """
 
     law: str
@@ -64,7 +71,9 @@ class LawRow:
 
 @dataclass(frozen=True)
 class LawsResult:
-    """All laws on one window. dispersion: squared coefficient of variation of the closed intervals rescaled by each law, None below two intervals."""
+    """All laws on one window. dispersion: squared coefficient of variation of the closed intervals rescaled by each law, None below
+    two intervals.
+    """
 
     rows: tuple[LawRow, ...]
     dispersion: dict[str, float | None]
@@ -78,7 +87,9 @@ class LawsResult:
         return next(r for r in self.rows if r.law == law)
 
     def to_frame(self) -> pd.DataFrame:
-        """One row a law and parameter: law, parameter, estimate, low, high, low_robust, high_robust, then what belongs to the law as a whole."""
+        """One row a law and parameter: law, parameter, estimate, low, high, low_robust, high_robust, then what belongs to the law
+        as a whole.
+        """
         import pandas as pd
 
         lines = []
@@ -86,11 +97,7 @@ class LawsResult:
             for name, value in r.parameters.items():
                 line: dict[str, object] = {"law": r.law, "parameter": name, "estimate": value, "low": r.low[name], "high": r.high[name]}
                 line.update(low_robust=r.low_robust[name], high_robust=r.high_robust[name])
-                for key in (
-                    "log_likelihood", "aicc", "bic", "weight", "lr", "lr_p", "fit_p_shape", "fit_p_clustering", "rate_at_start", "rate_now", "doubling_time",
-                    "same_curve_as", "formula", "n", "k",
-                ):  # fmt: skip
-                    line[key] = getattr(r, key)
+                line.update({key: getattr(r, key) for key in OF_THE_LAW})
                 lines.append(line)
         frame = pd.DataFrame(lines)
         texts = ("law", "parameter", "same_curve_as", "formula")
@@ -125,7 +132,9 @@ def fit_curve(curve: Curve, events: Positions) -> Fit | None:
 
 
 def rescaled_intervals(share: Floats, rest: Floats, opened: bool, closed: bool) -> Floats:
-    """Closed intervals (..., r) in units of the mean under the law: differences of n times the cumulated share, ends included where a milestone stands."""
+    """Closed intervals (..., r) in units of the mean under the law: differences of n times the cumulated share, ends included where
+    a milestone stands.
+    """
     n = share.shape[-1]
     edge = np.zeros((*share.shape[:-1], 1))
     left, right = ([edge] if opened else []), ([1.0 + edge] if closed else [])
@@ -147,15 +156,18 @@ def dispersion(share: Floats, rest: Floats, opened: bool, closed: bool) -> Float
 def robust_critical(ratio: float, n: int, intervals: int) -> float:
     """How far twice the log-likelihood may fall in the 95 % interval that allows for renewal spacing.
 
-    The scale is the dispersion CV² of the closed intervals rescaled by the fitted law, as for a quasi-likelihood (McCullagh and Nelder 1989). Being estimated
-    from r intervals it takes F(1, r - 1) in place of chi-square, and it is too small by about 2 CV²/n of itself where spacing is skew (found by
-    simulation, tests/simulate/coverage.py: with chi-square and no correction the interval covers 87 to 92 % at 10 and 30 events, with both 93 to 95 %).
+    The scale is the dispersion CV² of the closed intervals rescaled by the fitted law, as for a quasi-likelihood (McCullagh and
+    Nelder 1989). Being estimated from r intervals it takes F(1, r - 1) in place of chi-square, and it is too small by about 2 CV²/n
+    of itself where spacing is skew (found by simulation, tests/simulate/coverage.py: with chi-square and no correction the interval
+    covers 87 to 92 % at 10 and 30 events, with both 93 to 95 %).
     """
     return float(stdtrit(intervals - 1, 0.975)) ** 2 * ratio * (1.0 + 2.0 * ratio / n)
 
 
 def growth_interval(window: Window) -> tuple[float | None, float | None, float | None, float | None, float | None]:
-    """Growth of the log-linear law per year: estimate, low, high, low_robust, high_robust (95 % profile intervals). None where not computed."""
+    """Growth of the log-linear law per year: estimate, low, high, low_robust, high_robust (95 % profile intervals). None where not
+    computed.
+    """
     events = positions(window)
     fit = fit_curve(log_linear.CURVE, events)
     if fit is None:
@@ -176,8 +188,8 @@ def fit_laws(window: Window, *, seed: int, replicates: int = 499, tell: Tell = s
     notes: list[str] = []
     if window.opened_by_milestone and events.n:
         notes.append(
-            "power_law counts time from the start; here the first milestone opened the window, so its exponent has no interval and no part in the weights. Give "
-            "--start to use it."
+            "power_law counts time from the start; here the first milestone opened the window, so its exponent has no interval "
+            "and no part in the weights. Give --start to use it."
         )
     fits: list[Fit | None] = []
     for curve in CURVES:
@@ -198,7 +210,9 @@ def fit_laws(window: Window, *, seed: int, replicates: int = 499, tell: Tell = s
         if hyperbolic.parameters["t_star"] is None:
             notes.append("hyperbolic fits best with its singular date infinitely far: it is the steady law here.")
         else:
-            notes.append("t_star is a property of the fitted curve, not a forecast: no record says anything about a time at which nothing has been observed.")
+            notes.append(
+                "t_star is a property of the fitted curve, not a forecast: no record speaks of a time at which nothing has been observed."
+            )
     return LawsResult(tuple(rows), spread, events.n, seed, replicates, tuple(notes))
 
 
@@ -207,11 +221,7 @@ def _row(
 ) -> tuple[LawRow, float | None]:
     nothing: dict[str, float | None] = dict.fromkeys(curve.parameters)
     if fit is None or base is None:
-        none = LawRow(
-            curve.name, curve.formula, events.n, curve.k, nothing, nothing, nothing, nothing, nothing, None, None, None, None, None, None, None, None, None,
-            None, None, None,
-        )  # fmt: skip
-        return none, None
+        return LawRow(curve.name, curve.formula, events.n, curve.k, *(nothing,) * 5, *(None,) * 12), None
     n, k = events.n, curve.k
     ratio = float(dispersion(fit.share, fit.rest, events.opened, events.closed))
     has_interval = curve.regular and not (curve.name == "power_law" and window.opened_by_milestone)
@@ -293,7 +303,9 @@ def _sorted_uniforms(n: int, replicates: int, rng: np.random.Generator) -> Itera
 
 
 def _fit_p(fit: Fit, events: Positions, seed: int, replicates: int, stream: int) -> tuple[float | None, float | None]:
-    """Upper-tail bootstrap p of Anderson-Darling on positions and of Kolmogorov-Smirnov on rescaled intervals; every replicate is fitted anew."""
+    """Upper-tail bootstrap p of Anderson-Darling on positions and of Kolmogorov-Smirnov on rescaled intervals; every replicate is
+    fitted anew.
+    """
     if not replicates or events.n < 2:
         return None, None
     shape, clustering = _fit_statistics(fit.share, fit.rest, events.opened, events.closed)

@@ -2,9 +2,9 @@
 """Five tests of trend in one window, each with an exact p-value, and their joint adjustment.
 
 Two families, by what they take for granted. *Steady*: laplace, mil_hdbk_189 and anderson_darling ask whether events fall as under a
-steady rate; given how many there are, their dates are then uniform, so the exact law is simulated with no unknown. *Renewal*: reverse_arrangements and
-lewis_robinson allow intervals of any one distribution and permute them; the residual interval from a given start to the first milestone and the open one up to
-the present stay in place.
+steady rate; given how many there are, their dates are then uniform, so the exact law is simulated with no unknown. *Renewal*:
+reverse_arrangements and lewis_robinson allow intervals of any one distribution and permute them; the residual interval from a given
+start to the first milestone and the open one up to the present stay in place.
 """
 
 from __future__ import annotations
@@ -35,7 +35,7 @@ RENEWAL = ("reverse_arrangements", "lewis_robinson")
 UPPER_TAIL = ("anderson_darling",)
 SENSITIVE_TO = {
     "laplace": "a rate that rises or falls steadily through the window; most powerful against exponential growth; also moved by clusters",
-    "mil_hdbk_189": "a rate that changes as a power of the time since the start; looks hardest at the earliest events; also moved by clusters",
+    "mil_hdbk_189": "a rate that changes as a power of the time since the start; weighs the earliest events most; also moved by clusters",
     "anderson_darling": "any departure from a steady rate, also one that rises and falls; has no direction",
     "reverse_arrangements": "intervals that get longer or shorter in order, whatever their distribution; blind to a trend inside ties",
     "lewis_robinson": "a trend like laplace's, after allowing for intervals more or less scattered than a steady rate gives",
@@ -46,8 +46,9 @@ SENSITIVE_TO = {
 class TestRow:
     """One test. statistic and z keep their published sign; ``direction`` says what the sign means.
 
-    p_value: asymptotic, two-sided as the doubled smaller tail, anderson_darling upper tail. p_exact: from the conditional law of the null, same
-    tails. p_adjusted: step-down min-p in its family, the renewal family after the steady one. p_holm: Holm in the same order. None where not computed.
+    p_value: asymptotic, two-sided as the doubled smaller tail, anderson_darling upper tail. p_exact: from the conditional law of
+    the null, same tails. p_adjusted: step-down min-p in its family, the renewal family after the steady one. p_holm: Holm in the
+    same order. None where not computed.
     """
 
     __test__ = False  # not a test case of the test runner
@@ -94,8 +95,9 @@ def run_tests(
 ) -> TestsResult:
     """All five tests on the counted events of a window.
 
-    renewal_at_start: the interval from the start to the first milestone is an interval like the others (observation began with an event or with
-    something new). strict_ties: equal intervals count nothing in reverse_arrangements, as in the published worked example, instead of half.
+    renewal_at_start: the interval from the start to the first milestone is an interval like the others (observation began with an
+    event or with something new). strict_ties: equal intervals count nothing in reverse_arrangements, as in the published worked
+    example, instead of half.
     """
     events = positions(window)
     notes: list[str] = []
@@ -136,8 +138,8 @@ def laplace_p(statistic: Floats, n: int, seed: int, replicates: int = 1999) -> F
 def steady_null(n: int, seed: int, replicates: int) -> Floats:
     """(B, 3) laplace, mil_hdbk_189 and anderson_darling of records of n uniform dates; kept, since they depend on n alone.
 
-    B is 5 (replicates + 1) - 1 up to 400 events, replicates above: one set of draws judges every record of its size, and with 1,999 of them alone the
-    true level of a nominal 5 % would itself scatter by half a point.
+    B is 5 (replicates + 1) - 1 up to 400 events, replicates above: one set of draws judges every record of its size, and with 1,999
+    of them alone the true level of a nominal 5 % would itself scatter by half a point.
     """
     if n <= 400:
         replicates = 5 * (replicates + 1) - 1
@@ -162,19 +164,32 @@ def _steady_rows(x: Floats, v: Floats, seed: int, replicates: int) -> dict[str, 
     statistics = _steady_statistics(x, v)
     null = steady_null(n, seed, replicates)
     exact = np.array([monte_carlo_p(float(statistics[i]), null[:, i], name in UPPER_TAIL) for i, name in enumerate(STEADY)])
-    adjusted = step_down_min_p(exact, np.stack([null_p(null[:, i], float(statistics[i]), name in UPPER_TAIL) for i, name in enumerate(STEADY)], axis=1))
+    null_ps = [null_p(null[:, i], float(statistics[i]), name in UPPER_TAIL) for i, name in enumerate(STEADY)]
+    adjusted = step_down_min_p(exact, np.stack(null_ps, axis=1))
     by_holm = holm(exact)
     below, above = float(chdtr(2 * n, statistics[1])), float(chdtrc(2 * n, statistics[1]))
     z = (float(statistics[0]), float(ndtri(below)) if below < 0.5 else -float(ndtri(above)), None)
-    asymptotic = (2.0 * float(ndtr(-abs(statistics[0]))), min(1.0, 2.0 * min(below, above)), anderson_darling_tail(float(statistics[2])))
+    asymptotic = (
+        2.0 * float(ndtr(-abs(statistics[0]))),
+        min(1.0, 2.0 * min(below, above)),
+        anderson_darling_tail(float(statistics[2])),
+    )
     centred = (statistics[0], 2.0 * n - statistics[1], 0.0)
     return {
         name: TestRow(
-            name, float(statistics[i]), z[i], _direction(float(centred[i])), min(1.0, asymptotic[i]), float(exact[i]), float(adjusted[i]), float(by_holm[i]),
-            "steady", SENSITIVE_TO[name],
+            name,
+            float(statistics[i]),
+            z[i],
+            _direction(float(centred[i])),
+            min(1.0, asymptotic[i]),
+            float(exact[i]),
+            float(adjusted[i]),
+            float(by_holm[i]),
+            "steady",
+            SENSITIVE_TO[name],
         )
         for i, name in enumerate(STEADY)
-    }  # fmt: skip
+    }
 
 
 @dataclass(frozen=True)
@@ -196,7 +211,9 @@ class _Spacing:
             if renewal_at_start:
                 intervals, before, counted_first = np.concatenate([[before], intervals]), 0.0, False
         largest = max(abs(window.start), abs(window.present))
-        return cls(before, _with_exact_ties(intervals, 8.0 * np.finfo(float).eps * largest), window.span, counted_first, not events.closed)
+        return cls(
+            before, _with_exact_ties(intervals, 8.0 * np.finfo(float).eps * largest), window.span, counted_first, not events.closed
+        )
 
     def laplace(self, intervals: Floats) -> Floats:
         """Laplace's statistic of the records (...) with these intervals in this order."""
@@ -209,7 +226,9 @@ class _Spacing:
 
 
 def _with_exact_ties(intervals: Floats, slack: float) -> Floats:
-    """The intervals, made equal where only the rounding of their dates parts them: ties must not depend on the unit or the origin of time."""
+    """The intervals, made equal where only the rounding of their dates parts them: ties must not depend on the unit or the origin
+    of time.
+    """
     order = np.argsort(intervals, kind="stable")
     ordered = intervals[order]
     group = np.concatenate([[0], np.cumsum(np.diff(ordered) > slack)]) if len(ordered) else np.empty(0, dtype=np.int64)
@@ -261,9 +280,17 @@ def _renewal_rows(spacing: _Spacing, seed: int, replicates: int, strict_ties: bo
         else:
             z, direction = value, _direction(value)
         out[name] = TestRow(
-            name, value, z, direction, None if z is None else min(1.0, 2.0 * float(ndtr(-abs(z)))), float(p[i]), float(adjusted[i]), float(by_holm[i]), "renewal",
+            name,
+            value,
+            z,
+            direction,
+            None if z is None else min(1.0, 2.0 * float(ndtr(-abs(z)))),
+            float(p[i]),
+            float(adjusted[i]),
+            float(by_holm[i]),
+            "renewal",
             SENSITIVE_TO[name],
-        )  # fmt: skip
+        )
     return out
 
 

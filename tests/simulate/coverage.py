@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""How often the 95 % intervals of laws and exponents hold the truth: `python -m tests.simulate.coverage [records]`. Prints Markdown tables."""
+"""How often the 95 % intervals of laws and exponents hold the truth: `python -m tests.simulate.coverage [records]`. Prints Markdown
+tables.
+"""
 
 from __future__ import annotations
 
@@ -42,7 +44,9 @@ def robust_growth(spacing: str, doublings: float, n: int, count: int, rng: np.ra
         age, position = v.mean(), x.mean()
         best = log_linear.growth(age, position)
         ratio = float(dispersion(*log_linear.cumulative(np.array([float(best)]), x, v), False, False))
-        fall = 2 * len(x) * (log_linear.mean_log_density(best, age, position) - log_linear.mean_log_density(np.asarray(k), age, position))
+        fall = (
+            2 * len(x) * (log_linear.mean_log_density(best, age, position) - log_linear.mean_log_density(np.asarray(k), age, position))
+        )
         robust = robust_critical(ratio, len(x), len(x) - 1)
         found += [fall <= CHI2_95, fall <= robust, fall <= max(CHI2_95, robust)]
         made += 1
@@ -50,7 +54,9 @@ def robust_growth(spacing: str, doublings: float, n: int, count: int, rng: np.ra
 
 
 def age_exponent(s: float, n: int, count: int, rng: np.random.Generator, decades: float = 6.0) -> float:
-    """Share of profile intervals of the age exponent that hold it: n ages with density a^(-s) over ``decades``, the outermost two among them."""
+    """Share of profile intervals of the age exponent that hold it: n ages with density a^(-s) over ``decades``, the outermost two
+    among them.
+    """
     length = decades * np.log(10)
     _, v = log_linear.quantile(np.full((count, 1), -(1 - s) * length), *uniforms(n, count, rng))
     _, low, high = exponents(np.exp(v * length))
@@ -66,7 +72,9 @@ def exponent(b: float, n: int, count: int, rng: np.random.Generator) -> float:
 
 
 def t_star(sigma: float, n: int, count: int, rng: np.random.Generator) -> tuple[float, float]:
-    """Share of profile intervals of t_star that hold it, and share without an upper end; t_star lies ``sigma`` windows after the present."""
+    """Share of profile intervals of t_star that hold it, and share without an upper end; t_star lies ``sigma`` windows after the
+    present.
+    """
     tau = np.log(sigma)
     x, v = hyperbolic.quantile(np.full((count, 1), tau), *uniforms(n, count, rng))
     low, high = hyperbolic.profile(hyperbolic.estimate(x, v)[:, 0], v, CHI2_95)

@@ -17,7 +17,9 @@ SPACINGS: dict[str, Any] = {
 
 
 def records(spacing: str, mean: float, growth: float, records: int, rng: np.random.Generator) -> list[np.ndarray]:
-    """Positions in (0, 1) of ``records`` records with ``mean`` events expected; growth × window is ``growth``. Observation begins long after the process."""
+    """Positions in (0, 1) of ``records`` records with ``mean`` events expected; growth × window is ``growth``. Observation begins
+    long after the process.
+    """
     draw = SPACINGS[spacing]
     width = int(mean + 12 * np.sqrt(3 * mean) + 40)
     out = []

@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""How often each test calls a trend where there is none: `python -m tests.simulate.size [records]`. Prints Markdown tables; nominal 5 %."""
+"""How often each test calls a trend where there is none: `python -m tests.simulate.size [records]`. Prints Markdown tables; nominal
+5 %.
+"""
 
 from __future__ import annotations
 
@@ -40,7 +42,9 @@ def steady_sizes(n: int, count: int, rng: np.random.Generator, replicates: int =
     """Shares rejected at 5 % among steady records of n events: the steady family against its cached null, and exact reversals."""
     u = np.sort(rng.random((count, n)), axis=1)
     statistics, null = _steady_statistics(u, 1 - u), steady_null(n, 1, replicates)
-    out = {name: float((monte_carlo_p(statistics[:, i], null[:, i], name in UPPER_TAIL) < 0.05).mean()) for i, name in enumerate(STEADY)}
+    out = {
+        name: float((monte_carlo_p(statistics[:, i], null[:, i], name in UPPER_TAIL) < 0.05).mean()) for i, name in enumerate(STEADY)
+    }
     counts = kernels.reversals(np.diff(u, axis=1)).astype(int)
     out["reverse_arrangements"] = float((two_sided_reversal_p(n - 1)[counts] < 0.05).mean())
     return out
@@ -83,7 +87,10 @@ def dated_to_the_year(count: int, rng: np.random.Generator) -> dict[str, float]:
             out[name] = float((np.cumsum(reversal_law(99))[counted.astype(int)] < 0.025).mean())
         else:
             order = np.argsort(rng.random((199, 99)), axis=1)
-            p = [(1 + (kernels.reversals(row[order], ties) <= value).sum()) / 200 for row, value in zip(gaps[:150], counted[:150], strict=True)]
+            p = [
+                (1 + (kernels.reversals(row[order], ties) <= value).sum()) / 200
+                for row, value in zip(gaps[:150], counted[:150], strict=True)
+            ]
             out[name] = float((np.array(p) < 0.025).mean())
     return out
 
@@ -102,7 +109,7 @@ def fit_sizes(n: int, count: int, rng: np.random.Generator, replicates: int = 19
         theta = np.array(THETA[curve.name])
         for j in range(count):
             u = np.sort(rng.random(n))
-            x, v = curve.quantile(theta, u, 1 - u)
+            _, v = curve.quantile(theta, u, 1 - u)
             events = positions(Record.from_dates(1 - v, start=0, present=1).window)
             fit = fit_curve(curve, events)
             assert fit is not None
@@ -113,7 +120,9 @@ def fit_sizes(n: int, count: int, rng: np.random.Generator, replicates: int = 19
 
 
 def ratio_sizes(n: int, count: int, rng: np.random.Generator) -> tuple[float, float, float, float | None]:
-    """Steady records: share in which the boundary ratio refuses steady for hyperbolic, its 95 % point, the 95 % point of the step's ratio, the step's size."""
+    """Steady records: share in which the boundary ratio refuses steady for hyperbolic, its 95 % point, the 95 % point of the step's
+    ratio, the step's size.
+    """
     u = np.sort(rng.random((count, n)), axis=1)
     tau = hyperbolic.estimate(u, 1 - u)[..., 0]
     ratio = 2 * n * hyperbolic.mean_log_density(tau, 1 - u)
@@ -129,37 +138,44 @@ def percent(value: float | None) -> str:
     return "–" if value is None else f"{100 * value:.1f}"
 
 
+def table(title: str, first: str, rows: dict[str, list[str]], columns: tuple[str, ...] = tuple(f"n = {n}" for n in SIZES)) -> None:
+    """One Markdown table."""
+    print(f"\n{title}\n\n| {first} | " + " | ".join(columns) + " |\n|" + "---|" * (len(columns) + 1))
+    for name, cells in rows.items():
+        print(f"| {name} | " + " | ".join(cells) + " |")
+
+
 def main(count: int) -> None:
     """All tables."""
     rng = np.random.default_rng(20)
-    print(f"Steady records, {count} each, % rejected at 5 %, exact p\n\n| test | " + " | ".join(f"n = {n}" for n in SIZES) + " |\n|---|---|---|---|")
     sizes = [steady_sizes(n, count, rng) for n in SIZES]
-    for name in sizes[0]:
-        print(f"| {name} | " + " | ".join(percent(s[name]) for s in sizes) + " |")
+    table(f"Steady records, {count} each, % rejected at 5 %, exact p", "test", {t: [percent(s[t]) for s in sizes] for t in sizes[0]})
     few = max(count // 5, 100)
-    print(f"\nlewis_robinson on trend-free records, {few} each, % rejected: by permutation (asymptotic)\n\n| spacing | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|")
+    renewal = {}
     for spacing in SPACINGS:
-        cells = [lewis_robinson_size(spacing, n, few if n < 100 else few // 2, rng) for n in SIZES]
-        print(f"| {spacing} | " + " | ".join(f"{percent(a)} ({percent(b)})" for a, b in cells) + " |")
-    print("\nreverse_arrangements, exact two-sided level at 5 % by number of untied intervals\n\n| intervals | level |\n|---|---|")
+        pairs = [lewis_robinson_size(spacing, n, few if n < 100 else few // 2, rng) for n in SIZES]
+        renewal[spacing] = [f"{percent(a)} ({percent(b)})" for a, b in pairs]
+    table(f"lewis_robinson on trend-free records, {few} each, % rejected: by permutation (asymptotic)", "spacing", renewal)
+    levels = {}
     for r in (4, 5, 6, 7, 8, 9, 10, 12, 15, 20, 30):
-        p, law = two_sided_reversal_p(r), reversal_law(r)
-        print(f"| {r} | {percent(float(law[p < 0.05].sum()))} |")
+        levels[str(r)] = [percent(float(reversal_law(r)[two_sided_reversal_p(r) < 0.05].sum()))]
+    table("reverse_arrangements, exact two-sided level at 5 % by number of untied intervals", "intervals", levels, ("level",))
     few = max(count // 20, 50)
-    print(f"\nAny of the five tests below 5 % after adjustment, steady records, {few} each\n\n| adjustment | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|")
-    cells2 = [any_rejection(n, few, rng) for n in SIZES]
-    print("| step-down min-p | " + " | ".join(percent(c[0]) for c in cells2) + " |\n| Holm | " + " | ".join(percent(c[1]) for c in cells2) + " |")
+    any_of = [any_rejection(n, few, rng) for n in SIZES]
+    adjusted = {name: [percent(c[i]) for c in any_of] for i, name in enumerate(("step-down min-p", "Holm"))}
+    table(f"Any of the five tests below 5 % after adjustment, steady records, {few} each", "adjustment", adjusted)
     tied = dated_to_the_year(few, rng)
-    print(f"\n100 events in 100 years dated to the year called speeding by reversals: ties strict {percent(tied['strict'])} %, ties half {percent(tied['half'])} %")
-    print(f"\nFit refused under the law itself, {few} records each, %: shape / clustering\n\n| law | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|")
+    called = {f"ties {name}": [percent(tied[name])] for name in ("strict", "half")}
+    table("100 events in 100 years dated to the year, % called speeding by reversals", "counting", called, ("n = 100",))
     fits = [fit_sizes(n, few, rng) for n in SIZES]
-    for curve in CURVES:
-        cells3 = [f[curve.name] for f in fits]
-        print(f"| {curve.name} | " + " | ".join("–" if c is None else f"{percent(c[0])} / {percent(c[1])}" for c in cells3) + " |")
-    print("\nSteady records: likelihood ratios\n\n| n | hyperbolic refuses steady, % | its 95 % point | step's 95 % point | step refuses steady, % |\n|---|---|---|---|---|")
+    shown = {c.name: [" / ".join(percent(p) for p in pair) if (pair := f[c.name]) else "–" for f in fits] for c in CURVES}
+    table(f"Fit refused under the law itself, {few} records each, %: shape / clustering", "law", shown)
+    ratios = {}
     for n in SIZES:
         share, point, step_point, step_share = ratio_sizes(n, count, rng)
-        print(f"| {n} | {percent(share)} | {point:.2f} | {'–' if step_share is None else f'{step_point:.2f}'} | {percent(step_share)} |")
+        ratios[str(n)] = [percent(share), f"{point:.2f}", "–" if step_share is None else f"{step_point:.2f}", percent(step_share)]
+    columns = ("hyperbolic refuses steady, %", "its 95 % point", "step's 95 % point", "step refuses steady, %")
+    table("Steady records: likelihood ratios", "n", ratios, columns)
 
 
 if __name__ == "__main__":

@@ -26,7 +26,7 @@ def test_estimate_and_interval_against_numerical_search(seed: int) -> None:
     found = optimize.minimize_scalar(lambda s: -raw(s, ages), bounds=(-3, 5), method="bounded", options={"xatol": 1e-9})
     row = age_exponent(Record.from_dates(2025 - ages, present=2025).window)[0]
     assert row.estimate == pytest.approx(found.x, abs=1e-5)
-    fall = lambda s: 2 * (-found.fun - raw(s, ages)) - 3.841458820694124  # noqa: E731
+    fall = lambda s: 2 * (-found.fun - raw(s, ages)) - 3.841458820694124
     assert row.low == pytest.approx(optimize.brentq(fall, -6, found.x), abs=1e-6)
     assert row.high == pytest.approx(optimize.brentq(fall, found.x, 9), abs=1e-6)
     assert row.n == 20 and (row.youngest, row.oldest) == pytest.approx((ages.min(), ages.max()))

@@ -102,9 +102,15 @@ def test_counts_all_in_one_bin_or_few_have_an_answer() -> None:
 
 @pytest.mark.parametrize(
     ("edges", "counts", "error"),
-    [([0, 1], [3], RecordRefused), ([0, 1, 2], [0, 0], RecordRefused), ([0, 2, 1], [1, 1], WrongUse), ([0, 1, 2], [1, 1.5], WrongUse), ([0, 1, 2], [1, -1], WrongUse),
-     ([0, 1], [1, 1], WrongUse)],
-)  # fmt: skip
+    [
+        ([0, 1], [3], RecordRefused),
+        ([0, 1, 2], [0, 0], RecordRefused),
+        ([0, 2, 1], [1, 1], WrongUse),
+        ([0, 1, 2], [1, 1.5], WrongUse),
+        ([0, 1, 2], [1, -1], WrongUse),
+        ([0, 1], [1, 1], WrongUse),
+    ],
+)
 def test_refusals(edges: list[float], counts: list[float], error: type[Exception]) -> None:
     with pytest.raises(error, match="counts|bins|edges"):
         fit_counts(edges, counts)

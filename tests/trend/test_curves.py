@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""The family of rate laws: each law's density, share, inverse, fit and interval against slow second implementations on the raw likelihood."""
+"""The family of rate laws: each law's density, share, inverse, fit and interval against slow second implementations on the raw
+likelihood.
+"""
 
 from __future__ import annotations
 
@@ -73,7 +75,9 @@ def test_estimate_and_profile_interval_against_numerical_search(name: str, low: 
     rng = np.random.default_rng(seed)
     t = np.sort(1 - rng.beta(0.4, 3.0, 25))
     curve = next(c for c in CURVES if c.name == name)
-    found = optimize.minimize_scalar(lambda p: -raw_log_density(name, p, t), bounds=(max(low, -9.0), high), method="bounded", options={"xatol": 1e-10})
+    found = optimize.minimize_scalar(
+        lambda p: -raw_log_density(name, p, t), bounds=(max(low, -9.0), high), method="bounded", options={"xatol": 1e-10}
+    )
     theta = curve.estimate(t, 1 - t)
     assert theta[0] == pytest.approx(found.x, rel=1e-5, abs=1e-5)
     assert curve.log_density(theta, t, 1 - t).sum() == pytest.approx(-found.fun, abs=1e-8)
@@ -150,5 +154,8 @@ def test_same_curve_as_holds_numerically() -> None:
     assert law / law[0] == pytest.approx(2.0 ** (-ages / 40), rel=1e-12)
     law = np.exp(hyperbolic.CURVE.log_density(np.array([np.log(40 / 300)]), x, 1 - x))
     assert law / law[0] == pytest.approx(1 / (1 + ages / 40), rel=1e-12)
-    assert steady.CURVE.same_curve({"rate": 1.0}, Place(0, 1, 1, 1)) is None and power_law.CURVE.same_curve({"exponent": 2.0}, Place(0, 1, 1, 1)) is None
+    assert (
+        steady.CURVE.same_curve({"rate": 1.0}, Place(0, 1, 1, 1)) is None
+        and power_law.CURVE.same_curve({"exponent": 2.0}, Place(0, 1, 1, 1)) is None
+    )
     assert log_linear.CURVE.same_curve({"growth": -1.0}, Place(0, 1, 1, 1)) is None

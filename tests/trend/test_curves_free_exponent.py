@@ -30,7 +30,9 @@ def ages() -> np.ndarray:
 
 
 def test_against_a_search_over_both_parameters(ages: np.ndarray) -> None:
-    found = optimize.minimize(minus, [0.0, 1.5], args=(ages, 100.0), method="Nelder-Mead", options={"xatol": 1e-10, "fatol": 1e-10, "maxiter": 5000})
+    found = optimize.minimize(
+        minus, [0.0, 1.5], args=(ages, 100.0), method="Nelder-Mead", options={"xatol": 1e-10, "fatol": 1e-10, "maxiter": 5000}
+    )
     row = fit(ages)
     assert row.log_likelihood == pytest.approx(-found.fun, abs=1e-7)
     assert row.p == pytest.approx(found.x[1], rel=1e-4) and row.t_star - 2000 == pytest.approx(np.exp(found.x[0]), rel=1e-4)
@@ -39,7 +41,9 @@ def test_against_a_search_over_both_parameters(ages: np.ndarray) -> None:
         inner = optimize.minimize_scalar(lambda t, q=p: minus(np.array([t, q]), ages, 100.0), bounds=(-5, 6), method="bounded")
         assert 2 * (inner.fun - found.fun) == pytest.approx(CHI2_95, abs=1e-4)
     for star in (row.t_star_low, row.t_star_high):
-        inner = optimize.minimize_scalar(lambda q, t=np.log(star - 2000): minus(np.array([t, q]), ages, 100.0), bounds=(0.05, 12), method="bounded")
+        inner = optimize.minimize_scalar(
+            lambda q, t=np.log(star - 2000): minus(np.array([t, q]), ages, 100.0), bounds=(0.05, 12), method="bounded"
+        )
         assert 2 * (inner.fun - found.fun) == pytest.approx(CHI2_95, abs=1e-3)
 
 

@@ -84,7 +84,12 @@ def test_reading_a_file(tmp_path: Path) -> None:
     file = tmp_path / "people.csv"
     file.write_text("year,exposure\n1000,5\n2000,50\n", encoding="utf-8")
     assert read_exposure(file).values.tolist() == [5, 50]
-    for text, match in (("a,b\n1,2\n", "no columns"), ("year,exposure\n1,x\n2,3\n", "line 2"), ("year,exposure\n1,1\n", "two or more"), ("", "no columns")):
+    for text, match in (
+        ("a,b\n1,2\n", "no columns"),
+        ("year,exposure\n1,x\n2,3\n", "line 2"),
+        ("year,exposure\n1,1\n", "two or more"),
+        ("", "no columns"),
+    ):
         file.write_text(text, encoding="utf-8")
         with pytest.raises(ListRefused, match=match):
             read_exposure(file)

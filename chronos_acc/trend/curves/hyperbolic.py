@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """The hyperbolic rate, a/(t_star - t): it would pass every bound at t_star, which lies after the present.
 
-theta is tau = ln((t_star - present)/window), +inf where the likelihood only rises towards t_star -> infinity: then the law is the steady one.
-Near the singular date nothing is observed: t_star is a property of the curve, no forecast.
+theta is tau = ln((t_star - present)/window), +inf where the likelihood only rises towards t_star -> infinity: then the law is the
+steady one. Near the singular date nothing is observed: t_star is a property of the curve, no forecast.
 """
 
 from __future__ import annotations
@@ -24,10 +24,11 @@ def mean_log_density(tau: Floats, v: Floats) -> Floats:
     sigma = np.exp(np.minimum(here, 700.0))
     wide = here > 0
     # a wide and a narrow form of the same sum, each without loss
+    large, small = np.where(wide, sigma, 1.0), np.where(wide, 0.0, sigma)
     value = np.where(
         wide[..., 0],
-        -np.log1p(v / np.where(wide, sigma, 1.0)).mean(axis=-1) - np.log(np.where(wide, sigma, 1.0) * np.log1p(1.0 / np.where(wide, sigma, 1.0)))[..., 0],
-        -np.log(v + np.where(wide, 0.0, sigma)).mean(axis=-1) - np.log(_log_ratio(here))[..., 0],
+        -np.log1p(v / large).mean(axis=-1) - np.log(large * np.log1p(1.0 / large))[..., 0],
+        -np.log(v + small).mean(axis=-1) - np.log(_log_ratio(here))[..., 0],
     )
     return np.where(np.isfinite(tau), value, 0.0)
 
@@ -91,7 +92,9 @@ def _estimate(v: Floats) -> Floats:
 
 
 def profile(tau: Floats, v: Floats, critical: Floats | float) -> tuple[Floats, Floats]:
-    """Ends of tau between which twice the log-likelihood falls by less than ``critical``: -inf and inf where it never does. tau (...), v (..., n)."""
+    """Ends of tau between which twice the log-likelihood falls by less than ``critical``: -inf and inf where it never does. tau
+    (...), v (..., n).
+    """
     top = mean_log_density(tau, v)
     fall = np.broadcast_to(np.asarray(critical, dtype=float) / (2.0 * v.shape[-1]), top.shape)
 

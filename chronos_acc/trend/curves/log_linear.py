@@ -107,7 +107,8 @@ def same_curve(parameters: dict[str, Value], place: Place) -> str | None:
     rate = parameters["growth"]
     if rate is None or rate <= 0:
         return None
-    return f"recall_decay: a steady rate of which half is forgotten every {np.log(2.0) / rate:.4g} years of age (steady × 2^(−age/h), h = doubling time)"
+    years = f"{np.log(2.0) / rate:.4g} years"
+    return f"recall_decay: a steady rate of which half is forgotten every {years} of age (steady × 2^(−age/h), h = doubling time)"
 
 
 CURVE = Curve(

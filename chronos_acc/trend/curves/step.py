@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """The step: one rate before a date, another after it. Judged by its bootstrap likelihood ratio only.
 
-theta is (position of the step, share of the events before it). On either side at least max(5, a tenth) of the events; between two events the
-likelihood is convex in the date of the step, so its top is at an event: just after it, or just before it.
+theta is (position of the step, share of the events before it). On either side at least max(5, a tenth) of the events; between two
+events the likelihood is convex in the date of the step, so its top is at an event: just after it, or just before it.
 """
 
 from __future__ import annotations
@@ -67,7 +67,7 @@ def cumulative(theta: Floats, x: Floats, v: Floats) -> tuple[Floats, Floats]:
 
 def quantile(theta: Floats, u: Floats, c: Floats) -> tuple[Floats, Floats]:
     """Positions at cumulated shares."""
-    at, before, after = _densities(theta)
+    _, before, after = _densities(theta)
     early = u <= theta[..., 1:]
     return np.where(early, u / before, 1.0 - c / after), np.where(early, 1.0 - u / before, c / after)
 
