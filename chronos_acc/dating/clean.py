@@ -31,6 +31,8 @@ def clean(text: str) -> str:
         text = text.translate(_SIGNS)
         if text[:1] == "–" and text[1:2].isdigit():  # a dash that opens a text can only be a sign
             text = "-" + text[1:]
-    text = " ".join(text.split())
+    text = " ".join(text.split()).rstrip(" ,;")
+    if text[-1:] == "." and text[-2:-1].isdigit():
+        text = text[:-1]  # a full stop behind a number ends a sentence
     lead = _LEAD.match(text) if text[:1] in "iodtyIODTY" else None
     return text[lead.end():] if lead else text

@@ -63,6 +63,11 @@ def ends(text: str, settings: Settings, *, unit: str | None = None) -> Span:
 def _with_unit(text: str, settings: Settings, unit: str | None) -> str:
     plain = clean(text)
     word = unit or settings.unit or ("years ago" if settings.counted == "ago" else None)
+    if word and ("±" in plain or "+" in plain):
+        named = find_unit(word)
+        # the row's unit is the date's; behind an error a bare "a" could be the error's own
+        if named is not None and named.zero == "compiled" and named.power == 0:
+            word = "years ago"
     return f"{plain} {word.strip()}" if word and takes_unit(plain) else plain
 
 

@@ -37,7 +37,7 @@ MATTERS_BELOW = 1000.0
 """Half-width in years below which an age without a compile year is refused."""
 
 # 1 a is one year, ka 10**3, Ma 10**6, Ga 10**9: Holden et al. 2011, Pure Appl. Chem. 83:1159-1162
-_SHORT = {0: ("a", "yr", "yrs"), 3: ("ka", "kyr", "kyrs", "kya", "ky"), 6: ("ma", "myr", "myrs", "mya", "my"), 9: ("ga", "gyr", "gyrs", "gya", "gy", "bya", "byr")}
+_SHORT = {0: ("a", "yr", "yrs", "ya"), 3: ("ka", "kyr", "kyrs", "kya", "ky"), 6: ("ma", "myr", "myrs", "mya", "my"), 9: ("ga", "gyr", "gyrs", "gya", "gy", "bya", "byr")}
 _LONG = {0: ("",), 3: ("thousand", "k"), 6: ("million", "mio", "mln"), 9: ("billion", "bn")}
 _NAMES = {0: "a", 3: "ka", 6: "Ma", 9: "Ga"}
 _YEARS = ("years", "year", "yr", "yrs")
@@ -46,8 +46,8 @@ _BP = ("bp", "b p", "before present", "cal bp", "calbp", "bp cal", "bp (cal)", "
 _B2K = ("b2k", "before 2000", "before 2k")
 _RAW = ("14c bp", "c14 bp", "14c", "rcybp", "rcbp", "c-14 bp", "bp uncal", "uncal bp", "bp (uncal)", "bp uncalibrated", "uncalibrated bp", "radiocarbon bp",
         "radiocarbon before present", "radiocarbon", "14c before present", "bp (14c)", "bp 14c", "conventional bp")
-_CE = ("ce", "ad", "c e", "a d")
-_BCE = ("bce", "bc", "b c e", "b c")
+_CE = ("ce", "ad", "c e", "a d", "cal ce", "cal ad", "ce cal", "ad cal")
+_BCE = ("bce", "bc", "b c e", "b c", "cal bce", "cal bc", "bce cal", "bc cal")
 
 
 def _table() -> dict[str, Unit]:
@@ -75,7 +75,7 @@ def _table() -> dict[str, Unit]:
             put(zero, *(f"cal {unit} b2k" for unit in _SHORT[power] if zero is b2k))
         for zero_name, eras in (("CE", _CE), ("BCE", _BCE)):
             if power:
-                put(Unit(f"{_LONG[power][0]} {zero_name}", power, "ce" if zero_name == "CE" else "bce"), *(f"{_LONG[power][0]} {era}" for era in eras))
+                put(Unit(f"{_LONG[power][0]} {zero_name}", power, "ce" if zero_name == "CE" else "bce"), *(f"{long} {era}" for long, era in product(_LONG[power], eras)))
             else:
                 put(Unit(zero_name, 0, "ce" if zero_name == "CE" else "bce"), *eras)
     for joined in ("ybp", "yrbp"):

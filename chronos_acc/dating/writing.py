@@ -2,9 +2,13 @@
 
 from __future__ import annotations
 
+import re
+
 from .calendar import day_bounds, from_julian_day, julian_day
 from .dating import Dating, Reading
 from .settings import DEFAULTS
+
+_LIKE_A_MONTH = re.compile(r"(?:[1-9]|1[0-2])\.[0-9]{4}\Z")  # 4.1985 is refused, as it may be April 1985
 
 
 def write(dating: Dating) -> str:
@@ -24,7 +28,8 @@ def write(dating: Dating) -> str:
 
 def _plain(year: float) -> str:
     """The shortest digits that give a float64 back, with a point or an exponent, so that it is read as written and not as a whole year."""
-    return repr(year + 0.0)
+    text = repr(year + 0.0)
+    return f"{text}0" if _LIKE_A_MONTH.match(text) else text
 
 
 def _day(low: float, high: float) -> str | None:

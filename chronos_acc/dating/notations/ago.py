@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+import re
+
 from ...errors import DateRefused
 from ..number import Number, split_number
 from ..settings import Settings
 from ..span import Span
 from ..units import ASSUMED_YEAR, B2K_YEAR, BP_YEAR, Unit, find_unit
 from .notation import Notation, Part
+
+_LETTERED = re.compile(r"1[0-9]{3}a\Z|20[0-9]{2}a\Z")
 
 
 def read(text: str, settings: Settings, part: Part) -> Span | None:
@@ -16,6 +20,8 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if found is None or not found[1]:
         return None
     unit = find_unit(found[1])
+    if _LETTERED.match(text):
+        raise DateRefused(f"is ambiguous: {text[:4]} years ago, or the year {text[:4]} with a letter as in a list of references; write \"{text[:4]} a\" or the year alone")
     return age(found[0], unit, settings) if unit is not None and unit.zero == "compiled" else None
 
 

@@ -15,7 +15,7 @@ _WORDS = ("first", "second", "third", "fourth", "fifth", "sixth", "seventh", "ei
 ORDINALS = {word: place + 1 for place, word in enumerate(_WORDS)}
 _ROMAN = ("i", "ii", "iii", "iv", "v", "vi", "vii", "viii", "ix", "x", "xi", "xii", "xiii", "xiv", "xv", "xvi", "xvii", "xviii", "xix", "xx", "xxi")
 _ROMANS = {numeral: place + 1 for place, numeral in enumerate(_ROMAN)}
-ORDINAL = r"(?:[0-9]{1,4}(?:st|nd|rd|th)|" + "|".join(sorted((*_WORDS, *_ROMAN), key=len, reverse=True)) + ")"
+ORDINAL = r"(?:[0-9]{1,4}(?:st|nd|rd|th)|" + "|".join(sorted(_WORDS, key=len, reverse=True)) + "|(?:" + "|".join(sorted(_ROMAN, key=len, reverse=True)) + ")(?:st|nd|rd|th|(?![a-z])))"
 _CENTURY = re.compile(
     rf"(?:the )?(?P<ordinal>{ORDINAL})[ -]?(?P<unit>centur(?:y|ies)|cent\.?|c\.?|millenni(?:um|a)|mill?\.?)(?:,? ?(?P<era>bce?|ce|ad|b\.c\.e?\.?|c\.e\.|a\.d\.))?\Z", re.IGNORECASE)
 
@@ -26,7 +26,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if found is None:
         return None
     word = found["ordinal"].lower()
-    number = ORDINALS.get(word) or _ROMANS.get(word) or int(re.sub("[^0-9]", "", word))
+    number = ORDINALS.get(word) or _ROMANS.get(re.sub("(?:st|nd|rd|th)$", "", word)) or int(re.sub("[^0-9]", "", word))
     unit, length = ("century", 100) if found["unit"][0] in "cC" else ("millennium", 1000)
     era = find_unit(found["era"]) if found["era"] else None
     if number == 0:

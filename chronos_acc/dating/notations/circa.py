@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 
+from ...errors import DateRefused
 from ..settings import Settings
 from ..span import Span
 from .notation import Notation, Part
@@ -11,8 +12,9 @@ from .notation import Notation, Part
 PREFIX = re.compile(
     r"(?:c\.? ?(?=[0-9+-])|(?:c|ca|cca)\. ?|(?:ca|cca|circa|about|abt\.?|approximately|approx\.?|around|roughly|probably|prob\.|perhaps|possibly|maybe|estimated|est\.) |[~?] ?)(?=\S)",
     re.IGNORECASE)
-_SUFFIX = re.compile(r" ?(?: |\()(?:circa|ca?\.|ca|approx\.?|approximately|about|estimated|est\.)\)?\Z", re.IGNORECASE)
+_SUFFIX = re.compile(r" ?(?: |\()(?:circa|ca\.?|approx\.?|approximately|about|estimated|est\.)\)?\Z", re.IGNORECASE)
 _QUALIFIED_ISO = re.compile(r"[~?%]-?[0-9X]{4}-[0-9X]")
+_CENTURY = re.compile(r"[cC][0-9]{1,2}\Z")
 LEAST = 5.0
 """Circa reaches five years at least."""
 
@@ -21,6 +23,8 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     """A word or sign that says "about" on either side of a date."""
     found = PREFIX.match(text)
     if found:
+        if _CENTURY.match(text):
+            raise DateRefused(f"is ambiguous: about the year {text[1:]}, or the {text[1:]}th century as some write it; write \"c. {text[1:]} CE\" or the century out")
         if _QUALIFIED_ISO.match(text):
             return None  # a qualifier in ISO 8601-2's own place
         inner = part(text[found.end():], NOTATION.level)

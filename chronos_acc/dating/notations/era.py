@@ -11,7 +11,7 @@ from ..span import Span
 from ..units import Unit, find_unit
 from .notation import Notation, Part
 
-_BEFORE = re.compile(r"(a\.?\s?d\.?|c\.?e\.?|b\.?\s?c\.?(?:\s?e\.?)?)\s?(?=[0-9+-])", re.IGNORECASE)
+_BEFORE = re.compile(r"(?:cal\.? )?(a\.?\s?d\.?|c\.?e\.?|b\.?\s?c\.?(?:\s?e\.?)?)\s?(?=[0-9+-])", re.IGNORECASE)
 
 
 def read(text: str, settings: Settings, part: Part) -> Span | None:

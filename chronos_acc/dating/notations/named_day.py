@@ -33,7 +33,8 @@ _FORMS = tuple(
     )
 )
 _SEASON = re.compile(rf"(?:the )?(?P<season>{'|'.join(SEASONS)}),?(?: of)?(?: the year)? {_YEAR}\Z", re.IGNORECASE)
-_HAS_NAME = re.compile(rf"\b(?:{'|'.join(sorted([*MONTHS, *SEASONS], key=len, reverse=True))})", re.IGNORECASE)
+_QUARTER = re.compile(r"q(?P<number>[1-4])[ /-]?(?P<year>[0-9]{4})\Z|(?P<first>[0-9]{4})[ -]?q(?P<last>[1-4])\Z", re.IGNORECASE)
+_HAS_NAME = re.compile(rf"(?:\b|(?<=[0-9]))q[1-4]|\b(?:{'|'.join(sorted([*MONTHS, *SEASONS], key=len, reverse=True))})", re.IGNORECASE)
 _GREGORIAN_STARTS = 1582 + 287 / 365
 
 
@@ -41,10 +42,21 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     """A month or season by its name, with a year and perhaps a day."""
     if not _HAS_NAME.search(text):
         return None
+    season = _season(text, settings)
+    if season is not None:
+        return season
     for form in _FORMS:
         found = form.match(text)
         if found:
             return _dated(found, settings)
+    return None
+
+
+def _season(text: str, settings: Settings) -> Span | None:
+    quarter = _QUARTER.match(text)
+    if quarter:
+        year, number = int(quarter["year"] or quarter["first"]), int(quarter["number"] or quarter["last"])
+        return flat("season", *season_bounds(year, 32 + number, "north", settings.calendar), f"quarter {number} of {year}")
     season = _SEASON.match(text)
     if season is None:
         return None
@@ -58,6 +70,8 @@ def _year(found: re.Match[str]) -> int:
     year = int(found["year"])
     era = find_unit(found["era"] or found["before"] or "") if found["era"] or found["before"] else None
     if era is None:
+        if len(found["year"]) <= 2:
+            raise DateRefused(f"has no certain year: {found['year']} may be a day or a year without its century; write the year in full, or with its era")
         return year
     if year <= 0 or found["year"].startswith("-") or (found["era"] and found["before"]):
         raise DateRefused(f"gives a year {found['year']} with an era; eras count from 1 up, without a sign")
@@ -94,4 +108,4 @@ def day_span(year: int, month: int, day: int, calendar: Literal["gregorian", "ju
     return flat("day", *day_bounds(year, month, day, calendar), f"the day {name}{_in(calendar)}", uses)
 
 
-NOTATION = Notation("named day", "12 April 1961", "a day, month or season by name", read, marks=frozenset("aeiouAEIOU"))
+NOTATION = Notation("named day", "12 April 1961", "a day, month or season by name", read, marks=frozenset("aeiouAEIOUqQ"))

@@ -77,6 +77,8 @@ def _refuse_split(year: str, tail: str) -> None:
     full = year[: -len(tail)] + tail
     month = f", or month {int(tail)} of {int(year)} ({int(year):04d}-{int(tail):02d})" if 1 <= int(tail) <= 12 else ""
     dual = f", or {int(year)} Old Style, which is {full} New Style" if int(full) == int(year) + 1 else ""
+    if not month and not dual:
+        raise DateRefused(f"has a slash, which joins whole dates in ISO 8601; write the years {int(year)} to {int(full)} as {int(year)}–{full}")
     raise DateRefused(f"is ambiguous: the years {int(year)} to {int(full)} ({int(year)}–{full}){month}{dual}; write one of them out")
 
 

@@ -14,11 +14,12 @@ from ..units import find_unit
 from .notation import Notation, Part
 
 _SIGMA = re.compile(
-    r" ?[(\[,]? ?(?:at |with )?(?:(?P<n>[0-9](?:\.[0-9]+)?)[ -]?(?:σ|sigmas?\b|s\.?d\.?(?![a-z])|s\.?e\.?(?![a-z])|standard deviations?)|(?P<share>68|95)(?:\.[0-9]+)? ?%(?: ?(?:ci|confidence|level|c\.i\.))*)(?: errors?| level)? ?[)\]]?(?= |\Z)",
+    r" ?[(\[,]? ?(?:at |with )?(?:(?P<n>[0-9](?:\.[0-9]+)?)[ -]?(?:σ|sigmas?\b|s\.?d\.?(?![a-z])|s\.?e\.?(?![a-z])|s(?![a-z])|standard deviations?)|(?P<share>68|95)(?:\.[0-9]+)? ?%(?: ?(?:ci|confidence|level|c\.i\.))*)(?: errors?| level)? ?[)\]]?(?= |\Z)",
     re.IGNORECASE)
 _SIGMA_MARKS = frozenset("σsS%")
 _ERROR = r"([0-9][0-9.,']*|[.,][0-9]+)"
-_BOTH = re.compile(rf"(.*?[^ ]) ?(?:±|\+ ?/ ?-|\+-) ?{_ERROR} ?(%)? ?([^\d%±+].*)?\Z")
+_BOTH = re.compile(rf"(.*?[^ (]) ?(?:±|\+ ?/ ?-|\+-) ?{_ERROR} ?(%)? ?([^\d%±+()][^()]*)?\Z")
+_ENCLOSED = re.compile(r"\( ?((?:±|\+ ?/ ?-|\+-)[^()]*)\)")
 _SIDES = re.compile(rf"(.*?[^ (]) ?\(? ?([+-]) ?{_ERROR} ?[/,;]? ?([+-]) ?{_ERROR} ?\)? ?([^\d±+].*)?\Z")
 _BRACKET = re.compile(r"(.*[0-9])\(([0-9]{1,4})\) ?([^\d±+].*)?\Z")
 _BARE = re.compile(r"[-+0-9.,' ]+\Z")
@@ -56,7 +57,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
 
 
 def _split(text: str) -> _Error | None:
-    both = _BOTH.match(text)
+    both = _BOTH.match(_ENCLOSED.sub(r"\1", text) if "(" in text else text)
     if both:
         return _Error(both[1], both[4] or "", both[2], both[2], "percent" if both[3] else "number")
     sides = _SIDES.match(text)

@@ -19,6 +19,9 @@ _WORDED = (
     re.compile(r"from (.+?) (?:to|until|till|through|thru|up to) (.+)\Z", re.IGNORECASE),
     re.compile(r"(.+?) ?(?:-to-| to | until | till | through | thru | up to | or )(.+)\Z", re.IGNORECASE),
 )
+_ORDINALS = re.compile(rf"((?:.* )?{ORDINAL})/({ORDINAL} .*)\Z", re.IGNORECASE)
+_TWO_DECADES = re.compile(r"(?:the )?([0-9]{1,3})[0-9]0'?s\Z")
+_SHORT_DECADE = re.compile(r"([0-9]0'?s)\Z")
 _HAS_WORD = re.compile(r"[ -](?:to|until|till|through|thru|or|and)[ -]", re.IGNORECASE)
 _DASHES = re.compile(r" ?(?:–|--+) ?")
 _HYPHEN = re.compile(r"(?<=[\w.)'?])-(?=[\w.+~?-])")
@@ -55,6 +58,9 @@ def _splits(text: str) -> list[tuple[str, str, bool]]:
     pieces = _DASHES.split(text)
     if len(pieces) > 1:
         return [(pieces[0], pieces[1], True)] if len(pieces) == 2 and all(pieces) else []
+    ordinals = _ORDINALS.match(text)
+    if ordinals:
+        return [(ordinals[1], ordinals[2], False)]
     pieces = text.split(" - ")
     if len(pieces) > 1:
         return [(pieces[0], pieces[1], False)] if len(pieces) == 2 else []
@@ -93,6 +99,9 @@ def _between(left: str, right: str, may_shorten: bool, settings: Settings, part:
     if right.lower() in _NOW:
         start = part(left, NOTATION.level)
         return None if start is None else flat("range", start.low, inf, f"from {_brief(start)} to the present", start.uses, start.remarks)._replace(assumed=start.assumed)
+    decades = _TWO_DECADES.match(left) if _SHORT_DECADE.match(right) else None
+    if decades:  # 1850s–60s
+        right = decades[1] + right
     tail = _tail(right, settings)
     circa = CIRCA.match(left)
     if circa and not CIRCA.match(right):
@@ -186,14 +195,14 @@ def _ordered(start: Span, end: Span, settings: Settings) -> Span:
         raise DateRefused("gives an error at the end of a range; give the bounds alone, or one date with its error")
     if (start.low, start.high) == (end.low, end.high):
         raise DateRefused(f"is a range from {_brief(start)} to itself; write that date alone")
-    if start.low > end.low:
+    if start.low > end.low or start.low >= end.high:
         if settings.backwards == "refuse":
             raise DateRefused(f"runs backwards: {_brief(end)} comes before {_brief(start)}; write the earlier end first, with its era, or set backwards = \"swap\"")
         start, end = end, start
     # as ends are taken as written, the rounding of a number plays no part; circa's width does
     uses = tuple(name for one in (start, end) for name in one.uses if name != "digits" or one.kind == "circa")
     words = f"from {_brief(start)} to {_brief(end)}"
-    return flat("range", start.low, max(start.high, end.high), words, uses, start.remarks + end.remarks)._replace(back=start.back, assumed=start.assumed or end.assumed)
+    return flat("range", start.low, end.high, words, uses, start.remarks + end.remarks)._replace(back=start.back, assumed=start.assumed or end.assumed)
 
 
 def _brief(span: Span) -> str:

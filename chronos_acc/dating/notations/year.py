@@ -11,6 +11,7 @@ from ..span import FARTHEST, Span
 from .notation import Notation, Part
 
 _BASIC_DAY = re.compile(r"[0-9]{4}(0[1-9]|1[0-2])(0[1-9]|[12][0-9]|3[01])\Z")
+_MONTH_YEAR = re.compile(r"(?:0?[1-9]|1[0-2])[.,][0-9]{4}\Z")
 _LEAST = 5e-324  # a last digit too small for float64 is still a digit
 
 
@@ -24,6 +25,8 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
         raise DateRefused("has a zero with a minus sign; year 0 (1 BCE) is written 0 or 0000")
     if _BASIC_DAY.match(text):
         raise DateRefused(f"is year {text} or the day {text[:4]}-{text[4:6]}-{text[6:]}; write the day with hyphens, or the year with separators")
+    if _MONTH_YEAR.match(text):
+        raise DateRefused(f"is ambiguous: the decimal year {number.digits}, or a month and year; write the month by name, or the year with other decimals")
     return calendar_year(number, settings)
 
 
