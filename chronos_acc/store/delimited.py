@@ -133,7 +133,7 @@ def read(path: Path, asked: Asked, first: str = ",") -> Table:
     for delimiter in sorted(DELIMITERS, key=lambda d: d != first):
         cutter = _Cutter(delimiter)
         header, after = _header(text.head, cutter, begin)
-        names = [cell.strip() for cell in header]
+        names = [clip(cell.strip()) for cell in header]
         while len(names) > 1 and not names[-1]:
             names.pop()
         score = (asked.fits(names), len(names))

@@ -37,7 +37,7 @@ HEADERS: Mapping[str, tuple[str, ...]] = {
     "note": ("note", "notes", "comment", "comments", "remark", "remarks"),
 }
 CHOICES: tuple[tuple[str, Mapping[str, Any]], ...] = (
-    ("as they stand", {}),
+    ("as the dates stand and the header says", {}),
     ("numbers are calendar years", {"counted": "calendar"}),
     ("numbers are years ago", {"counted": "ago"}),
     ("numbers are Ma", {"unit": "Ma"}),
@@ -143,6 +143,8 @@ def _choices(cells: Sequence[Sequence[str | None]], columns: Mapping[str, int], 
     made = []
     for words, more in CHOICES:
         keys = {**base, **more} if "counted" not in more and "unit" not in more else more
+        if made and keys == base:
+            continue
         seen: dict[tuple[str | None, ...], bool] = {}
         read = 0
         for row in cells:
@@ -217,7 +219,8 @@ def _text(
     lines += [f"{key} = {_toml(value)}" for key, value in chosen.items()]
     if choices:
         lines.append(f"# rows that each choice reads, of {count:,}:")
-        lines += [f"#   {choice.read:>6,}  {_setting(choice.keys):30}{choice.words}" for choice in choices]
+        width = max(len(_setting(choice.keys)) for choice in choices) + 2
+        lines += [f"#   {choice.read:>6,}  {_setting(choice.keys):{width}}{choice.words}" for choice in choices]
         unread = _unread(cells, columns, chosen, year)
         if unread:
             lines += ["# not read as proposed, for example:", *(f"#   {reason}" for reason in unread)]
