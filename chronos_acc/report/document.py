@@ -121,6 +121,7 @@ th.n, td.n { text-align: right; white-space: nowrap; }
 figure { margin: 1rem 0 1.6rem; } figure svg { width: 100%; height: auto; max-width: 52rem; }
 figcaption { color: var(--faint); font-size: .9rem; max-width: 46rem; }
 pre { background: var(--tint); padding: .7rem .9rem; overflow-x: auto; font: .8rem/1.35 ui-monospace, Menlo, Consolas, monospace; }
+@media (max-width: 40rem) { td:not(.n) { min-width: 7.5rem; } }
 @media print { body { max-width: none; padding: 0; font-size: 10pt; } h2 { break-after: avoid; } figure, tr { break-inside: avoid; }
   .scroll { overflow: visible; } table { font-size: 7.5pt; } pre { white-space: pre-wrap; } }
 """

@@ -64,11 +64,11 @@ def build(m: Material, *, figures: bool) -> Document:
         Paragraph(trend["verdict"], strong=True),
         Paragraph(_in_short(m)),
         Heading("The lists"),
-        *sources_page(m.sources).tables,
+        _lists_table(m.sources),
         Items(tuple(_citation(row) for row in m.sources.to_dict("records"))),
         Heading("Merging"),
         Paragraph(_merging(m)),
-        *([replace(rejects_page(m.rejects).tables[0])] if len(m.rejects) else []),
+        *(rejects_page(m.rejects).tables if len(m.rejects) else ()),
         *milestones_page(m.milestones).tables,
         Heading("The series"),
         *intervals_page(m.intervals.to_frame(), m.record).tables,
@@ -98,6 +98,13 @@ def build(m: Material, *, figures: bool) -> Document:
         Paragraph(f"Made at {m.stamp}."),
     ]
     return Document(m.title, tuple(blocks))
+
+
+def _lists_table(sources: pd.DataFrame) -> Table:
+    """The lists without what the citations below it say."""
+    (table,) = sources_page(sources).tables
+    said = ("criterion", "citation", "file")
+    return replace(table, columns=tuple(c for c in table.columns or () if c.key not in said))
 
 
 def _in_short(m: Material) -> str:
