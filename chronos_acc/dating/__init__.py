@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Dating: what compilers write, to decimal years with bounds. Pure: only the standard library, no files but the period table."""
 
 from __future__ import annotations

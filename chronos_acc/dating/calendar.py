@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Days to decimal years and back to eras. Proleptic Gregorian and astronomical throughout: 1 BCE is year 0, year Y covers [Y, Y + 1)."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """One spelling for the signs that keyboards, typesetters and spreadsheets vary."""
 
 from __future__ import annotations
@@ -14,7 +15,16 @@ _SIGNS = str.maketrans(
         **dict.fromkeys("\u223c\u2248\u2243\u02dc\uff5e", "~"),
         **dict.fromkeys("\u2215\u2044\uff0f", "/"),
         **dict.fromkeys("\u22c5\u00b7\u2219\u2022", "·"),
-        "\u2a09": "×", "\u2715": "×", "\u2264": "<=", "\u2265": ">=", "\u2a7d": "<=", "\u2a7e": ">=", "\u2026": "...", "\u03c2": "σ", "\u01a9": "σ", "\u03a3": "σ",
+        "\u2a09": "×",
+        "\u2715": "×",
+        "\u2264": "<=",
+        "\u2265": ">=",
+        "\u2a7d": "<=",
+        "\u2a7e": ">=",
+        "\u2026": "...",
+        "\u03c2": "σ",
+        "\u01a9": "σ",
+        "\u03a3": "σ",
         **{chr(0xFF10 + digit): str(digit) for digit in range(10)},
     }
 )
@@ -27,7 +37,9 @@ def clean(text: str) -> str:
     """Dashes, minus signs, spaces, quotes and superscripts in one spelling each; no space at the ends or doubled."""
     if not text.isascii():
         if _RAISED.search(text):  # 10⁹ is a power, ¹⁴C is not
-            text = _RAISED.sub(lambda found: ("^" if found.start() and text[found.start() - 1].isdigit() else "") + found[0].translate(_SUPERSCRIPTS), text)
+            text = _RAISED.sub(
+                lambda found: ("^" if found.start() and text[found.start() - 1].isdigit() else "") + found[0].translate(_SUPERSCRIPTS), text
+            )
         text = text.translate(_SIGNS)
         if text[:1] == "–" and text[1:2].isdigit():  # a dash that opens a text can only be a sign
             text = "-" + text[1:]
@@ -35,4 +47,4 @@ def clean(text: str) -> str:
     if text[-1:] == "." and text[-2:-1].isdigit():
         text = text[:-1]  # a full stop behind a number ends a sentence
     lead = _LEAD.match(text) if text[:1] in "iodtyIODTY" else None
-    return text[lead.end():] if lead else text
+    return text[lead.end() :] if lead else text

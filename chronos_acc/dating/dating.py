@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """What a date text becomes: a Dating, with the words and rules that led to it."""
 
 from __future__ import annotations

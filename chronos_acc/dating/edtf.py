@@ -1,7 +1,9 @@
+# SPDX-License-Identifier: Apache-2.0
 """Reader of ISO 8601-2:2019 dates (EDTF), levels 0 to 2 complete, by the specification of the Library of Congress of 4 February 2019.
 
-Qualifiers (? ~ %) qualify and do not move bounds; `..` is an open end, an empty end of an interval is unknown; both come back as ±inf. Years are
-astronomical and proleptic Gregorian unless the list says Julian. Times of day and time zones are checked, and the date is kept to its day.
+Qualifiers (? ~ %) qualify and do not move bounds; `..` is an open end, an empty end of an interval is unknown; both come back as
+±inf. Years are astronomical and proleptic Gregorian unless the list says Julian. Times of day and time zones are checked, and the date
+is kept to its day.
 """
 
 from __future__ import annotations
@@ -24,13 +26,37 @@ _GENERAL = re.compile(r"([?~%]?)(-?)([0-9X]{4})([?~%]?)(?:-([?~%]?)([0-9X]{2})([
 _SHAPED = re.compile(r"[-0-9XYTZSE:.,/\[\]{}?~%+]+\Z")
 # months of each season code; a start after its end runs over the new year. 21-24 have no place and follow the list's hemisphere
 _SEASONS = {
-    25: (3, 5), 26: (6, 8), 27: (9, 11), 28: (12, 2), 29: (9, 11), 30: (12, 2), 31: (3, 5), 32: (6, 8),
-    33: (1, 3), 34: (4, 6), 35: (7, 9), 36: (10, 12), 37: (1, 4), 38: (5, 8), 39: (9, 12), 40: (1, 6), 41: (7, 12),
+    25: (3, 5),
+    26: (6, 8),
+    27: (9, 11),
+    28: (12, 2),
+    29: (9, 11),
+    30: (12, 2),
+    31: (3, 5),
+    32: (6, 8),
+    33: (1, 3),
+    34: (4, 6),
+    35: (7, 9),
+    36: (10, 12),
+    37: (1, 4),
+    38: (5, 8),
+    39: (9, 12),
+    40: (1, 6),
+    41: (7, 12),
 }
 _NAMES = {
     **dict(zip(range(21, 25), ("spring", "summer", "autumn", "winter"), strict=True)),
-    **dict(zip(range(25, 33), [f"{season} ({half})" for half in ("north", "south") for season in ("spring", "summer", "autumn", "winter")], strict=True)),
-    **{32 + quarter: f"quarter {quarter}" for quarter in range(1, 5)}, **{36 + third: f"third {third}" for third in range(1, 4)}, 40: "first half", 41: "second half",
+    **dict(
+        zip(
+            range(25, 33),
+            [f"{season} ({half})" for half in ("north", "south") for season in ("spring", "summer", "autumn", "winter")],
+            strict=True,
+        )
+    ),
+    **{32 + quarter: f"quarter {quarter}" for quarter in range(1, 5)},
+    **{36 + third: f"third {third}" for third in range(1, 4)},
+    40: "first half",
+    41: "second half",
 }
 FARTHEST_YEAR = 10**15
 
@@ -73,7 +99,11 @@ def _date(text: str, calendar: Calendar, hemisphere: str) -> Found | None:
         year, month, day = int(exact[1]), int(exact[2]), int(exact[3])
         if exact[1] == "-0000" or not 1 <= day <= days_in_month(year, month, calendar) or (exact[4] and not _TIME.match(exact[4])):
             return None
-        return Found(*day_bounds(year, month, day, calendar), f"the day {text[:text.find('T')] if exact[4] else text}" + (", without its time" if exact[4] else ""), "day")
+        return Found(
+            *day_bounds(year, month, day, calendar),
+            f"the day {text[: text.find('T')] if exact[4] else text}" + (", without its time" if exact[4] else ""),
+            "day",
+        )
     whole = _MONTH_ONLY.match(text)
     if whole:
         return None if whole[1] == "-0000" else Found(*month_bounds(int(whole[1]), int(whole[2]), calendar), f"the month {text}", "month")
@@ -133,7 +163,12 @@ def _general(text: str, found: re.Match[str], calendar: Calendar, hemisphere: st
         if day is not None or "X" in year:
             return None
         number = -int(year) if negative else int(year)
-        return Found(*season_bounds(number, int(month), hemisphere, calendar), f"{_NAMES[int(month)]} of {number} ({words})", "season", int(month) <= 24)
+        return Found(
+            *season_bounds(number, int(month), hemisphere, calendar),
+            f"{_NAMES[int(month)]} of {number} ({words})",
+            "season",
+            int(month) <= 24,
+        )
     months = [number for number in range(1, 13) if _fits(number, month)]
     days = None if day is None else [number for number in range(1, 32) if _fits(number, day)]
     if not months or days == []:
@@ -144,8 +179,26 @@ def _general(text: str, found: re.Match[str], calendar: Calendar, hemisphere: st
     if days is None:
         fitting = [number for number in ordered if _fits(abs(number), year)]
         return Found(month_bounds(fitting[0], months[0], calendar)[0], month_bounds(fitting[-1], months[-1], calendar)[1], words, "month")
-    start = next((bound for number in ordered if _fits(abs(number), year) for bound in [_edge(number, months, days, calendar, False)] if bound is not None), None)
-    end = next((bound for number in reversed(ordered) if _fits(abs(number), year) for bound in [_edge(number, months, days, calendar, True)] if bound is not None), None)
+    start = next(
+        (
+            bound
+            for number in ordered
+            if _fits(abs(number), year)
+            for bound in [_edge(number, months, days, calendar, False)]
+            if bound is not None
+        ),
+        None,
+    )
+    end = next(
+        (
+            bound
+            for number in reversed(ordered)
+            if _fits(abs(number), year)
+            for bound in [_edge(number, months, days, calendar, True)]
+            if bound is not None
+        ),
+        None,
+    )
     return None if start is None or end is None else Found(start, end, words, "day")
 
 
@@ -190,7 +243,9 @@ def _interval(text: str, calendar: Calendar, hemisphere: str) -> Found | None:
     seasons = bool((start and start.seasons) or (end and end.seasons))
     if earliest >= latest:
         return None
-    return Found(earliest, latest, f"from {start.words if start else names[left]} to {end.words if end else names[right]}", "range", seasons)
+    return Found(
+        earliest, latest, f"from {start.words if start else names[left]} to {end.words if end else names[right]}", "range", seasons
+    )
 
 
 def _set(text: str, calendar: Calendar, hemisphere: str) -> Found | None:

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Numbers as people write them: grouped, decimal, with powers of ten; exact to the last written digit."""
 
 from __future__ import annotations
@@ -55,15 +56,17 @@ def split_number(text: str, decimal: str = ".") -> tuple[Number, str] | None:
     bare = _BARE_POWER.match(text)
     if bare:
         power = int(bare[1])
-        return Number("", "1", power, power), text[bare.end():].lstrip()
+        return Number("", "1", power, power), text[bare.end() :].lstrip()
     found = (_POINT if decimal == "." else _COMMA).match(text)
     if not found:
         return None
     sign, whole, places, power_text = found.groups()
     if whole is None and places is None:
         return None
-    rest = text[found.end():]
-    if rest and (rest[0].isdigit() or (rest[0] in ".,'" and rest[1:2].isdigit())):  # "66,04", "1,23,456": the mark is not what the list says
+    rest = text[found.end() :]
+    if rest and (
+        rest[0].isdigit() or (rest[0] in ".,'" and rest[1:2].isdigit())
+    ):  # "66,04", "1,23,456": the mark is not what the list says
         return None
     power = int(re.split(r"[eE^*]|\*\*", power_text)[-1]) if power_text else 0
     digits = (whole or "0") if whole is None or whole.isdigit() else re.sub("[^0-9]", "", whole)

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Named periods: a table of names with bounds, the shipped one or a person's own CSV (name, earliest, latest, unit, source)."""
 
 from __future__ import annotations
@@ -62,7 +63,9 @@ def parse_periods(text: str, origin: str) -> Periods:
         if not row.name or not row.earliest or not row.latest:
             raise ListRefused(f"{where}: a period needs a name, an earliest and a latest bound")
         if row.unit and find_unit(row.unit) is None:
-            raise ListRefused(f"{where}: unit {row.unit!r} is not known; use one such as Ma, ka BP, BCE, or leave it empty for calendar years")
+            raise ListRefused(
+                f"{where}: unit {row.unit!r} is not known; use one such as Ma, ka BP, BCE, or leave it empty for calendar years"
+            )
         if key(row.name) in seen:
             raise ListRefused(f"{where}: {row.name!r} stands twice; keep one row a name")
         seen.add(key(row.name))
@@ -80,7 +83,7 @@ def read_periods(path: str | Path) -> Periods:
 
 @lru_cache(maxsize=1)
 def shipped_periods() -> Periods:
-    """The table shipped with the tool: eons, eras, periods and some epochs of the chronostratigraphic chart; version and source in each row."""
+    """The table shipped with the tool: eons, eras, periods and epochs of the chronostratigraphic chart; its version in each row."""
     package = Path(__file__).resolve().parent.parent
     for folder in (package / "_files" / "datasets", package.parent / "datasets"):
         if (folder / "periods.csv").is_file():

@@ -1,8 +1,9 @@
+# SPDX-License-Identifier: Apache-2.0
 """The rule for plain numbers, in one place: what `read` gives for a bare year or a number with a unit, in terms that SQL can repeat.
 
-A *plain* number is digits with an optional sign and an optional point and decimals: no grouping, no power of ten (PLAIN). With no unit it is a
-calendar year: whole years of at most seven digits (PLAIN_YEAR, a day in ISO basic form has eight) are [Y, Y + 1) with best Y + 0.5; decimals d are
-as written, ± 5·10^(−d−1). With a unit of UNITS that counts back, unsigned, n · 10^power years before its zero:
+A *plain* number is digits with an optional sign and an optional point and decimals: no grouping, no power of ten (PLAIN). With no
+unit it is a calendar year: whole years of at most seven digits (PLAIN_YEAR; a day in ISO basic form has eight) are [Y, Y + 1) with
+best Y + 0.5; decimals d are as written, ± 5·10^(−d−1). With a unit of UNITS that counts back, unsigned, n · 10^power years before its zero:
 
     p = power − d             with d decimals, else
     p = power + z             where z = trailing zeros, but `digits` leading digits count: z = max(0, min(trailing, length − digits))
@@ -10,8 +11,9 @@ as written, ± 5·10^(−d−1). With a unit of UNITS that counts back, unsigned
     half = CAST('5e' || (p − 1) AS DOUBLE)
     earliest = best − half, latest = best + half
 
-"length" leaves leading zeros out. The zero is the compile year Y as Y.0, 1950 or 2000. Whatever is not covered (PLAIN does not match, "-0", an
-era, radiocarbon, the compile year unknown, latest after the end of the compile year, beyond 1e15 years) is left to `read`: then `plain` gives None.
+"length" leaves leading zeros out. The zero is the compile year Y as Y.0, 1950 or 2000. Whatever is not covered (PLAIN does not match,
+"-0", an era, radiocarbon, the compile year unknown, latest after the end of the compile year, beyond 1e15 years) is left to `read`:
+then `plain` gives None.
 """
 
 from __future__ import annotations
@@ -39,7 +41,7 @@ _YEAR, _DECIMAL, _AGE, _MINUS_ZERO = map(re.compile, (PLAIN_YEAR, PLAIN_DECIMAL_
 
 
 def plain_unit(unit: str | None, settings: Settings) -> Unit | None:
-    """The unit that a number without its own takes: the row's, else the list's, else years before the compile year if the list counts ago."""
+    """The unit that a number without its own takes: the row's, else the list's, else years ago if the list counts ago."""
     word = unit or settings.unit or ("a" if settings.counted == "ago" else None)
     return find_unit(word) if word else None
 
@@ -71,7 +73,9 @@ def plain(number: str, unit: str | None, settings: Settings) -> tuple[float, flo
             return None
         whole, _, places = number.partition(".")
         digits = whole.lstrip("0")
-        zeros = 0 if places or settings.digits == "all" else max(0, min(len(digits) - len(digits.rstrip("0")), len(digits) - settings.digits))
+        zeros = (
+            0 if places or settings.digits == "all" else max(0, min(len(digits) - len(digits.rstrip("0")), len(digits) - settings.digits))
+        )
         best, half = zero - float(f"{number}e{back.power}"), float(f"5e{back.power + (-len(places) if places else zeros) - 1}")
         name = AGO_NAME if back.zero == "compiled" else BP_NAME
     if not -FARTHEST <= best - half <= best + half <= FARTHEST:

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Reading a text: every notation is tried, and a text with two different readings is refused with both named."""
 
 from __future__ import annotations
@@ -17,8 +18,12 @@ LONGEST = 200
 """Longer texts are prose, not dates."""
 
 _NO_UNIT_WORDS = re.compile(
-    r"\b(?:circa|ca?|approximately|approx|about|around|roughly|between|and|from|to|through|until|till|before|after|since|prior|post|ante|by|up|not|no|"
-    r"earlier|later|than|older|younger|sigma|sd|s\.d|probably|perhaps|possibly|ci|hpd)\b\.?|[0-9][eE][+-]?(?=[0-9])|[x×*] ?10(?=\^| \^|\*\*)|σ", re.IGNORECASE)
+    r"\b(?:circa|ca?|approximately|approx|about|around|roughly|between|and|from|to|through|until|till|before|after|since|prior|post|"
+    r"ante|by|up|not|no|earlier|later|than|older|younger|at|least|most|more|less|over|under|sigma|sd|s\.d|probably|perhaps|possibly|ci|hpd)"
+    r"\b\.?|[0-9][eE][+-]?(?=[0-9])|[x×*] ?10(?=\^| \^|\*\*)|σ"
+    r"|[+-] ?(?:[0-9][0-9.,']*)? ?/ ?(?=[+-])",  # the slash of +/- and of +0.3/-0.1
+    re.IGNORECASE,
+)
 _SHOULD_STAND = re.compile(r"[^\W\d_]|[/:\[\]{}]|\.\.|\A-?[0-9]{4}-[0-9]{2}(?:-[0-9]{2})?\Z|[0-9][.][0-9]+[.]")
 
 
@@ -40,8 +45,8 @@ def split_unit(text: str) -> str:
 def read(text: str, settings: Settings = Settings(), *, unit: str | None = None) -> Reading:
     """The dating of a text as compilers write it.
 
-    ``unit`` is that of the row; it stands behind a text that names none, before the list's own (``settings.unit``), and a list that counts "ago"
-    without a unit means years. Raises DateRefused, in one line: what was given, why not, what to do.
+    ``unit`` is that of the row; it stands behind a text that names none, before the list's own (``settings.unit``), and a list that
+    counts "ago" without a unit means years. Raises DateRefused, in one line: what was given, why not, what to do.
     """
     if not isinstance(text, str) or not text.strip():
         raise DateRefused("the date is empty; give a date, or leave the row out")
@@ -71,7 +76,13 @@ def _with_unit(text: str, settings: Settings, unit: str | None) -> str:
     return f"{plain} {word.strip()}" if word and takes_unit(plain) else plain
 
 
-_OF_ZERO = {"ce": era.NOTATION, "bce": era.NOTATION, "compiled": ago.NOTATION, "1950": before_present.NOTATION, "2000": before_present.NOTATION}
+_OF_ZERO = {
+    "ce": era.NOTATION,
+    "bce": era.NOTATION,
+    "compiled": ago.NOTATION,
+    "1950": before_present.NOTATION,
+    "2000": before_present.NOTATION,
+}
 _HIGHEST = max(notation.level for notation in NOTATIONS)
 _BELOW = {level: tuple(notation for notation in NOTATIONS if notation.level < level) for level in range(_HIGHEST + 1)}
 
@@ -87,19 +98,31 @@ def read_clean(text: str, settings: Settings) -> tuple[Notation, Span]:
 
 
 _HINTS = (
-    (re.compile(r"[0-9],[0-9]{1,2}(?![0-9])|[0-9],[0-9]{4}"), "a comma groups thousands and needs three digits behind it; set decimal = \",\" if it is the list's decimal mark"),
-    (re.compile(r"[0-9]\.[0-9]{3}\.[0-9]"), "a point is the decimal mark; set decimal = \",\" if points group thousands in this list"),
-    (re.compile(r"[0-9] ?years?\Z", re.IGNORECASE), "years alone may be a length of time; write \"years ago\", or the calendar year without a unit"),
+    (
+        re.compile(r"[0-9],[0-9]{1,2}(?![0-9])|[0-9],[0-9]{4}"),
+        'a comma groups thousands and needs three digits behind it; set decimal = "," if it is the list\'s decimal mark',
+    ),
+    (re.compile(r"[0-9]\.[0-9]{3}\.[0-9]"), 'a point is the decimal mark; set decimal = "," if points group thousands in this list'),
+    (
+        re.compile(r"[0-9] ?years?\Z", re.IGNORECASE),
+        'years alone may be a length of time; write "years ago", or the calendar year without a unit',
+    ),
     (re.compile(r"\bturn of|\bbeginning|\bend of|\bstart of", re.IGNORECASE), "say early, mid or late, or give the years"),
     (re.compile(r"\A[^0-9]*\Z"), "it has no number and is no name of the period table; give a date"),
-    (re.compile(r"\b(?:unknown|open|uuuu)\b|[0-9]u", re.IGNORECASE), "that is an older draft's form; write X for an unspecified digit, .. for an open end, nothing for an unknown one"),
+    (
+        re.compile(r"\b(?:unknown|open|uuuu)\b|[0-9]u", re.IGNORECASE),
+        "that is an older draft's form; write X for an unspecified digit, .. for an open end, nothing for an unknown one",
+    ),
     (re.compile(r"[0-9]\.\.[0-9]|[\[{]"), "write a set without spaces as [1667,1668] (one of) or {1667..1672} (all of)"),
 )
 
 
 def _hint(text: str) -> str:
     """What to do with a text that no notation reads."""
-    return next((advice for pattern, advice in _HINTS if pattern.search(text)), "write it as 1985-04-12, 450–400 BCE, 66.0 ± 0.05 Ma or the like, or give earliest and latest years")
+    return next(
+        (advice for pattern, advice in _HINTS if pattern.search(text)),
+        "write it as 1985-04-12, 450–400 BCE, 66.0 ± 0.05 Ma or the like, or give earliest and latest years",
+    )
 
 
 def _try(text: str, settings: Settings, below: int) -> tuple[Notation, Span] | None:

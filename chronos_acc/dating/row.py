@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Reading a row: the date's text with the columns that a list may keep beside it."""
 
 from __future__ import annotations
@@ -16,6 +17,7 @@ from .span import Span, finish, flat, middle
 from .units import find_unit
 
 _RADIOCARBON = re.compile(r"(?<![A-Za-z0-9])(?:14[- ]?C|C[- ]?14)(?![A-Za-z0-9])|¹⁴C|radiocarbon|\brcy?bp\b|\buncal", re.IGNORECASE)
+_NOTHING = (None,) * 5
 _HAS_ERROR = re.compile(r"±|\+ ?/? ?-|\([0-9]+\)|[0-9] ?%")
 
 
@@ -37,14 +39,19 @@ def read_row(
 ) -> Reading:
     """The dating of a row. Bounds in columns beat ``plus_minus``, which beats the text; two that contradict are refused (DateRefused).
 
-    ``unit`` and the bounds are read as the date would be, a bound as the end of a range. ``sigma`` is how many standard deviations ``plus_minus``
-    (or the text's own ±) states. Bounds with a date are hard (uniform) when the date's own span holds their middle; else they are the 95 % points
-    around the date (normal, two-piece). ``others`` are the row's other cells: a mention of radiocarbon there becomes a remark.
+    ``unit`` and the bounds are read as the date would be, a bound as the end of a range. ``sigma`` is how many standard deviations
+    ``plus_minus`` (or the text's own ±) states. Bounds with a date are hard (uniform) when the date's own span holds their middle; else
+    they are the 95 % points around the date (normal, two-piece). ``others`` are the row's other cells: a mention of radiocarbon there
+    becomes a remark.
     """
+    if isinstance(date, str) and date and not others and (unit, sigma, plus_minus, earliest, latest) == _NOTHING:
+        return read(date, settings)  # most rows of most lists
     text, low, high, error = _cell(date), _cell(earliest), _cell(latest), _cell(plus_minus)
     unit = _cell(unit)
     if unit is not None and find_unit(unit) is None:
-        raise DateRefused(f"the unit {shown(unit)} is not known; use one such as a, ka, Ma, Ga, BP, b2k, BCE, CE, or leave it empty for calendar years")
+        raise DateRefused(
+            f"the unit {shown(unit)} is not known; use one such as a, ka, Ma, Ga, BP, b2k, BCE, CE, or leave it empty for calendar years"
+        )
     counted = _cell(sigma)
     if counted is not None:
         settings = replace(settings, sigma=float(_amount("sigma", counted, settings)), given=settings.given | {"sigma"})
@@ -60,7 +67,9 @@ def read_row(
     if reading is None:
         raise DateRefused("the date is empty; give a date, or an earliest and a latest year, or leave the row out")
     if reading.notation != "radiocarbon" and any(mentions_radiocarbon(cell) for cell in others if cell):
-        reading = replace(reading, remarks=(*reading.remarks, "another column of the row speaks of radiocarbon; check that the date is calibrated"))
+        reading = replace(
+            reading, remarks=(*reading.remarks, "another column of the row speaks of radiocarbon; check that the date is calibrated")
+        )
     return reading
 
 
@@ -101,10 +110,15 @@ def _with_error(text: str, error: str, unit: str | None, settings: Settings) -> 
         return read(f"{text} ± {amount}", settings, unit=unit)
     except DateRefused as refusal:
         reason = str(refusal).partition(" ± ")[2].partition("' ")[2]
-        raise DateRefused(f"{shown(text)} with plus_minus {error}: {reason if 'no notation' not in reason else 'an error needs a single number as its date; give bounds'}") from None
+        raise DateRefused(
+            f"{shown(text)} with plus_minus {error}: "
+            f"{reason if 'no notation' not in reason else 'an error needs a single number as its date; give bounds'}"
+        ) from None
 
 
-def _with_bounds(reading: Reading | None, text: str | None, low: str | None, high: str | None, unit: str | None, settings: Settings) -> Reading:
+def _with_bounds(
+    reading: Reading | None, text: str | None, low: str | None, high: str | None, unit: str | None, settings: Settings
+) -> Reading:
     """Bounds of columns of their own; one that is missing is the text's."""
     first, last = (None if bound is None else _end(name, bound, unit, settings) for name, bound in (("earliest", low), ("latest", high)))
     if (first is None or last is None) and reading is None:
@@ -113,18 +127,27 @@ def _with_bounds(reading: Reading | None, text: str | None, low: str | None, hig
     start = first.low if first else reading.dating.earliest if reading else 0.0
     end = last.high if last else reading.dating.latest if reading else 0.0
     if start > end:
-        raise DateRefused(f"earliest {low if low is not None else text} lies after latest {high if high is not None else text}; an age's earlier bound is the larger number")
+        raise DateRefused(
+            f"earliest {low if low is not None else text} lies after latest {high if high is not None else text}; "
+            "an age's earlier bound is the larger number"
+        )
     assumed = bool((first and first.assumed) or (last and last.assumed))
     remarks = tuple(remark for one in (first, last) if one for remark in one.remarks)
     span = flat("range", start, end, f"bounds {start:.12g} and {end:.12g} from the row's columns", (), remarks)
     if reading is not None:
         own = reading.dating
         if own.earliest > end or own.latest < start:
-            raise DateRefused(f"{shown(text or '')} lies outside the row's bounds {start:.12g} to {end:.12g}; check the date and the bounds")
+            raise DateRefused(
+                f"{shown(text or '')} lies outside the row's bounds {start:.12g} to {end:.12g}; check the date and the bounds"
+            )
         centre = middle(start, end)
         if not own.earliest <= centre <= own.latest:
             best = min(max(own.best, start), end)
-            span = span._replace(best=best, shape="normal", words=f"{reading.words}, with bounds {start:.12g} and {end:.12g} from the row's columns as 95 % points")
+            span = span._replace(
+                best=best,
+                shape="normal",
+                words=f"{reading.words}, with bounds {start:.12g} and {end:.12g} from the row's columns as 95 % points",
+            )
     return finish(span._replace(assumed=assumed), "columns" if reading is None else reading.notation.partition(", from ")[0], settings)
 
 

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """What a notation makes of a text before the list's limits and compile year are applied."""
 
 from __future__ import annotations
@@ -19,9 +20,9 @@ FARTHEST = 1e15
 class Span(NamedTuple):
     """Bounds of a text in decimal years, open ends as ±inf, and what composites need to know of it.
 
-    ``low`` and ``high`` are the bounds as the end of a range, where a number is taken as written; ``last`` is one unit of the last significant
-    digit in years (0: not a number); ``scale`` the years of one written unit and ``back`` whether it counts back (for plus-minus and > <);
-    ``assumed`` says that an age was counted from an assumed year; ``uses`` names the settings the bounds rest on.
+    ``low`` and ``high`` are the bounds as the end of a range, where a number is taken as written; ``last`` is one unit of the last
+    significant digit in years (0: not a number); ``scale`` the years of one written unit and ``back`` whether it counts back (for
+    plus-minus and > <); ``assumed`` says that an age was counted from an assumed year; ``uses`` names the settings the bounds rest on.
     """
 
     kind: Kind
@@ -55,7 +56,7 @@ def middle(earliest: float, latest: float) -> float:
 
 
 def close(span: Span, settings: Settings) -> tuple[Span, list[str]]:
-    """Open ends closed by the list's limits: at the young end else the compile year's end, at either else by ``reach``; refused otherwise."""
+    """Open ends closed by the list's limits, else the compile year's end at the young end, else ``reach``; refused otherwise."""
     earliest, latest, remarks = span.earliest, span.latest, list(span.remarks)
     if earliest == -inf:
         if settings.earliest_limit is not None:
@@ -74,10 +75,14 @@ def close(span: Span, settings: Settings) -> tuple[Span, list[str]]:
         elif end is not None:
             latest, by = end, "the compile year"
         else:
-            raise DateRefused("has no late end; give the compile year, set latest_limit (or reach) in the list's sheet, or give the latest year")
+            raise DateRefused(
+                "has no late end; give the compile year, set latest_limit (or reach) in the list's sheet, or give the latest year"
+            )
         remarks.append(f"the open late end was closed at {latest:.12g} by {by}")
     if earliest >= latest:
-        raise DateRefused(f"would end at {latest:.12g} and begin at {earliest:.12g}, by the limits of the list; check the limits and the compile year")
+        raise DateRefused(
+            f"would end at {latest:.12g} and begin at {earliest:.12g}, by the limits of the list; check the limits and the compile year"
+        )
     return span._replace(earliest=earliest, best=middle(earliest, latest), latest=latest), remarks
 
 
@@ -86,18 +91,27 @@ def finish(span: Span, notation: str, settings: Settings) -> Reading:
     remarks: list[str] | tuple[str, ...] = span.remarks
     if span.earliest == -inf or span.latest == inf:
         span, remarks = close(span, settings)
-    kind, earliest, best, latest, words, _, _, shape = span[:8]
+    _, earliest, best, latest, words, _, _, shape = span[:8]
     if not -FARTHEST <= earliest <= latest <= FARTHEST:
         raise DateRefused(f"lies beyond {FARTHEST:.0e} years, where single years cannot be told apart; give a nearer date")
     if span.assumed:
         if (latest - earliest) / 2 < MATTERS_BELOW:
-            raise DateRefused("counts back from the year the list was compiled, which is not given; give it (compiled), or count from 1950 (BP) or 2000 (b2k)")
+            raise DateRefused(
+                "counts back from the year the list was compiled, which is not given; give it (compiled), or count from 1950 (BP) "
+                "or 2000 (b2k)"
+            )
         notation += f", from {ASSUMED_YEAR:.0f}"
-        remarks = [*remarks, f"counted from {ASSUMED_YEAR:.0f}, since the compile year is not given and half the width is {MATTERS_BELOW:,.0f} years or more"]
+        remarks = [
+            *remarks,
+            f"counted from {ASSUMED_YEAR:.0f}, since the compile year is not given "
+            f"and half the width is {MATTERS_BELOW:,.0f} years or more",
+        ]
     if settings.compiled is not None:
         end = settings.compiled + 1.0
-        if best > end or earliest >= end and latest > end:
-            raise DateRefused(f"lies after the end of {settings.compiled}, the year the list was compiled; check the date and the compile year")
+        if best > end or (earliest >= end and latest > end):
+            raise DateRefused(
+                f"lies after the end of {settings.compiled}, the year the list was compiled; check the date and the compile year"
+            )
         if latest > end:
             latest, best = end, best if shape == "normal" else middle(earliest, end)
             remarks = [*remarks, f"the late bound was cut at the end of the compile year {settings.compiled}"]

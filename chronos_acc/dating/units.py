@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Units that count years back, and eras: one table of their spellings, for texts, unit columns and sheets alike."""
 
 from __future__ import annotations
@@ -37,15 +38,50 @@ MATTERS_BELOW = 1000.0
 """Half-width in years below which an age without a compile year is refused."""
 
 # 1 a is one year, ka 10**3, Ma 10**6, Ga 10**9: Holden et al. 2011, Pure Appl. Chem. 83:1159-1162
-_SHORT = {0: ("a", "yr", "yrs", "ya"), 3: ("ka", "kyr", "kyrs", "kya", "ky"), 6: ("ma", "myr", "myrs", "mya", "my"), 9: ("ga", "gyr", "gyrs", "gya", "gy", "bya", "byr")}
+_SHORT = {
+    0: ("a", "yr", "yrs", "ya"),
+    3: ("ka", "kyr", "kyrs", "kya", "ky"),
+    6: ("ma", "myr", "myrs", "mya", "my"),
+    9: ("ga", "gyr", "gyrs", "gya", "gy", "bya", "byr"),
+}
 _LONG = {0: ("",), 3: ("thousand", "k"), 6: ("million", "mio", "mln"), 9: ("billion", "bn")}
 _NAMES = {0: "a", 3: "ka", 6: "Ma", 9: "Ga"}
 _YEARS = ("years", "year", "yr", "yrs")
 _AGO = ("ago", "before now", "before today", "old")
-_BP = ("bp", "b p", "before present", "cal bp", "calbp", "bp cal", "bp (cal)", "cal before present", "calibrated bp", "bp calibrated", "calibrated before present")
+_BP = (
+    "bp",
+    "b p",
+    "before present",
+    "cal bp",
+    "calbp",
+    "bp cal",
+    "bp (cal)",
+    "cal before present",
+    "calibrated bp",
+    "bp calibrated",
+    "calibrated before present",
+)
 _B2K = ("b2k", "before 2000", "before 2k")
-_RAW = ("14c bp", "c14 bp", "14c", "rcybp", "rcbp", "c-14 bp", "bp uncal", "uncal bp", "bp (uncal)", "bp uncalibrated", "uncalibrated bp", "radiocarbon bp",
-        "radiocarbon before present", "radiocarbon", "14c before present", "bp (14c)", "bp 14c", "conventional bp")
+_RAW = (
+    "14c bp",
+    "c14 bp",
+    "14c",
+    "rcybp",
+    "rcbp",
+    "c-14 bp",
+    "bp uncal",
+    "uncal bp",
+    "bp (uncal)",
+    "bp uncalibrated",
+    "uncalibrated bp",
+    "radiocarbon bp",
+    "radiocarbon before present",
+    "radiocarbon",
+    "14c before present",
+    "bp (14c)",
+    "bp 14c",
+    "conventional bp",
+)
 _CE = ("ce", "ad", "c e", "a d", "cal ce", "cal ad", "ce cal", "ad cal")
 _BCE = ("bce", "bc", "b c e", "b c", "cal bce", "cal bc", "bce cal", "bc cal")
 
@@ -59,7 +95,11 @@ def _table() -> dict[str, Unit]:
         table.setdefault(unit.name, unit)  # the usual spelling is found at once
 
     for power, name in _NAMES.items():
-        compiled, bp, b2k = Unit(name, power, "compiled"), Unit(f"{name} BP" if power else "BP", power, "1950"), Unit(f"{name} b2k" if power else "b2k", power, "2000")
+        compiled, bp, b2k = (
+            Unit(name, power, "compiled"),
+            Unit(f"{name} BP" if power else "BP", power, "1950"),
+            Unit(f"{name} b2k" if power else "b2k", power, "2000"),
+        )
         raw = Unit(f"{name} 14C BP" if power else "14C BP", power, "radiocarbon")
         counted = [f"{long} {years}" for long, years in product(_LONG[power], _YEARS)]
         put(compiled, *_SHORT[power], *(f"{unit} {ago}" for unit, ago in product([*_SHORT[power], *counted], _AGO)))
@@ -75,7 +115,10 @@ def _table() -> dict[str, Unit]:
             put(zero, *(f"cal {unit} b2k" for unit in _SHORT[power] if zero is b2k))
         for zero_name, eras in (("CE", _CE), ("BCE", _BCE)):
             if power:
-                put(Unit(f"{_LONG[power][0]} {zero_name}", power, "ce" if zero_name == "CE" else "bce"), *(f"{long} {era}" for long, era in product(_LONG[power], eras)))
+                put(
+                    Unit(f"{_LONG[power][0]} {zero_name}", power, "ce" if zero_name == "CE" else "bce"),
+                    *(f"{long} {era}" for long, era in product(_LONG[power], eras)),
+                )
             else:
                 put(Unit(zero_name, 0, "ce" if zero_name == "CE" else "bce"), *eras)
     for joined in ("ybp", "yrbp"):

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """A dating as a text that reads back to the same bounds, and a reading in words."""
 
 from __future__ import annotations
@@ -14,8 +15,8 @@ _LIKE_A_MONTH = re.compile(r"(?:[1-9]|1[0-2])\.[0-9]{4}\Z")  # 4.1985 is refused
 def write(dating: Dating) -> str:
     """A text that `read` reads to the same earliest and latest (with default settings and no compile year).
 
-    A calendar year or a day where the dating is one, else the bounds in full: "1840.5 to 1860.5", or "1850.5 (95 %: 1840.5 to 1860.5)" when it is
-    normal or has no width.
+    A calendar year or a day where the dating is one, else the bounds in full: "1840.5 to 1860.5", or "1850.5 (95 %: 1840.5 to 1860.5)"
+    when it is normal or has no width.
     """
     low, best, high = dating.earliest, dating.best, dating.latest
     if dating.shape == "uniform" and low < high:

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Calendar facts: leap years, day numbers, the Julian calendar, decimal years, eras, reference years, centuries."""
 
 from __future__ import annotations
@@ -11,7 +12,10 @@ from chronos_acc.dating.calendar import day_bounds, exists, from_julian_day, is_
 from chronos_acc.errors import DateRefused
 
 
-@pytest.mark.parametrize(("year", "leap"), [(1900, False), (2000, True), (1600, True), (1700, False), (0, True), (-4, True), (-3, False), (-100, False), (-400, True)])
+@pytest.mark.parametrize(
+    ("year", "leap"),
+    [(1900, False), (2000, True), (1600, True), (1700, False), (0, True), (-4, True), (-3, False), (-100, False), (-400, True)],
+)
 def test_leap_years(year: int, leap: bool) -> None:
     """ISO 8601-1, proleptic Gregorian; 0000-02-29 and -0004-02-29 exist."""
     assert is_leap(year) is leap
@@ -21,7 +25,13 @@ def test_leap_years(year: int, leap: bool) -> None:
 # Meeus, Astronomical Algorithms; Explanatory Supplement (from memory)
 @pytest.mark.parametrize(
     ("number", "gregorian", "julian"),
-    [(2451545, (2000, 1, 1), None), (2299161, (1582, 10, 15), None), (2299160, (1582, 10, 14), (1582, 10, 4)), (0, (-4713, 11, 24), (-4712, 1, 1)), (2440588, (1970, 1, 1), None)],
+    [
+        (2451545, (2000, 1, 1), None),
+        (2299161, (1582, 10, 15), None),
+        (2299160, (1582, 10, 14), (1582, 10, 4)),
+        (0, (-4713, 11, 24), (-4712, 1, 1)),
+        (2440588, (1970, 1, 1), None),
+    ],
 )
 def test_julian_day_numbers(number: int, gregorian: tuple[int, int, int], julian: tuple[int, int, int] | None) -> None:
     assert julian_day(*gregorian) == number
@@ -30,7 +40,9 @@ def test_julian_day_numbers(number: int, gregorian: tuple[int, int, int], julian
         assert julian_day(*julian, calendar="julian") == number
 
 
-@pytest.mark.parametrize(("year", "days"), [(1582, 10), (1699, 10), (1752, 11), (1850, 12), (1918, 13), (2026, 13), (250, 0), (1, -2), (-43, -2)])
+@pytest.mark.parametrize(
+    ("year", "days"), [(1582, 10), (1699, 10), (1752, 11), (1850, 12), (1918, 13), (2026, 13), (250, 0), (1, -2), (-43, -2)]
+)
 def test_the_two_calendars_part_by(year: int, days: int) -> None:
     """Meeus; Explanatory Supplement (from memory); on 1 June."""
     assert julian_day(year, 6, 1, "julian") - julian_day(year, 6, 1) == days
@@ -38,8 +50,14 @@ def test_the_two_calendars_part_by(year: int, days: int) -> None:
 
 @pytest.mark.parametrize(
     ("text", "gregorian"),
-    [("-0043-03-15", (-43, 3, 13)), ("1917-10-25", (1917, 11, 7)), ("1752-09-03", (1752, 9, 14)), ("15 March 44 BCE", (-43, 3, 13)), ("October 25, 1917", (1917, 11, 7)),
-     ("1700-02-29", (1700, 3, 11))],
+    [
+        ("-0043-03-15", (-43, 3, 13)),
+        ("1917-10-25", (1917, 11, 7)),
+        ("1752-09-03", (1752, 9, 14)),
+        ("15 March 44 BCE", (-43, 3, 13)),
+        ("October 25, 1917", (1917, 11, 7)),
+        ("1700-02-29", (1700, 3, 11)),
+    ],
 )
 def test_a_list_in_the_julian_calendar(text: str, gregorian: tuple[int, int, int]) -> None:
     dating = read(text, Settings(calendar="julian")).dating
@@ -86,7 +104,9 @@ def test_eras() -> None:
     assert read("10000 BCE").dating.best == -9998.5
 
 
-@pytest.mark.parametrize(("text", "best"), [("0 BP", 1950), ("1949 BP", 1), ("1950 BP", 0), ("11650 BP", -9700), ("11700 b2k", -9700), ("11650 cal BP", -9700)])
+@pytest.mark.parametrize(
+    ("text", "best"), [("0 BP", 1950), ("1949 BP", 1), ("1950 BP", 0), ("11650 BP", -9700), ("11700 b2k", -9700), ("11650 cal BP", -9700)]
+)
 def test_reference_years(text: str, best: float) -> None:
     """BP: Stuiver & Polach 1977, Radiocarbon 19:355-363. b2k: Rasmussen et al. 2006; Walker et al. 2009 (base of the Holocene, from memory)."""
     assert read(text).dating.best == best
@@ -96,10 +116,23 @@ def test_reference_years(text: str, best: float) -> None:
 @pytest.mark.parametrize(
     ("text", "first", "last"),
     [
-        ("1st century", 1, 100), ("19th century", 1801, 1900), ("20th century", 1901, 2000), ("21st century CE", 2001, 2100), ("18XX", 1800, 1899), ("1st century BCE", -99, 0),
-        ("5th century BCE", -499, -400), ("1st millennium", 1, 1000), ("2nd millennium", 1001, 2000), ("3rd millennium CE", 2001, 3000), ("1st millennium BCE", -999, 0),
-        ("3rd millennium BCE", -2999, -2000), ("4th millennium BC", -3999, -3000), ("10th millennium BCE", -9999, -9000),
-        ("early 19th century", 1801, 1833), ("mid-19th century", 1834, 1867), ("late 19th century", 1868, 1900),  # by thirds, one convention among several
+        ("1st century", 1, 100),
+        ("19th century", 1801, 1900),
+        ("20th century", 1901, 2000),
+        ("21st century CE", 2001, 2100),
+        ("18XX", 1800, 1899),
+        ("1st century BCE", -99, 0),
+        ("5th century BCE", -499, -400),
+        ("1st millennium", 1, 1000),
+        ("2nd millennium", 1001, 2000),
+        ("3rd millennium CE", 2001, 3000),
+        ("1st millennium BCE", -999, 0),
+        ("3rd millennium BCE", -2999, -2000),
+        ("4th millennium BC", -3999, -3000),
+        ("10th millennium BCE", -9999, -9000),
+        ("early 19th century", 1801, 1833),
+        ("mid-19th century", 1834, 1867),
+        ("late 19th century", 1868, 1900),  # by thirds, one convention among several
     ],
 )
 def test_centuries_and_millennia(text: str, first: int, last: int) -> None:
@@ -127,7 +160,18 @@ def test_a_boundary_with_its_error() -> None:
 # with their errors, from the 2013 edition of the chronostratigraphic chart (Cohen et al. 2013, Episodes 36:199-204)
 @pytest.mark.parametrize(
     ("age", "error"),
-    [("298.9", "0.15"), ("358.9", "0.4"), ("419.2", "3.2"), ("443.4", "1.5"), ("485.4", "1.9"), ("541.0", "1.0"), ("252.17", "0.06"), ("201.3", "0.2"), ("445.2", "1.4"), ("72.1", "0.2")],
+    [
+        ("298.9", "0.15"),
+        ("358.9", "0.4"),
+        ("419.2", "3.2"),
+        ("443.4", "1.5"),
+        ("485.4", "1.9"),
+        ("541.0", "1.0"),
+        ("252.17", "0.06"),
+        ("201.3", "0.2"),
+        ("445.2", "1.4"),
+        ("72.1", "0.2"),
+    ],
 )
 def test_boundaries_of_the_2013_chart(age: str, error: str) -> None:
     dating = read(f"{age} ± {error} Ma", Settings(compiled=2013)).dating

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """EDTF / ISO 8601-2:2019, levels 0 to 2. Source of rows and rules: Library of Congress specification of 4 February 2019 (loc.gov/standards/datetime).
 
 Bounds are the widest readings without padding for ? ~ %; seasons are Northern by convention; 2001-24 runs over the new year.

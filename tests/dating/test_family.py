@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The family of notations, the period table, and the words of a reading."""
 
 from __future__ import annotations
@@ -45,14 +46,41 @@ def test_the_shipped_periods() -> None:
     table = shipped_periods()
     assert len(table.rows) > 60
     assert all("v2024/12" in row.source and row.unit == "Ma" for row in table.rows)
-    for name, base in (("Quaternary", "2.58"), ("Neogene", "23.04"), ("Paleogene", "66"), ("Cretaceous", "143.1"), ("Jurassic", "201.4"), ("Triassic", "251.902"), ("Permian", "298.9"),
-                       ("Carboniferous", "358.86"), ("Devonian", "419.62"), ("Silurian", "443.1"), ("Cambrian", "538.8"), ("Holocene", "0.0117")):
+    for name, base in (
+        ("Quaternary", "2.58"),
+        ("Neogene", "23.04"),
+        ("Paleogene", "66"),
+        ("Cretaceous", "143.1"),
+        ("Jurassic", "201.4"),
+        ("Triassic", "251.902"),
+        ("Permian", "298.9"),
+        ("Carboniferous", "358.86"),
+        ("Devonian", "419.62"),
+        ("Silurian", "443.1"),
+        ("Cambrian", "538.8"),
+        ("Holocene", "0.0117"),
+    ):
         row = table.find(name)
         assert row is not None
         assert row.earliest == base
-    chain = ["Cambrian", "Ordovician", "Silurian", "Devonian", "Carboniferous", "Permian", "Triassic", "Jurassic", "Cretaceous", "Paleogene", "Neogene", "Quaternary"]
+    chain = [
+        "Cambrian",
+        "Ordovician",
+        "Silurian",
+        "Devonian",
+        "Carboniferous",
+        "Permian",
+        "Triassic",
+        "Jurassic",
+        "Cretaceous",
+        "Paleogene",
+        "Neogene",
+        "Quaternary",
+    ]
     rows = [table.find(name) for name in chain]
-    assert all(first is not None and second is not None and first.latest == second.earliest for first, second in zip(rows, rows[1:], strict=False))
+    assert all(
+        first is not None and second is not None and first.latest == second.earliest for first, second in zip(rows, rows[1:], strict=False)
+    )
     for row in table.rows:
         reading = read(row.name, Settings(compiled=2024))
         assert reading.notation == "period"
@@ -70,7 +98,10 @@ def test_a_part_of_a_period_by_the_table_or_by_thirds() -> None:
 
 def test_a_table_of_ones_own(tmp_path: Path) -> None:
     file = tmp_path / "periods.csv"
-    file.write_text("name,earliest,latest,unit,source\nIron Age,800,43,BCE,invented for the test\nMIS 5,130,71,ka,invented\nLong Peace,1815,1914,,invented\n3rd dynasty,2686,2613,BCE,invented\n", encoding="utf-8")
+    file.write_text(
+        "name,earliest,latest,unit,source\nIron Age,800,43,BCE,invented for the test\nMIS 5,130,71,ka,invented\nLong Peace,1815,1914,,invented\n3rd dynasty,2686,2613,BCE,invented\n",
+        encoding="utf-8",
+    )
     settings = Settings(compiled=2024, periods=read_periods(file))
     assert (read("Iron Age", settings).dating.earliest, read("the iron age", settings).dating.latest) == (-799, -41)
     assert read("MIS 5", settings).dating.earliest == 2024 - 130e3
@@ -84,8 +115,11 @@ def test_a_table_of_ones_own(tmp_path: Path) -> None:
 @pytest.mark.parametrize(
     ("text", "says"),
     [
-        ("name,earliest\nx,1\n", "latest, unit, source is missing"), ("name,earliest,latest,unit,source\n,1,2,,s\n", "needs a name"), ("name,earliest,latest,unit,source\nx,1,2,furlong,s\n", "is not known"),
-        ("name,earliest,latest,unit,source\nx,1,2,,s\nX,1,2,,s\n", "stands twice"), ("", "is missing"),
+        ("name,earliest\nx,1\n", "latest, unit, source is missing"),
+        ("name,earliest,latest,unit,source\n,1,2,,s\n", "needs a name"),
+        ("name,earliest,latest,unit,source\nx,1,2,furlong,s\n", "is not known"),
+        ("name,earliest,latest,unit,source\nx,1,2,,s\nX,1,2,,s\n", "stands twice"),
+        ("", "is missing"),
     ],
 )
 def test_tables_that_are_refused(text: str, says: str) -> None:
@@ -104,7 +138,16 @@ def test_a_row_that_cannot_be_read() -> None:
 
 @pytest.mark.parametrize(
     ("text", "written"),
-    [("1985", "1985"), ("-500", "-500"), ("1961-04-12", "1961-04-12"), ("12 April 1961", "1961-04-12"), ("-0043-03-15", "-0043-03-15"), ("c. 1850", "1840.5 to 1860.5"), ("450–400 BCE", "-449.0 to -398.0"), ("44 BCE", "-43")],
+    [
+        ("1985", "1985"),
+        ("-500", "-500"),
+        ("1961-04-12", "1961-04-12"),
+        ("12 April 1961", "1961-04-12"),
+        ("-0043-03-15", "-0043-03-15"),
+        ("c. 1850", "1840.5 to 1860.5"),
+        ("450–400 BCE", "-449.0 to -398.0"),
+        ("44 BCE", "-43"),
+    ],
 )
 def test_writing(text: str, written: str) -> None:
     assert write(read(text).dating) == written

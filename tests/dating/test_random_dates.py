@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Random texts: nothing but a refusal is ever raised, a text that is read prints back to the same bounds, and short cuts change nothing."""
 
 from __future__ import annotations
@@ -17,14 +18,112 @@ from .test_trade import REFUSED, UNIFORM
 
 QUIET = {"deadline": None, "suppress_health_check": list(HealthCheck), "database": None}
 PIECES = [
-    *"0123456789", "19", "1850", "44", "-0500", "12", "66.0", "1,500", "X", "XX", " ", " ", " ", "-", "–", "−", "/", "..", ".", ",", "(", ")", "[", "]", "{", "}", "?", "~", "%", "±", "+", "+/-", "S", "Y", "E", "T", "Z",
-    "c. ", "ca ", "about ", "probably ", "BCE", " CE", "AD ", " BC", "Ma", " ka", " BP", " cal BP", " b2k", " years ago", " million", "14C ", "st", "th", " century", " millennium", "early ", "late ", "mid-", "first half of ",
-    "s", "'s", " to ", "between ", " and ", "from ", "before ", "after ", "until ", "since ", "April", " May ", "Dec. ", "spring ", "Jurassic", "2σ", "(2σ)", "×10^", "e9", "95%", " or later", "present", "\u00a0", "\x00", "é", "٣",
+    *"0123456789",
+    "19",
+    "1850",
+    "44",
+    "-0500",
+    "12",
+    "66.0",
+    "1,500",
+    "X",
+    "XX",
+    " ",
+    " ",
+    " ",
+    "-",
+    "–",
+    "−",
+    "/",
+    "..",
+    ".",
+    ",",
+    "(",
+    ")",
+    "[",
+    "]",
+    "{",
+    "}",
+    "?",
+    "~",
+    "%",
+    "±",
+    "+",
+    "+/-",
+    "S",
+    "Y",
+    "E",
+    "T",
+    "Z",
+    "c. ",
+    "ca ",
+    "about ",
+    "probably ",
+    "BCE",
+    " CE",
+    "AD ",
+    " BC",
+    "Ma",
+    " ka",
+    " BP",
+    " cal BP",
+    " b2k",
+    " years ago",
+    " million",
+    "14C ",
+    "st",
+    "th",
+    " century",
+    " millennium",
+    "early ",
+    "late ",
+    "mid-",
+    "first half of ",
+    "s",
+    "'s",
+    " to ",
+    "between ",
+    " and ",
+    "from ",
+    "before ",
+    "after ",
+    "until ",
+    "since ",
+    "April",
+    " May ",
+    "Dec. ",
+    "spring ",
+    "Jurassic",
+    "2σ",
+    "(2σ)",
+    "×10^",
+    "e9",
+    "95%",
+    " or later",
+    "present",
+    "\u00a0",
+    "\x00",
+    "é",
+    "٣",
 ]
 TEXTS = [row[0] for row in UNIFORM] + [row[0] for row in REFUSED if row[0].strip()]
 SETTINGS = [
-    Settings(), Settings(compiled=2024, earliest_limit=-1.4e10), Settings(compiled=1999, counted="ago", unit="ka", decimal=","), Settings(compiled=2024, calendar="julian", day_order="mdy", hundreds="century", radiocarbon="cal",
-                                                                                                                                        backwards="swap", parts="halves", seasons="south", circa=10.0, digits="all", reach=100.0),
+    Settings(),
+    Settings(compiled=2024, earliest_limit=-1.4e10),
+    Settings(compiled=1999, counted="ago", unit="ka", decimal=","),
+    Settings(
+        compiled=2024,
+        calendar="julian",
+        day_order="mdy",
+        hundreds="century",
+        radiocarbon="cal",
+        backwards="swap",
+        parts="halves",
+        seasons="south",
+        circa=10.0,
+        digits="all",
+        reach=100.0,
+    ),
 ]
 
 
@@ -54,8 +153,12 @@ def test_pieces_of_dates(pieces: list[str], how: Settings) -> None:
 def damage_text(text: str, place: int, damage: str, piece: str) -> str:
     place %= max(len(text), 1)
     return {
-        "cut": text[:place], "drop": text[:place] + text[place + 1 :], "double": text[:place] + text[place : place + 1] + text[place:], "swap": text[:place] + text[place : place + 2][::-1] + text[place + 2 :],
-        "put": text[:place] + piece + text[place:], "join": f"{text}–{piece}",
+        "cut": text[:place],
+        "drop": text[:place] + text[place + 1 :],
+        "double": text[:place] + text[place : place + 1] + text[place:],
+        "swap": text[:place] + text[place : place + 2][::-1] + text[place + 2 :],
+        "put": text[:place] + piece + text[place:],
+        "join": f"{text}–{piece}",
     }[damage]
 
 
@@ -103,9 +206,19 @@ def test_any_dating_prints_and_reads_back(best: float, before: float, after: flo
 
 @settings(max_examples=600, **QUIET)
 @given(
-    st.tuples(st.sampled_from(["", "", "+", "-"]), st.integers(0, 10**8), st.sampled_from(["", "", ".0", ".5", ".25", ".500", ".000125"])).map(lambda parts: "".join(map(str, parts))),
+    st.tuples(
+        st.sampled_from(["", "", "+", "-"]), st.integers(0, 10**8), st.sampled_from(["", "", ".0", ".5", ".25", ".500", ".000125"])
+    ).map(lambda parts: "".join(map(str, parts))),
     st.sampled_from([None, "Ma", "ka", "Ga", "a", "years ago", "BP", "cal ka BP", "b2k", "BCE", "furlong"]),
-    st.sampled_from([Settings(), Settings(compiled=2024), Settings(compiled=1999, counted="ago"), Settings(compiled=1999, unit="Ma", digits="all"), Settings(digits=1, compiled=2024)]),
+    st.sampled_from(
+        [
+            Settings(),
+            Settings(compiled=2024),
+            Settings(compiled=1999, counted="ago"),
+            Settings(compiled=1999, unit="Ma", digits="all"),
+            Settings(digits=1, compiled=2024),
+        ]
+    ),
 )
 def test_the_plain_rule_is_what_read_does(number: str, unit: str | None, how: Settings) -> None:
     quick = plain(number, unit, how)
@@ -119,9 +232,29 @@ def test_the_plain_rule_is_what_read_does(number: str, unit: str | None, how: Se
 
 def test_the_plain_rule_covers_plain_numbers() -> None:
     how = Settings(compiled=2024)
-    for number, unit in (("1985", None), ("-500", None), ("0", None), ("1985.25", None), ("66.0", "Ma"), ("100", "Ma"), ("12000", "BP"), ("11.7", "ka b2k")):
+    for number, unit in (
+        ("1985", None),
+        ("-500", None),
+        ("0", None),
+        ("1985.25", None),
+        ("66.0", "Ma"),
+        ("100", "Ma"),
+        ("12000", "BP"),
+        ("11.7", "ka b2k"),
+    ):
         assert plain(number, unit, how) is not None
-    for number, unit in (("-0", None), ("19850412", None), ("2026", None), ("0", "Ma"), ("44", "BCE"), ("4500", "14C BP"), ("1,500", None), ("1e9", None), ("-66", "Ma"), ("66", "furlong")):
+    for number, unit in (
+        ("-0", None),
+        ("19850412", None),
+        ("2026", None),
+        ("0", "Ma"),
+        ("44", "BCE"),
+        ("4500", "14C BP"),
+        ("1,500", None),
+        ("1e9", None),
+        ("-66", "Ma"),
+        ("66", "furlong"),
+    ):
         assert plain(number, unit, how) is None
     assert plain("66", "Ma", Settings()) is None
 

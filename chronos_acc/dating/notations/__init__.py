@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The family of notations. Each is tried on every text; two that read a text to different bounds make it ambiguous."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Ages counted back from the compile year: 66.0 Ma, 12 ka, 3.2 Gyr, 500 years ago, 2.1×10^9 years ago."""
 
 from __future__ import annotations
@@ -21,7 +22,10 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
         return None
     unit = find_unit(found[1])
     if _LETTERED.match(text):
-        raise DateRefused(f"is ambiguous: {text[:4]} years ago, or the year {text[:4]} with a letter as in a list of references; write \"{text[:4]} a\" or the year alone")
+        raise DateRefused(
+            f"is ambiguous: {text[:4]} years ago, or the year {text[:4]} with a letter as in a list of references; "
+            f'write "{text[:4]} a" or the year alone'
+        )
     return age(found[0], unit, settings) if unit is not None and unit.zero == "compiled" else None
 
 
@@ -41,8 +45,23 @@ def age(number: Number, unit: Unit, settings: Settings) -> Span:
     last = number.significant(settings.digits) + unit.power
     half, best, scale = float(f"5e{last - 1}"), zero - number.value(unit.power), float(f"1e{unit.power}")
     words = f"{number.digits}{f'e{number.power}' if number.power else ''} {unit.name}, ± {half / scale:.6g}, counted back from {since}"
-    return Span("age", best - half, best, best + half, words, best, best, "uniform", float(f"1e{last}"), scale, True, assumed,
-                ("digits",) if number.whole and number.digits[-1] == "0" else ())
+    return Span(
+        "age",
+        best - half,
+        best,
+        best + half,
+        words,
+        best,
+        best,
+        "uniform",
+        float(f"1e{last}"),
+        scale,
+        True,
+        assumed,
+        ("digits",) if number.whole and number.digits[-1] == "0" else (),
+    )
 
 
-NOTATION = Notation("ago", "66.0 Ma", "an age in a, ka, Ma, Ga or in words, counted back from the compile year", read, marks=frozenset("aAyY"))
+NOTATION = Notation(
+    "ago", "66.0 Ma", "an age in a, ka, Ma, Ga or in words, counted back from the compile year", read, marks=frozenset("aAyY")
+)

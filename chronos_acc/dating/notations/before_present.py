@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Ages with a fixed zero: BP and cal BP from 1950, b2k from 2000; with ka, Ma or in words too."""
 
 from __future__ import annotations

@@ -1,4 +1,8 @@
-"""Centuries and millennia: 19th century, fifth century BCE, XIX c., 3rd millennium BC. The nth century is 100(n − 1) + 1 to 100n, as no year 0 was counted."""
+# SPDX-License-Identifier: Apache-2.0
+"""Centuries and millennia: 19th century, fifth century BCE, XIX c., 3rd millennium BC.
+
+The nth century is 100(n − 1) + 1 to 100n, as no year 0 was counted.
+"""
 
 from __future__ import annotations
 
@@ -10,14 +14,66 @@ from ..span import Span, flat
 from ..units import find_unit
 from .notation import Notation, Part
 
-_WORDS = ("first", "second", "third", "fourth", "fifth", "sixth", "seventh", "eighth", "ninth", "tenth", "eleventh", "twelfth", "thirteenth", "fourteenth",
-          "fifteenth", "sixteenth", "seventeenth", "eighteenth", "nineteenth", "twentieth", "twenty-first")
+_WORDS = (
+    "first",
+    "second",
+    "third",
+    "fourth",
+    "fifth",
+    "sixth",
+    "seventh",
+    "eighth",
+    "ninth",
+    "tenth",
+    "eleventh",
+    "twelfth",
+    "thirteenth",
+    "fourteenth",
+    "fifteenth",
+    "sixteenth",
+    "seventeenth",
+    "eighteenth",
+    "nineteenth",
+    "twentieth",
+    "twenty-first",
+)
 ORDINALS = {word: place + 1 for place, word in enumerate(_WORDS)}
-_ROMAN = ("i", "ii", "iii", "iv", "v", "vi", "vii", "viii", "ix", "x", "xi", "xii", "xiii", "xiv", "xv", "xvi", "xvii", "xviii", "xix", "xx", "xxi")
+_ROMAN = (
+    "i",
+    "ii",
+    "iii",
+    "iv",
+    "v",
+    "vi",
+    "vii",
+    "viii",
+    "ix",
+    "x",
+    "xi",
+    "xii",
+    "xiii",
+    "xiv",
+    "xv",
+    "xvi",
+    "xvii",
+    "xviii",
+    "xix",
+    "xx",
+    "xxi",
+)
 _ROMANS = {numeral: place + 1 for place, numeral in enumerate(_ROMAN)}
-ORDINAL = r"(?:[0-9]{1,4}(?:st|nd|rd|th)|" + "|".join(sorted(_WORDS, key=len, reverse=True)) + "|(?:" + "|".join(sorted(_ROMAN, key=len, reverse=True)) + ")(?:st|nd|rd|th|(?![a-z])))"
+ORDINAL = (
+    r"(?:[0-9]{1,4}(?:st|nd|rd|th)|"
+    + "|".join(sorted(_WORDS, key=len, reverse=True))
+    + "|(?:"
+    + "|".join(sorted(_ROMAN, key=len, reverse=True))
+    + ")(?:st|nd|rd|th|(?![a-z])))"
+)
 _CENTURY = re.compile(
-    rf"(?:the )?(?P<ordinal>{ORDINAL})[ -]?(?P<unit>centur(?:y|ies)|cent\.?|c\.?|millenni(?:um|a)|mill?\.?)(?:,? ?(?P<era>bce?|ce|ad|b\.c\.e?\.?|c\.e\.|a\.d\.))?\Z", re.IGNORECASE)
+    rf"(?:the )?(?P<ordinal>{ORDINAL})[ -]?(?P<unit>centur(?:y|ies)|cent\.?|c\.?|millenni(?:um|a)|mill?\.?)"
+    r"(?:,? ?(?P<era>bce?|ce|ad|b\.c\.e?\.?|c\.e\.|a\.d\.))?\Z",
+    re.IGNORECASE,
+)
 
 
 def read(text: str, settings: Settings, part: Part) -> Span | None:

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """A best date with its 95 % interval: 2.1 (95% CI 1.9–2.4) Ma, 1850.5 (95 %: 1840.0 to 1862.0), 12.3 ka (95% HPD 13.1-11.9 ka)."""
 
 from __future__ import annotations
@@ -11,8 +12,12 @@ from ..span import Span
 from .notation import Notation, Part
 
 _FORM = re.compile(
-    r"(?P<best>[^(\[]*[0-9][^(\[]*?) ?[(\[] ?(?P<share>[0-9.]+) ?% ?(?:ci|c\.i\.|hpd|hdi|cri|confidence interval|credible interval|interval|range)?[:=,]? ?"
-    r"(?P<low>[+-]?[0-9][0-9.,' ]*?(?:e[+-]?[0-9]+)?) ?(?:to|–|-|,) ?(?P<high>[+-]?[0-9][0-9.,']*(?:e[+-]?[0-9]+)?)(?: ?(?P<own>[^\d\])][^\])]*))?[)\]] ?(?P<tail>.*)\Z", re.IGNORECASE)
+    r"(?P<best>[^(\[]*[0-9][^(\[]*?) ?[(\[] ?(?P<share>[0-9.]+) ?% ?"
+    r"(?:ci|c\.i\.|hpd|hdi|cri|confidence interval|credible interval|interval|range)?[:=,]? ?"
+    r"(?P<low>[+-]?[0-9][0-9.,' ]*?(?:e[+-]?[0-9]+)?) ?(?:to|–|-|,) ?(?P<high>[+-]?[0-9][0-9.,']*(?:e[+-]?[0-9]+)?)"
+    r"(?: ?(?P<own>[^\d\])][^\])]*))?[)\]] ?(?P<tail>.*)\Z",
+    re.IGNORECASE,
+)
 _NUMBER = re.compile(r"[+-]?[0-9.,' ]+(?:e[+-]?[0-9]+)?\Z")
 
 
@@ -40,8 +45,18 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if not first.low <= best.best <= last.high:
         raise DateRefused("has a best date outside its own interval; check the three numbers")
     words = f"{best.words.split(', ±')[0]}, normal, 95 % between {first.low:.12g} and {last.high:.12g}"
-    return best._replace(kind="error", earliest=first.low, latest=last.high, low=first.low, high=last.high, words=words, shape="normal", last=0.0, uses=(),
-                         assumed=best.assumed or first.assumed or last.assumed)
+    return best._replace(
+        kind="error",
+        earliest=first.low,
+        latest=last.high,
+        low=first.low,
+        high=last.high,
+        words=words,
+        shape="normal",
+        last=0.0,
+        uses=(),
+        assumed=best.assumed or first.assumed or last.assumed,
+    )
 
 
 NOTATION = Notation("interval", "2.1 (95% CI 2.4–1.9) Ma", "a best date with its 95 % interval", read, level=2, marks=frozenset("%"))

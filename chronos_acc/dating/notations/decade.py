@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Decades: 1850s, the 1850's, 1850s BCE; a round hundred (1500s) by the list's rule."""
 
 from __future__ import annotations
@@ -27,11 +28,19 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if number % 100 == 0:
         if settings.hundreds is None:
             (a, b), (c, d) = _years(number, 100, before), _years(number, 10, before)
-            raise DateRefused(f"is ambiguous: the century {a}–{b} or the decade {c}–{d}; set hundreds in the list's sheet, or write the years out")
+            raise DateRefused(
+                f"is ambiguous: the century {a}–{b} or the decade {c}–{d}; set hundreds in the list's sheet, or write the years out"
+            )
         length = 100 if settings.hundreds == "century" else 10
     low = float(1 - (number + length - 1)) if before else float(number)
     first, last = _years(number, length, before)
-    return flat("decade" if length == 10 else "century", low, low + length, f"the {'decade' if length == 10 else 'century'} {name}, {first} to {last}", uses)
+    return flat(
+        "decade" if length == 10 else "century",
+        low,
+        low + length,
+        f"the {'decade' if length == 10 else 'century'} {name}, {first} to {last}",
+        uses,
+    )
 
 
 def _years(number: int, length: int, before: bool) -> tuple[str, str]:

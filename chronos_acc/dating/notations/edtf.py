@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """ISO 8601-2:2019 (EDTF), levels 0 to 2: 1985-04-12, 1964/2008, 19XX, 1984~, Y-17E7, [1667,1668], 2001-21."""
 
 from __future__ import annotations
@@ -41,8 +42,10 @@ def _why(shaped: re.Match[str]) -> str:
     if shaped[1] == "-0000":
         return "has a year 0 with a minus sign; year 0 (1 BCE) is written 0000"
     if shaped[3] is None:
-        return (f"has no month {shaped[2]}: after a year of four digits and a hyphen two digits are a month (01-12) or season (21-41); "
-                "a range of years needs a dash or \"to\"")
+        return (
+            f"has no month {shaped[2]}: after a year of four digits and a hyphen two digits are a month (01-12) or season (21-41); "
+            'a range of years needs a dash or "to"'
+        )
     return "is no day of the calendar; check the month and the day"
 
 

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Years of an era: 44 BCE, 753 B.C., AD 79, 1054 CE, 10,000 BCE, 2.5 million BCE."""
 
 from __future__ import annotations
@@ -17,7 +18,7 @@ _BEFORE = re.compile(r"(?:cal\.? )?(a\.?\s?d\.?|c\.?e\.?|b\.?\s?c\.?(?:\s?e\.?)?
 def read(text: str, settings: Settings, part: Part) -> Span | None:
     """A number with BCE, BC, CE or AD on either side."""
     prefix = _BEFORE.match(text) if text[0] in "aAbBcC" else None
-    found = split_number(text[prefix.end():] if prefix else text, settings.decimal)
+    found = split_number(text[prefix.end() :] if prefix else text, settings.decimal)
     if found is None or (prefix is None) == (not found[1]):
         return None
     unit = find_unit(prefix[1] if prefix else found[1])

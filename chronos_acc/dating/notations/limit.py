@@ -1,4 +1,8 @@
-"""One bound only: before 1850, after 66 Ma, until 1914, since 1945, no later than 300 BCE, > 40 ka, 1850 or later. The open end takes the list's limit."""
+# SPDX-License-Identifier: Apache-2.0
+"""One bound only: before 1850, after 66 Ma, until 1914, since 1945, no later than 300 BCE, > 40 ka, 1850 or later.
+
+The open end takes the list's limit.
+"""
 
 from __future__ import annotations
 
@@ -16,7 +20,9 @@ _WORDS = {
     "since": ("since", "from", "starting in", "no earlier than", "not earlier than", "not before", "terminus post quem", "tpq"),
 }
 _MEANING = {word: meaning for meaning, words in _WORDS.items() for word in words}
-_PREFIX = re.compile(r"(" + "|".join(sorted(map(re.escape, _MEANING), key=len, reverse=True)) + r")\b[: ] ?(?=\S)|(<=|>=|<|>) ?(?=\S)", re.IGNORECASE)
+_PREFIX = re.compile(
+    r"(" + "|".join(sorted(map(re.escape, _MEANING), key=len, reverse=True)) + r")\b[: ] ?(?=\S)|(<=|>=|<|>) ?(?=\S)", re.IGNORECASE
+)
 _SUFFIX = re.compile(r",? (?:(?:or|and) (earlier|before|older|later|after|younger)|(onwards?))\Z", re.IGNORECASE)
 _OF_AGES = re.compile(r"(at least|more than|over|less than|under|at most) (?=\S)", re.IGNORECASE)
 _AGES = {"at least": "until", "more than": "before", "over": "before", "less than": "after", "under": "after", "at most": "since"}
@@ -28,11 +34,11 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     """Before and after leave the named time out, until and since take it in."""
     ages = _OF_AGES.match(text)
     if ages:
-        inner = part(text[ages.end():], NOTATION.level)
+        inner = part(text[ages.end() :], NOTATION.level)
         return None if inner is None or not inner.back else _limited(_AGES[ages[1].lower()], inner)
     found = _PREFIX.match(text)
     if found:
-        inner = part(text[found.end():], NOTATION.level)
+        inner = part(text[found.end() :], NOTATION.level)
     else:
         found = _SUFFIX.search(text)
         inner = part(text[: found.start()], NOTATION.level) if found else None
@@ -48,7 +54,20 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
 def _limited(meaning: str, inner: Span) -> Span:
     low, high = {"before": (-inf, inner.low), "until": (-inf, inner.high), "after": (inner.high, inf), "since": (inner.low, inf)}[meaning]
     uses = tuple(name for name in inner.uses if name != "digits" or inner.kind == "circa")
-    return Span("limit", low, high if low == -inf else low, high, f"{meaning} {inner.words.split(', ±')[0]}", low, high, assumed=inner.assumed, uses=uses, remarks=inner.remarks)
+    return Span(
+        "limit",
+        low,
+        high if low == -inf else low,
+        high,
+        f"{meaning} {inner.words.split(', ±')[0]}",
+        low,
+        high,
+        assumed=inner.assumed,
+        uses=uses,
+        remarks=inner.remarks,
+    )
 
 
-NOTATION = Notation("limit", "before 1850", "a date with one bound; the other is the list's limit", read, level=4, marks=frozenset("<>eEoOuUiIbBaA"))
+NOTATION = Notation(
+    "limit", "before 1850", "a date with one bound; the other is the list's limit", read, level=4, marks=frozenset("<>eEoOuUiIbBaA")
+)

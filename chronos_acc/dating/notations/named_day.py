@@ -1,4 +1,5 @@
-"""Days, months and seasons by name: 12 April 1961, April 12th, 1961, Apr. 1961, 1961 April 12, 15 March 44 BCE, spring of 1848, 25 October 1917 O.S."""
+# SPDX-License-Identifier: Apache-2.0
+"""Days, months, seasons and quarters by name: 12 April 1961, April 12th, 1961, Apr. 1961, 15 March 44 BCE, spring of 1848, Q3 1969."""
 
 from __future__ import annotations
 
@@ -71,7 +72,9 @@ def _year(found: re.Match[str]) -> int:
     era = find_unit(found["era"] or found["before"] or "") if found["era"] or found["before"] else None
     if era is None:
         if len(found["year"]) <= 2:
-            raise DateRefused(f"has no certain year: {found['year']} may be a day or a year without its century; write the year in full, or with its era")
+            raise DateRefused(
+                f"has no certain year: {found['year']} may be a day or a year without its century; write the year in full, or with its era"
+            )
         return year
     if year <= 0 or found["year"].startswith("-") or (found["era"] and found["before"]):
         raise DateRefused(f"gives a year {found['year']} with an era; eras count from 1 up, without a sign")
@@ -96,7 +99,9 @@ def _uses(year: float, style: str) -> tuple[str, ...]:
     return ("calendar",) if year < _GREGORIAN_STARTS and not style else ()
 
 
-def day_span(year: int, month: int, day: int, calendar: Literal["gregorian", "julian"], uses: tuple[str, ...] = (), weekday: str | None = None) -> Span:
+def day_span(
+    year: int, month: int, day: int, calendar: Literal["gregorian", "julian"], uses: tuple[str, ...] = (), weekday: str | None = None
+) -> Span:
     """The span of a day that must exist in the calendar, and fall on its weekday if one is named."""
     name = f"{day} {_FULL[month - 1].capitalize()} {year}" if 1 <= month <= 12 else f"day {day} of month {month}"
     if not exists(year, month, day, calendar):
@@ -104,7 +109,10 @@ def day_span(year: int, month: int, day: int, calendar: Literal["gregorian", "ju
     if weekday:
         really = _WEEKDAYS[julian_day(year, month, day, calendar) % 7]
         if not really.startswith(weekday[:3].lower()):
-            raise DateRefused(f"names a weekday that does not fit: {name}{_in(calendar)} was a {really.capitalize()}; check the date or leave the weekday out")
+            raise DateRefused(
+                f"names a weekday that does not fit: {name}{_in(calendar)} was a {really.capitalize()}; "
+                "check the date or leave the weekday out"
+            )
     return flat("day", *day_bounds(year, month, day, calendar), f"the day {name}{_in(calendar)}", uses)
 
 

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """The shape of a member of the family of notations."""
 
 from __future__ import annotations
@@ -17,10 +18,11 @@ Part = Callable[[str, int], "Span | None"]
 class Notation:
     """One way of writing dates.
 
-    ``read(text, settings, part)`` gives a Span, None when the text is not of this notation, or raises DateRefused when it is and says something
-    impossible (the reason reads on from the text: "names a year 0 …"). ``level`` orders composition: a notation that is made of others
-    hands their texts to ``part`` with its own level, and only notations below it answer. A text of this notation has one of the characters in
-    ``marks`` at least (none: it is always asked), so that the others need not be asked (reading a million texts in seconds rests on this).
+    ``read(text, settings, part)`` gives a Span, None when the text is not of this notation, or raises DateRefused when it is and says
+    something impossible (the reason reads on from the text: "names a year 0 …"). ``level`` orders composition: a notation that is made
+    of others hands their texts to ``part`` with its own level, and only notations below it answer. A text of this notation has one of
+    the characters in ``marks`` at least (none: it is always asked), so that the others need not be asked: reading a million texts in
+    seconds rests on this.
     """
 
     name: str

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Days in numbers with slashes, points or hyphens: 03/04/1848 by the list's day_order, 13.4.1848, 1848/4/3, 04/1848."""
 
 from __future__ import annotations
@@ -34,7 +35,9 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if found[2] == "-" and (long[0] or not long[2]):
         return None  # a year first with hyphens is ISO 8601's alone
     if not any(long):
-        raise DateRefused(f"has a year of two digits and no certain order: {_list(_two_digit(numbers))}; write the year in full and the month by name")
+        raise DateRefused(
+            f"has a year of two digits and no certain order: {_list(_two_digit(numbers))}; write the year in full and the month by name"
+        )
     readings = _readings(numbers, long, settings)
     if settings.day_order and settings.day_order in readings:
         readings = {settings.day_order: readings[settings.day_order]}
@@ -61,8 +64,11 @@ def _readings(numbers: tuple[str, ...], long: list[bool], settings: Settings) ->
 
 
 def _two_digit(numbers: tuple[str, ...]) -> list[str]:
-    return [f"day {numbers[d]}, month {numbers[m]}, year ..{numbers[y].zfill(2)} ({order})" for order, (y, m, d) in _ORDERS.items()
-            if 1 <= int(numbers[m]) <= 12 and 1 <= int(numbers[d]) <= 31]
+    return [
+        f"day {numbers[d]}, month {numbers[m]}, year ..{numbers[y].zfill(2)} ({order})"
+        for order, (y, m, d) in _ORDERS.items()
+        if 1 <= int(numbers[m]) <= 12 and 1 <= int(numbers[d]) <= 31
+    ]
 
 
 def _list(readings: list[str]) -> str:
@@ -78,7 +84,9 @@ def _refuse_split(year: str, tail: str) -> None:
     month = f", or month {int(tail)} of {int(year)} ({int(year):04d}-{int(tail):02d})" if 1 <= int(tail) <= 12 else ""
     dual = f", or {int(year)} Old Style, which is {full} New Style" if int(full) == int(year) + 1 else ""
     if not month and not dual:
-        raise DateRefused(f"has a slash, which joins whole dates in ISO 8601; write the years {int(year)} to {int(full)} as {int(year)}–{full}")
+        raise DateRefused(
+            f"has a slash, which joins whole dates in ISO 8601; write the years {int(year)} to {int(full)} as {int(year)}–{full}"
+        )
     raise DateRefused(f"is ambiguous: the years {int(year)} to {int(full)} ({int(year)}–{full}){month}{dual}; write one of them out")
 
 

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Parts of a longer time: early 19th century, mid-1850s, late Cretaceous, first half of the 5th century BCE, third quarter of 1848."""
 
 from __future__ import annotations
@@ -11,7 +12,8 @@ from .notation import Notation, Part
 
 _EARLY = re.compile(r"(?:the |in )?(early|mid|middle|late)(?:[ -]+)(?:part of )?(?:in )?(?:the )?(?=\S)", re.IGNORECASE)
 _NTH = re.compile(
-    r"(?:the )?(first|second|third|fourth|last|1st|2nd|3rd|4th|final)[ -](half|third|quarter)(?: of|,)?(?: the)? (?=\S)", re.IGNORECASE)
+    r"(?:the )?(first|second|third|fourth|last|1st|2nd|3rd|4th|final)[ -](half|third|quarter)(?: of|,)?(?: the)? (?=\S)", re.IGNORECASE
+)
 _PLACES = {"first": 0, "1st": 0, "second": 1, "2nd": 1, "third": 2, "3rd": 2, "fourth": 3, "4th": 3}
 _PIECES = {"half": 2, "third": 3, "quarter": 4}
 _NAMES = {"early": "early part", "mid": "middle part", "middle": "middle part", "late": "late part"}
@@ -36,7 +38,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
         if place >= pieces:
             return None
         share, uses = (place / pieces, (place + 1) / pieces), ()
-    whole = part(text[found.end():], NOTATION.level)
+    whole = part(text[found.end() :], NOTATION.level)
     if whole is None or whole.kind not in _WHOLES or whole.kind == "day" or (whole.kind == "year" and whole.latest - whole.earliest != 1):
         return None
     if whole.kind == "period" and (settings.periods or shipped_periods()).find(text):
@@ -55,4 +57,11 @@ def cut(low: float, high: float, share: tuple[float, float]) -> tuple[float, flo
     return low + first, high if share[1] == 1.0 else low + last
 
 
-NOTATION = Notation("part", "early 19th century", "early, mid or late, or a half, third or quarter, of a longer time", read, level=1, marks=frozenset("ldrLDR"))
+NOTATION = Notation(
+    "part",
+    "early 19th century",
+    "early, mid or late, or a half, third or quarter, of a longer time",
+    read,
+    level=1,
+    marks=frozenset("ldrLDR"),
+)

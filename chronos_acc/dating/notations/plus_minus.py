@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """Dates with an error: 66.0 ± 0.05 Ma, 1628 ± 5 BCE, 4567.3 Ma ± 160 ka (2σ), 251.902(24) Ma, 66.0 +0.3/-0.1 Ma, 12 ka ± 5 %."""
 
 from __future__ import annotations
@@ -14,8 +15,12 @@ from ..units import find_unit
 from .notation import Notation, Part
 
 _SIGMA = re.compile(
-    r" ?[(\[,]? ?(?:at |with )?(?:(?P<n>[0-9](?:\.[0-9]+)?)[ -]?(?:σ|sigmas?\b|s\.?d\.?(?![a-z])|s\.?e\.?(?![a-z])|s(?![a-z])|standard deviations?)|(?P<share>68|95)(?:\.[0-9]+)? ?%(?: ?(?:ci|confidence|level|c\.i\.))*)(?: errors?| level)? ?[)\]]?(?= |\Z)",
-    re.IGNORECASE)
+    r" ?[(\[,]? ?(?:at |with )?(?:"
+    r"(?P<n>[0-9](?:\.[0-9]+)?)[ -]?(?:σ|sigmas?\b|s\.?d\.?(?![a-z])|s\.?e\.?(?![a-z])|s(?![a-z])|standard deviations?)"
+    r"|(?P<share>68|95)(?:\.[0-9]+)? ?%(?: ?(?:ci|confidence|level|c\.i\.))*"
+    r")(?: errors?| level)? ?[)\]]?(?= |\Z)",
+    re.IGNORECASE,
+)
 _SIGMA_MARKS = frozenset("σsS%")
 _ERROR = r"([0-9][0-9.,']*|[.,][0-9]+)"
 _BOTH = re.compile(rf"(.*?[^ (]) ?(?:±|\+ ?/ ?-|\+-) ?{_ERROR} ?(%)? ?([^\d%±+()][^()]*)?\Z")
@@ -42,7 +47,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     stated = _SIGMA.search(text) if not _SIGMA_MARKS.isdisjoint(text) else None
     if stated:
         sigma = float(stated["n"]) if stated["n"] else (Z975 if stated["share"] == "95" else 1.0)
-        text = f"{text[:stated.start()]} {text[stated.end():]}".strip()
+        text = f"{text[: stated.start()]} {text[stated.end() :]}".strip()
     error = _split(text)
     if error is None:
         return None
@@ -52,7 +57,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if not readings:
         return None
     if len({(span.earliest, span.latest) for span in readings}) > 1:
-        raise DateRefused(f"is ambiguous: {' or '.join(span.words for span in readings)}; write \"years ago\" or an era")
+        raise DateRefused(f'is ambiguous: {" or ".join(span.words for span in readings)}; write "years ago" or an era')
     return readings[0]
 
 
@@ -99,8 +104,17 @@ def _normal(span: Span, error: _Error, scale: float, sigma: float | None, settin
     if span.back:
         words += f", counted back{span.words.partition(', counted back')[2]}"
     earliest, latest = span.best - early * Z975 / counted, span.best + late * Z975 / counted
-    return span._replace(kind="error", earliest=earliest, latest=latest, words=words, low=earliest, high=latest, shape="normal", last=0.0,
-                         uses=("sigma",) if sigma is None else ())
+    return span._replace(
+        kind="error",
+        earliest=earliest,
+        latest=latest,
+        words=words,
+        low=earliest,
+        high=latest,
+        shape="normal",
+        last=0.0,
+        uses=("sigma",) if sigma is None else (),
+    )
 
 
 def _size(amount: str, error: _Error, span: Span, settings: Settings) -> float:
@@ -108,7 +122,9 @@ def _size(amount: str, error: _Error, span: Span, settings: Settings) -> float:
     head = split_number(error.head, settings.decimal)
     found = split_number(amount, settings.decimal)
     if found is None or found[1]:
-        raise DateRefused(f"has an error {amount!r} that is no number; the decimal mark of this list is {settings.decimal!r} (setting decimal)")
+        raise DateRefused(
+            f"has an error {amount!r} that is no number; the decimal mark of this list is {settings.decimal!r} (setting decimal)"
+        )
     size: Number = found[0]
     if error.form == "percent":
         if head is None or not span.back:
@@ -119,4 +135,11 @@ def _size(amount: str, error: _Error, span: Span, settings: Settings) -> float:
     return size.value()
 
 
-NOTATION = Notation("plus-minus", "66.0 ± 0.05 Ma", "a date with its error: ±, +/-, asymmetric, or of the last digits in brackets", read, level=2, marks=frozenset("±+)"))
+NOTATION = Notation(
+    "plus-minus",
+    "66.0 ± 0.05 Ma",
+    "a date with its error: ±, +/-, asymmetric, or of the last digits in brackets",
+    read,
+    level=2,
+    marks=frozenset("±+)"),
+)

@@ -1,4 +1,8 @@
-"""Ranges: 450–400 BCE, 12–9 ka, 50 BCE–20 CE, between 1914 and 1918, from May to July 1848, 5th–4th century BCE, 1914–18. Ends are taken as written."""
+# SPDX-License-Identifier: Apache-2.0
+"""Ranges: 450–400 BCE, 12–9 ka, 50 BCE–20 CE, between 1914 and 1918, from May to July 1848, 5th–4th century BCE, 1914–18.
+
+Ends are taken as written, without rounding.
+"""
 
 from __future__ import annotations
 
@@ -44,7 +48,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
         if found is None:
             continue
         if span is not None and (span.earliest, span.latest) != (found.earliest, found.latest):
-            raise DateRefused(f"is ambiguous: {span.words} or {found.words}; use \"to\" between the two dates")
+            raise DateRefused(f'is ambiguous: {span.words} or {found.words}; use "to" between the two dates')
         span = found
     return span
 
@@ -70,7 +74,10 @@ def _splits(text: str) -> list[tuple[str, str, bool]]:
     if tight:
         unit = find_unit(tight["tail"])
         if unit is None or not unit.back:
-            raise DateRefused(f"has a hyphen between four digits and {len(tight[2])}, which is ISO 8601's year and month alone; use a dash or \"to\" for a range")
+            raise DateRefused(
+                f"has a hyphen between four digits and {len(tight[2])}, which is ISO 8601's year and month alone; "
+                'use a dash or "to" for a range'
+            )
     if _DAY_MONTH_YEAR.match(text):
         return []
     return [(text[: found.start()], text[found.end() :], False) for found in list(_HYPHEN.finditer(text))[:8]]
@@ -79,17 +86,17 @@ def _splits(text: str) -> list[tuple[str, str, bool]]:
 def _tail(text: str, settings: Settings) -> str:
     """What follows the first number, ordinal or word of a date: its unit, era, month and year, or noun."""
     circa = CIRCA.match(text)
-    rest = text[circa.end():] if circa else text
+    rest = text[circa.end() :] if circa else text
     early = _QUALIFIER.match(rest)
-    rest = rest[early.end():] if early else rest
+    rest = rest[early.end() :] if early else rest
     token = _TOKEN.match(rest)
     if token:
-        return rest[token.end():].strip()
+        return rest[token.end() :].strip()
     number = MANTISSA[settings.decimal].match(rest)
     if number and number.end():
-        return rest[number.end():].strip()
+        return rest[number.end() :].strip()
     word = _WORD.match(rest)
-    return rest[word.end():].strip() if word else ""
+    return rest[word.end() :].strip() if word else ""
 
 
 def _between(left: str, right: str, may_shorten: bool, settings: Settings, part: Part) -> Span | None:
@@ -98,7 +105,13 @@ def _between(left: str, right: str, may_shorten: bool, settings: Settings, part:
     number_right = split_number(right, settings.decimal)
     if right.lower() in _NOW:
         start = part(left, NOTATION.level)
-        return None if start is None else flat("range", start.low, inf, f"from {_brief(start)} to the present", start.uses, start.remarks)._replace(assumed=start.assumed)
+        return (
+            None
+            if start is None
+            else flat("range", start.low, inf, f"from {_brief(start)} to the present", start.uses, start.remarks)._replace(
+                assumed=start.assumed
+            )
+        )
     decades = _TWO_DECADES.match(left) if _SHORT_DECADE.match(right) else None
     if decades:  # 1850s–60s
         right = decades[1] + right
@@ -172,18 +185,23 @@ def _shortened(left: str, right: str, start: Span, settings: Settings, part: Par
             return _ordered(start, end, settings)
         return None
     if as_is is not None and as_is.low > start.low:
-        raise DateRefused(f"is ambiguous: from {_brief(start)} to {_brief(end)}, or to {_brief(as_is)}; write the second year in full, with its era at both ends")
+        raise DateRefused(
+            f"is ambiguous: from {_brief(start)} to {_brief(end)}, or to {_brief(as_is)}; "
+            "write the second year in full, with its era at both ends"
+        )
     return _ordered(start, end, settings)
 
 
 def _one_sided(start: Span, right: str, left_tail: str, settings: Settings, part: Part) -> Span | None:
-    """450 BCE–400: the unit stands at the first date only. An age's unit holds for both; an era is refused where both readings run forward."""
+    """450 BCE–400: the unit stands at the first date only. An age's holds for both; an era is refused where both readings run forward."""
     shared, alone = part(f"{right} {left_tail}", NOTATION.level), part(right, NOTATION.level)
     if shared is not None and shared.back and start.back:
         return _ordered(start, shared, settings)
     forward = [end for end in (shared, alone) if end is not None and end.low > start.low]
     if len({(end.low, end.high) for end in forward}) > 1:
-        raise DateRefused(f"is ambiguous: from {_brief(start)} to {_brief(forward[0])} or to {_brief(forward[1])}; write the era at both ends")
+        raise DateRefused(
+            f"is ambiguous: from {_brief(start)} to {_brief(forward[0])} or to {_brief(forward[1])}; write the era at both ends"
+        )
     if forward:
         return _ordered(start, forward[0], settings)
     end = shared or alone
@@ -197,12 +215,17 @@ def _ordered(start: Span, end: Span, settings: Settings) -> Span:
         raise DateRefused(f"is a range from {_brief(start)} to itself; write that date alone")
     if start.low > end.low or start.low >= end.high:
         if settings.backwards == "refuse":
-            raise DateRefused(f"runs backwards: {_brief(end)} comes before {_brief(start)}; write the earlier end first, with its era, or set backwards = \"swap\"")
+            raise DateRefused(
+                f"runs backwards: {_brief(end)} comes before {_brief(start)}; "
+                'write the earlier end first, with its era, or set backwards = "swap"'
+            )
         start, end = end, start
     # as ends are taken as written, the rounding of a number plays no part; circa's width does
     uses = tuple(name for one in (start, end) for name in one.uses if name != "digits" or one.kind == "circa")
     words = f"from {_brief(start)} to {_brief(end)}"
-    return flat("range", start.low, end.high, words, uses, start.remarks + end.remarks)._replace(back=start.back, assumed=start.assumed or end.assumed)
+    return flat("range", start.low, end.high, words, uses, start.remarks + end.remarks)._replace(
+        back=start.back, assumed=start.assumed or end.assumed
+    )
 
 
 def _brief(span: Span) -> str:

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """A question mark behind a date that ISO 8601-2 does not write: 44 BCE?, 66 Ma (?). It qualifies and moves no bound."""
 
 from __future__ import annotations

@@ -1,3 +1,4 @@
+# SPDX-License-Identifier: Apache-2.0
 """A calendar year by itself: 1985, −500 (astronomical, as in ISO 8601), 1969.55, 12 000, −1.38×10^10."""
 
 from __future__ import annotations
@@ -24,9 +25,13 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if number.sign == "-" and not number.digits.strip("0."):
         raise DateRefused("has a zero with a minus sign; year 0 (1 BCE) is written 0 or 0000")
     if _BASIC_DAY.match(text):
-        raise DateRefused(f"is year {text} or the day {text[:4]}-{text[4:6]}-{text[6:]}; write the day with hyphens, or the year with separators")
+        raise DateRefused(
+            f"is year {text} or the day {text[:4]}-{text[4:6]}-{text[6:]}; write the day with hyphens, or the year with separators"
+        )
     if _MONTH_YEAR.match(text):
-        raise DateRefused(f"is ambiguous: the decimal year {number.digits}, or a month and year; write the month by name, or the year with other decimals")
+        raise DateRefused(
+            f"is ambiguous: the decimal year {number.digits}, or a month and year; write the month by name, or the year with other decimals"
+        )
     return calendar_year(number, settings)
 
 
