@@ -4,6 +4,7 @@
 from __future__ import annotations
 
 import re
+from functools import lru_cache
 
 from ..errors import DateRefused
 from .clean import clean
@@ -84,7 +85,15 @@ _OF_ZERO = {
     "2000": before_present.NOTATION,
 }
 _HIGHEST = max(notation.level for notation in NOTATIONS)
-_BELOW = {level: tuple(notation for notation in NOTATIONS if notation.level < level) for level in range(_HIGHEST + 1)}
+_ONE_DIGIT = str.maketrans("123456789", "000000000")
+
+
+@lru_cache(maxsize=4096)
+def _asked(signs: frozenset[str], below: int) -> tuple[Notation, ...]:
+    """The notations below a level that a text of these characters may be of (0 stands for every digit)."""
+    return tuple(
+        notation for notation in NOTATIONS if notation.level < below and (not notation.marks or not notation.marks.isdisjoint(signs))
+    )
 
 
 def read_clean(text: str, settings: Settings) -> tuple[Notation, Span]:
@@ -142,10 +151,7 @@ def _try(text: str, settings: Settings, below: int) -> tuple[Notation, Span] | N
             notation = _OF_ZERO[unit.zero]
             span = notation.read(text, settings, part)
             return None if span is None else (notation, span)
-    signs = frozenset(text)
-    for notation in NOTATIONS if below > _HIGHEST else _BELOW[below]:
-        if notation.marks and notation.marks.isdisjoint(signs):
-            continue
+    for notation in _asked(frozenset(text.translate(_ONE_DIGIT)), below):
         span = notation.read(text, settings, part)
         if span is None:
             continue

@@ -163,8 +163,8 @@ def _left_end(left: str, right: str, tail: str, part: Part, settings: Settings) 
 
 def _shortened(left: str, right: str, start: Span, settings: Settings, part: Part) -> Span | None:
     """1914–18: the second year's missing digits are the first's. For BCE both ways may run forward; then neither is guessed."""
-    circa = CIRCA.match(right)
-    first = split_number(left[CIRCA.match(left).end() :] if CIRCA.match(left) else left, settings.decimal)  # type: ignore[union-attr]
+    opening, circa = CIRCA.match(left), CIRCA.match(right)
+    first = split_number(left[opening.end() :] if opening else left, settings.decimal)
     second = split_number(right[circa.end() :] if circa else right, settings.decimal)
     if first is None or second is None or not first[0].whole or not second[0].whole or second[0].sign or first[0].sign:
         return None
