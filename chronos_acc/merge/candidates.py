@@ -24,14 +24,16 @@ BLOCK = 256
 class Candidates:
     """Pairs close in time whose titles have something in common, and the counts of all that are close in time.
 
-    a, b (q,) positions, a < b, similarity (q,) of their titles; within (r,) similarity of pairs of one list that are as close in time (they
-    are different milestones, so they show how alike neighbours are by chance); near (k, lists) how many entries of each list are close to each entry.
+    a, b (q,) positions, a < b, similarity (q,) of their titles, met (q,) whether they share a distinctive word; within, within_met (r,) the same for pairs of
+    one list that are as close in time (they are different milestones, so they show how alike neighbours are by chance); near (k, lists) how many entries of each list are close to each entry.
     """
 
     a: Ints
     b: Ints
     similarity: Floats
+    met: Bools
     within: Floats
+    within_met: Bools
     near: Ints
 
     def pairs(self, source: Ints) -> int:
@@ -62,27 +64,30 @@ def find(entries: Entries, titles: Titles, tell: Tell = silent) -> Candidates:
     room = slack(entries)
     low, high, source = entries.earliest - room, entries.latest + room, entries.source
     k = len(entries)
-    left, right, similarity, within = [], [], [], []
+    left, right, similarity, met, within, within_met = [], [], [], [], [], []
     for first in range(0, k, BLOCK):
         last = min(first + BLOCK, k)
         reach = int(np.searchsorted(low, high[first:last].max(), side="right"))
-        i, j, score = titles.block(slice(first, last), slice(first, reach), LEAST_SIMILARITY)
+        i, j, score, distinct = titles.block(slice(first, last), slice(first, reach), LEAST_SIMILARITY)
         kept = (i < j) & (low[j] <= high[i])  # sorted by the lower end: the later of the two starts within the earlier, or they are apart
-        i, j, score = i[kept], j[kept], score[kept]
+        i, j, score, distinct = i[kept], j[kept], score[kept], distinct[kept]
         other = source[i] != source[j]
         left.append(i[other])
         right.append(j[other])
         similarity.append(score[other])
+        met.append(distinct[other])
         within.append(score[~other])
+        within_met.append(distinct[~other])
         tell("comparing titles", last / k)
     near = np.zeros((k, len(entries.sources)), dtype=np.int64)
     for s in np.unique(source):
         mine = source == s
         near[:, s] = np.searchsorted(np.sort(low[mine]), high, side="right") - np.searchsorted(np.sort(high[mine]), low, side="left")
-    none, empty = np.zeros(0, dtype=np.int64), np.zeros(0)
+    none, empty, neither = np.zeros(0, dtype=np.int64), np.zeros(0), np.zeros(0, dtype=bool)
     return Candidates(
-        np.concatenate([none, *left]), np.concatenate([none, *right]), np.concatenate([empty, *similarity]), np.concatenate([empty, *within]), near
-    )
+        np.concatenate([none, *left]), np.concatenate([none, *right]), np.concatenate([empty, *similarity]), np.concatenate([neither, *met]),
+        np.concatenate([empty, *within]), np.concatenate([neither, *within_met]), near,
+    )  # fmt: skip
 
 
 def time_order(entries: Entries) -> Ints:

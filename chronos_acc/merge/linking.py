@@ -115,8 +115,8 @@ def _score_pairs(
     entries: Entries, titles: Titles, model: Model, near: Ints, a: Ints, b: Ints, rival_a: Ints, rival_b: Ints, scores: Scores
 ) -> tuple[Floats, dict[str, Floats]]:
     """Scores and parts of the pairs shown. Candidates keep theirs; others (joined through a third, or by a decision) are scored as if they stood alone."""
-    similarity = titles.similarity(a, b)
-    seen = features(entries, titles, a, b, similarity, near, model.comparable)
+    similarity, met = titles.compare(a, b)
+    seen = features(entries, titles, a, b, similarity, met, near, model.comparable)
     alone = rate(model, seen, np.arange(len(a)), np.arange(len(a), 2 * len(a)), 2 * len(a) + 1)
     k = len(entries)
     keys = rival_a * k + rival_b

@@ -21,32 +21,43 @@ from .titles import Titles
 # Title similarity: the first bin holds everything below the least similarity kept.
 TITLE_EDGES = np.concatenate([[0.0, 0.12], np.arange(0.2, 0.951, 0.05), [0.985, 1.0]])
 DATE_EDGES = np.array([0.0, 0.02, 0.07, 0.15, 0.3, 0.5, 0.75, 1.0])
-# The prior model, as counts: what a set of a few hundred pairs of invented lists gave, rounded.
-CHANCE_COUNT = 2000.0  # pairs
-SAME_COUNT = 20.0  # pairs
+# The prior model, rounded from invented lists, and how many pairs each part of it is worth.
+CHANCE_COUNT = 2000.0
+SAME_COUNT = 60.0
 SHARE_LISTED = 0.4  # of the shorter list, also in the other
 CATEGORY_AGREES = 0.9  # of same milestones
 CHANCE_AGREES = 0.3  # of different ones
-PRECISE_DATES = np.array([0.30, 0.25, 0.17, 0.13, 0.08, 0.05, 0.02])
+NONE_SHARED = 0.01  # same milestones whose titles share no distinctive word: "Origin of X" and "Origin of Y" are no such pair
+NONE_SHARED_COUNT = 200.0
+PRECISE_DATES = np.array([0.26, 0.24, 0.18, 0.15, 0.09, 0.05, 0.03])
 WIDE_DATES = np.array([0.12, 0.18, 0.20, 0.20, 0.15, 0.10, 0.05])
 FAR_SAMPLE = 150_000
+MESSAGES = 30
+STRONGEST = 25.0  # log odds; beyond, differences between floats would lose the rivals
 HOPELESS = 1e-5  # a probability under the prior model
 ROUNDS = 40
 STRATA = 3
 MOST_SHARED = 0.75  # no two lists are so alike that an entry without a partner would be a surprise
 
 
-def _prior_chance() -> Floats:
+def _decaying(scale: float) -> Floats:
+    """Shares of the bins from the second, falling by a factor e every ``scale`` of similarity."""
     centre = 0.5 * (TITLE_EDGES[1:] + TITLE_EDGES[:-1])
-    density = np.exp(-centre / 0.087) * np.diff(TITLE_EDGES)
+    density = np.exp(-centre / scale) * np.diff(TITLE_EDGES)
     density[0] = 0.0
-    return np.asarray(np.concatenate([[0.9], 0.1 * density[1:] / density.sum()]))
+    return np.asarray(density / density.sum())
+
+
+def _prior_chance() -> Floats:
+    """(2, bins) different milestones by similarity: no distinctive word shared, one shared."""
+    lowest = np.eye(len(TITLE_EDGES) - 1)[0]
+    return np.stack([0.83 * lowest + 0.12 * _decaying(0.12), 0.01 * lowest + 0.04 * _decaying(0.10)])
 
 
 def _prior_same() -> Floats:
-    """Cumulative shares of same milestones by title similarity, spread over the bins."""
-    at = np.interp(TITLE_EDGES, [0.0, 0.12, 0.3, 0.5, 0.7, 0.9, 1.0], [0.0, 0.02, 0.05, 0.15, 0.35, 0.70, 1.0])
-    return np.asarray(np.diff(at))
+    """(2, bins) same milestones by similarity, each row summing to 1: no distinctive word shared, one shared."""
+    shared = np.interp(TITLE_EDGES, [0.0, 0.12, 0.3, 0.5, 0.7, 0.9, 1.0], [0.0, 0.01, 0.03, 0.09, 0.27, 0.64, 1.0])
+    return np.stack([0.2 * np.eye(len(TITLE_EDGES) - 1)[0] + 0.8 * _decaying(0.15), np.diff(shared)])
 
 
 @dataclass(frozen=True)
@@ -65,7 +76,7 @@ class Scores:
 class Model:
     """Both halves of each part, ready to score any pair."""
 
-    title_ratio: Floats  # (strata, bins) log likelihood ratio
+    title_ratio: Floats  # (strata + 1, bins) log likelihood ratio, see _title_ratio
     date_ratio: Floats  # (2, bins) precise, wide
     category_ratio: Floats  # (2,) disagree, agree
     share: Floats  # (lists, lists) expected share of the shorter list that the other names too
@@ -78,6 +89,7 @@ class Features:
     """What the model looks at, one row a pair."""
 
     similarity: Floats
+    met: Bools  # a distinctive word of one title is met in the other
     stratum: Ints  # how much the shorter of the two titles says: 0 little to 2 much
     date_bin: Ints
     regime: Ints
@@ -91,7 +103,7 @@ class Features:
         return Features(*(getattr(self, f.name)[chosen] for f in fields(self)))
 
 
-def features(entries: Entries, titles: Titles, a: Ints, b: Ints, similarity: Floats, near: Ints, comparable: Bools) -> Features:
+def features(entries: Entries, titles: Titles, a: Ints, b: Ints, similarity: Floats, met: Bools, near: Ints, comparable: Bools) -> Features:
     """Features of pairs at positions a and b."""
     room = slack(entries)
     reach = 0.5 * (entries.latest - entries.earliest) + room
@@ -102,7 +114,8 @@ def features(entries: Entries, titles: Titles, a: Ints, b: Ints, similarity: Flo
     known = (code[a] >= 0) & (code[b] >= 0) & comparable[list_a, list_b]
     return Features(
         similarity=similarity,
-        stratum=strata(titles, a, b),
+        met=met,
+        stratum=_strata(titles, a, b),
         date_bin=np.clip(np.searchsorted(DATE_EDGES, np.minimum(gap, 1.0), side="left") - 1, 0, len(DATE_EDGES) - 2).astype(np.int64),
         regime=wide.astype(np.int64),
         agree=np.where(known, (code[a] == code[b]).astype(np.int64), -1),
@@ -116,13 +129,14 @@ def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Sco
     """Estimate the model on the candidates, and score them."""
     comparable = _shared_vocabulary(entries)
     chance, far_pairs = _measured_chance(entries, titles, found)
-    seen = features(entries, titles, found.a, found.b, found.similarity, found.near, comparable)
+    seen = features(entries, titles, found.a, found.b, found.similarity, found.met, found.near, comparable)
     k, lists = len(entries), len(entries.sources)
     key_a, key_b = found.a * lists + seen.list_b, found.b * lists + seen.list_a
     share = np.full((lists, lists), SHARE_LISTED)
     dates = np.log(np.stack([PRECISE_DATES, WIDE_DATES])) - np.log(np.diff(DATE_EDGES))
     category = np.log(np.array([(1 - CATEGORY_AGREES) / (1 - CHANCE_AGREES), CATEGORY_AGREES / CHANCE_AGREES]))
-    model = Model(np.stack([_monotone_log_ratio(_prior_same(), c) for c in chance]), dates, category, share, comparable)
+    nothing = seen.only(np.zeros(len(found.a), dtype=bool))
+    model = Model(_title_ratio(nothing, found.a[:0], np.zeros(0), chance), dates, category, share, comparable)
     prior = rate(model, seen, key_a, key_b, k * lists)
     first = prior.score
     others = seen.only(prior.title < 0)  # how dates and categories agree by chance is measured on neighbours of unlike titles
@@ -146,18 +160,32 @@ def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Sco
 
 
 def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> Scores:
-    """Probability of each pair: its odds against chance, divided among those that would take the same place in the other list."""
+    """Probability of each pair: its odds against chance, divided among those that would take the same place in the other list.
+
+    key_a and key_b (q,) number the places: a's partner in b's list, and b's partner in a's list; below ``keys``. An entry has one partner in a list at
+    most, so that a rival with a better partner of its own takes little away: sum-product messages over the pairs (exact where rivals form no circle).
+    """
     title, date, category, prior = log_odds_parts(model, seen)
-    odds = np.exp(np.clip(title + date + category + prior, -60, 60))
-    rivals = (np.bincount(key_a, weights=odds, minlength=keys)[key_a] - odds) + (np.bincount(key_b, weights=odds, minlength=keys)[key_b] - odds)
-    rivals = np.maximum(rivals, 0.0)
-    return Scores(odds / (1 + rivals + odds), title, date, category, prior, np.log1p(rivals))
+    log_odds = np.clip(title + date + category + prior, -STRONGEST, STRONGEST)
+    odds = np.exp(log_odds)
+    free_a = free_b = np.ones(len(odds))  # chance that a (b) has no partner but this one
+    for _ in range(MESSAGES):
+        from_a, from_b = odds * free_a, odds * free_b
+        taken = 1 + np.bincount(key_a, weights=from_b, minlength=keys) + np.bincount(key_b, weights=from_a, minlength=keys)
+        new_a, new_b = 1 / np.maximum(taken[key_a] - from_b, 1.0), 1 / np.maximum(taken[key_b] - from_a, 1.0)
+        moved = max(np.abs(new_a - free_a).max(initial=0.0), np.abs(new_b - free_b).max(initial=0.0))
+        free_a, free_b = 0.5 * (free_a + new_a), 0.5 * (free_b + new_b)
+        if moved < 1e-4:
+            break
+    rivals = -np.log(free_a * free_b)
+    return Scores(1 / (1 + np.exp(rivals - log_odds)), title, date, category, prior, rivals)
 
 
 def log_odds_parts(model: Model, seen: Features) -> tuple[Floats, Floats, Floats, Floats]:
     """Log likelihood ratios of title, date and category, and the log prior odds."""
     centre = 0.5 * (TITLE_EDGES[1:] + TITLE_EDGES[:-1])
-    title = np.select([seen.stratum == g for g in range(STRATA)], [np.interp(seen.similarity, centre, r) for r in model.title_ratio])
+    row = np.where(seen.met, seen.stratum, STRATA)
+    title = np.select([row == g for g in range(STRATA + 1)], [np.interp(seen.similarity, centre, r) for r in model.title_ratio])
     date = model.date_ratio[seen.regime, seen.date_bin]
     category = np.where(seen.agree < 0, 0.0, model.category_ratio[np.maximum(seen.agree, 0)])
     share = model.share[seen.list_a, seen.list_b]
@@ -168,39 +196,46 @@ def _title_bin(similarity: Floats) -> Ints:
     return np.asarray(np.clip(np.searchsorted(TITLE_EDGES, similarity, side="right") - 1, 0, len(TITLE_EDGES) - 2), dtype=np.int64)
 
 
-def strata(titles: Titles, a: Ints, b: Ints) -> Ints:
+def _strata(titles: Titles, a: Ints, b: Ints) -> Ints:
     """(q,) third of the titles' weights in which the lighter of two titles lies: "Drum" and "Drum" agree by chance more often than longer titles do."""
-    edges = np.quantile(titles.mass, [1 / 3, 2 / 3])
+    edges = np.quantile(titles.mass, [1 / 3, 2 / 3]) if len(titles) else np.zeros(2)
     return np.asarray(np.searchsorted(edges, np.minimum(titles.mass[a], titles.mass[b]), side="left"), dtype=np.int64)
 
 
 def _title_ratio(seen: Features, title_bin: Ints, p: Floats, chance: Floats) -> Floats:
+    """(strata + 1, bins) log likelihood ratios of titles: the last row where no distinctive word is shared, the others by stratum where one is.
+
+    Of same milestones without a shared distinctive word only the share is estimated, so that a handful of pairs cannot vouch for themselves.
+    """
     bins = chance.shape[1]
-    count = np.bincount(seen.stratum * bins + title_bin, weights=p, minlength=STRATA * bins).reshape(STRATA, bins)
-    overall = count.sum(axis=0) + SAME_COUNT * _prior_same()
+    alone, shared = _prior_same()
+    none = (p[~seen.met].sum() + NONE_SHARED_COUNT * NONE_SHARED) / (p.sum() + NONE_SHARED_COUNT)
+    count = np.bincount(seen.stratum * bins + title_bin, weights=p * seen.met, minlength=STRATA * bins).reshape(STRATA, bins)
+    overall = count.sum(axis=0) + SAME_COUNT * shared
     overall /= overall.sum()
     out = np.empty_like(chance)
     for g in range(STRATA):
         mass = count[g] + SAME_COUNT * overall
-        out[g] = _monotone_log_ratio(mass / mass.sum(), chance[g])
+        out[g] = _monotone_log_ratio((1 - none) * mass / mass.sum(), chance[g])
+    out[STRATA] = _monotone_log_ratio(none * alone, chance[STRATA])
     return out
 
 
 def _measured_chance(entries: Entries, titles: Titles, found: Candidates) -> tuple[Floats, int]:
-    """Distribution of title similarity among different milestones, and the number of far pairs it rests on."""
+    """Distribution of titles among different milestones, rows as in ``_title_ratio``, and the number of far pairs it rests on."""
     a, b = _far_pairs(entries)
     bins = len(TITLE_EDGES) - 1
-    stratum = strata(titles, a, b)
-    far = np.bincount(stratum * bins + _title_bin(titles.similarity(a, b)), minlength=STRATA * bins).reshape(STRATA, bins)
+    similarity, met = titles.compare(a, b)
+    at, stratum = _title_bin(similarity), _strata(titles, a, b)
+    far = np.bincount((stratum * 2 + met) * bins + at, minlength=STRATA * 2 * bins).reshape(STRATA, 2, bins)
     overall = (far.sum(axis=0) + CHANCE_COUNT * _prior_chance()) / (len(a) + CHANCE_COUNT)
-    chance = (far + CHANCE_COUNT * overall) / (far.sum(axis=1, keepdims=True) + CHANCE_COUNT)
+    by_stratum = (far + CHANCE_COUNT * overall) / (far.sum(axis=(1, 2)) + CHANCE_COUNT)[:, None, None]
     total = found.pairs_within(entries.source)
-    within = np.bincount(_title_bin(found.within), minlength=bins).astype(float)
-    within[-1] = 0.0  # the very same title twice in one list may be one milestone listed twice
-    within[0] = max(total - len(found.within), 0)
+    within = np.bincount(found.within_met * bins + _title_bin(found.within), minlength=2 * bins).reshape(2, bins).astype(float)
+    within[:, -1] = 0.0  # the very same title twice in one list may be one milestone listed twice
+    within[0, 0] += max(total - len(found.within), 0)
     lift = (within + CHANCE_COUNT * overall) / (within.sum() + CHANCE_COUNT) / overall
-    chance = chance * lift
-    return chance / chance.sum(axis=1, keepdims=True), len(a)
+    return np.vstack([by_stratum[:, 1] * lift[1], overall[0] * lift[0]]), len(a)
 
 
 def _far_pairs(entries: Entries) -> tuple[Ints, Ints]:

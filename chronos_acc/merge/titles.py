@@ -20,18 +20,20 @@ from scipy import sparse
 
 Floats = npt.NDArray[np.float64]
 Ints = npt.NDArray[np.int64]
+Bools = npt.NDArray[np.bool_]
+Complexes = npt.NDArray[np.complex128]
 
+DISTINCTIVE = 0.75
 ALIKE = 0.35  # words below this share of grams are no counterparts
-PSEUDO_TITLES = 40.0  # strength of the prior below, in titles: it matters in small sets only
-# Share of titles in which a word is expected before anything was counted: grammatical words, and the words of events as such. With many titles the
-# counted shares take over, in any language.
+# Share of titles in which a word is expected before anything was counted, and how many titles that expectation is worth: grammatical words, the words
+# of events as such, and all others. It matters in small sets; with many titles the counted shares take over, in any language.
 FUNCTION_WORDS = frozenset("a an and as at by for from in into is its of on or that the this to was were with".split())
 EVENT_WORDS = frozenset(
     "first earliest oldest early origin origins beginning beginnings begin begins began start starts invention invented invents discovery discovered "
     "development developed develops introduction introduced appearance appear appears emergence emerges evolution evolves evolved rise creation created "
     "foundation founded use used new known modern".split()
 )
-RARE, EVENT, FUNCTION = 0.002, 0.06, 0.35
+EXPECTED = {"other": (0.002, 10.0), "event": (0.3, 100.0), "function": (0.6, 100.0)}
 ROMAN = {
     "i": "1", "ii": "2", "iii": "3", "iv": "4", "vi": "6", "vii": "7", "viii": "8", "ix": "9", "xi": "11", "xii": "12", "xiii": "13", "xiv": "14", "xv": "15",
     "xvi": "16", "xvii": "17", "xviii": "18", "xix": "19", "xx": "20",
@@ -63,8 +65,9 @@ def grams_of(word: str) -> set[str]:
 class Titles:
     """Titles ready to be compared.
 
-    mass (k,) summed weight of a title's words; own (k, v) sparse, weight of each word in each title; cover (k, v) sparse, how well each word of the
-    vocabulary is met by its best counterpart in each title (0 to 1). The weight of a's words met in b is then one sparse product: own[a] · cover[b].
+    mass (k,) summed weight of a title's words; own (k, v) sparse, weight of each word in each title, with imaginary part 1 for its distinctive words (at
+    least ``DISTINCTIVE`` of the heaviest); cover (k, v) sparse, how well each word of the vocabulary is met by its best counterpart in each title
+    (0 to 1). The weight of a's words met in b is then one sparse product, own[a] · cover[b], and says too whether a distinctive word is met.
     """
 
     mass: Floats
@@ -81,24 +84,28 @@ class Titles:
         shape = (len(split), len(vocabulary))
         alike = _word_similarity(list(vocabulary))
         weight = _rarity(list(vocabulary), np.bincount(columns, minlength=shape[1]).astype(float), alike, len(split))
-        own = sparse.csr_array((weight[columns], (rows, columns)), shape=shape)
+        heaviest = np.zeros(shape[0])
+        np.maximum.at(heaviest, rows, weight[columns])
+        marks = weight[columns] >= DISTINCTIVE * heaviest[rows]
+        own = sparse.csr_array((weight[columns] + 1j * marks, (rows, columns)), shape=shape)
         return cls(np.bincount(rows, weights=weight[columns], minlength=shape[0]).astype(np.float64), own, _cover(rows, columns, alike, shape))
 
     def __len__(self) -> int:
         return len(self.mass)
 
-    def similarity(self, a: Ints, b: Ints) -> Floats:
-        """(q,) similarity of titles at positions a and b, 0 to 1; symmetric."""
-        out = np.empty(len(a))
+    def compare(self, a: Ints, b: Ints) -> tuple[Floats, Bools]:
+        """(q,) similarity of titles at positions a and b, 0 to 1, and whether a distinctive word of one is met in the other; symmetric."""
+        out, met = np.empty(len(a)), np.empty(len(a), dtype=bool)
         for first in range(0, len(a), 50_000):
             i, j = a[first : first + 50_000], b[first : first + 50_000]
             here = _row_products(self.own, self.cover, i, j)
             there = _row_products(self.own, self.cover, j, i)
-            out[first : first + 50_000] = combine(here, there, self.mass[i], self.mass[j])
-        return out
+            out[first : first + 50_000] = _share_met(here, there, self.mass[i], self.mass[j])
+            met[first : first + 50_000] = here.imag + there.imag > 0
+        return out, met
 
-    def block(self, rows: slice, columns: slice, least: float) -> tuple[Ints, Ints, Floats]:
-        """Positions and similarity of all pairs of two slices that reach ``least`` (above 0)."""
+    def block(self, rows: slice, columns: slice, least: float) -> tuple[Ints, Ints, Floats, Bools]:
+        """Positions of all pairs of two slices whose similarity reaches ``least`` (above 0), and what ``compare`` says of them."""
         here = sparse.coo_array(self.own[rows] @ self.cover[columns].T)
         there = sparse.csr_array(self.cover[rows] @ self.own[columns].T)
         both = sparse.csr_array(here)
@@ -107,17 +114,17 @@ class Titles:
         # alike is symmetric, so both products have entries at the same places
         i = np.repeat(np.arange(both.shape[0]), np.diff(both.indptr)) + rows.start
         j = both.indices.astype(np.int64) + columns.start
-        score = combine(both.data, there.data, self.mass[i], self.mass[j])
+        score = _share_met(both.data, there.data, self.mass[i], self.mass[j])
         kept = score >= least
-        return i[kept].astype(np.int64), j[kept], score[kept]
+        return i[kept].astype(np.int64), j[kept], score[kept], (both.data.imag + there.data.imag > 0)[kept]
 
 
-def combine(met_a: Floats, met_b: Floats, mass_a: Floats, mass_b: Floats) -> Floats:
+def _share_met(met_a: Complexes, met_b: Complexes, mass_a: Floats, mass_b: Floats) -> Floats:
     """Similarity from the weight of each title's words met in the other."""
-    return np.asarray(np.minimum((met_a + met_b) / (mass_a + mass_b), 1.0))
+    return np.asarray(np.minimum((met_a.real + met_b.real) / (mass_a + mass_b), 1.0))
 
 
-def _row_products(left: sparse.csr_array, right: sparse.csr_array, i: Ints, j: Ints) -> Floats:
+def _row_products(left: sparse.csr_array, right: sparse.csr_array, i: Ints, j: Ints) -> Complexes:
     return np.asarray(left[i].multiply(right[j]).sum(axis=1)).ravel()
 
 
@@ -137,7 +144,7 @@ def _word_similarity(words: list[str]) -> sparse.csr_array:
     weighted = sparse.csr_array((weight[column], (row, column)), shape=(v, len(grams)))
     total = np.bincount(row, weights=weight[column], minlength=v)
     transposed = sparse.csr_array(incidence.T)
-    kept_rows, kept_columns, kept = [], [], []
+    kept_rows, kept_columns, kept = [row[:0]], [row[:0]], [total[:0]]
     for first in range(0, v, 1000):
         shared = sparse.coo_array(weighted[first : first + 1000] @ transposed)
         i, j = shared.row + first, shared.col
@@ -156,10 +163,14 @@ def _rarity(words: list[str], count: Floats, alike: sparse.csr_array, titles: in
     strong = alike.copy()
     strong.data = np.where(strong.data >= 0.6, strong.data, 0.0)
     seen = np.minimum(np.asarray(strong @ count).ravel(), titles)
-    prior = np.array([FUNCTION if w in FUNCTION_WORDS else EVENT if w in EVENT_WORDS else RARE for w in words])
-    prior = np.maximum(prior, np.asarray((strong.multiply(prior[None, :])).max(axis=1).todense()).ravel() if len(words) else prior)
-    share = (seen + PSEUDO_TITLES * prior) / (titles + PSEUDO_TITLES)
-    return np.asarray(np.maximum(-np.log(np.minimum(share, 1.0)), 0.05))
+    least = np.full(len(words), np.inf)
+    for kind, listed in (("other", None), ("event", EVENT_WORDS), ("function", FUNCTION_WORDS)):
+        expected, worth = EXPECTED[kind]
+        member = np.ones(len(words)) if listed is None else np.array([float(w in listed) for w in words])
+        near = strong @ member > 0  # the word itself or a spelling alike
+        share = (seen + worth * expected) / (titles + worth)
+        least = np.where(near, np.minimum(least, -np.log(np.minimum(share, 1.0))), least)
+    return np.asarray(np.maximum(least, 0.05))
 
 
 def _cover(rows: Ints, columns: Ints, alike: sparse.csr_array, shape: tuple[int, int]) -> sparse.csr_array:
