@@ -157,7 +157,7 @@ def _general(text: str, found: re.Match[str], calendar: Calendar, hemisphere: st
     if month is None:
         first, last = years[0], years[1]
         if negative:
-            first, last = -last, -first
+            first, last = -last, -max(first, 1)  # there is no year -0
         return Found(float(first), last + 1.0, f"years {first} to {last} ({words})" if first != last else f"year {first} ({words})", "year")
     if month.isdigit() and int(month) in _NAMES:
         if day is not None or "X" in year:

@@ -109,7 +109,7 @@ WORDS = [
     ("first half of the 1850s", (1850, 1855)), ("late Cretaceous", ago(100.5e6, 66e6)), ("Cretaceous", ago(143.1e6, 66e6)), ("the Cretaceous period", ago(143.1e6, 66e6)), ("Holocene", ago(11700, 0)), ("Early Paleogene", ago(66e6, 66e6 - 42.96e6 / 3)),
     ("Ediacaran", ago(635e6, 538.8e6)), ("MESOZOIC", ago(251.902e6, 66e6)),
     ("at most 12 ka", (2024 - 12e3, 2025)), ("less than 3 million years ago", (2024 - 3e6, 2025)),
-    ("after 1850", (1851, 2025)), ("since 1850", (1850, 2025)), ("post 1850", (1851, 2025)), ("1850 or later", (1850, 2025)), ("from 1850", (1850, 2025)), ("not before 1850", (1850, 2025)), (">1850", (1851, 2025)), ("≥ 1850", (1850, 2025)),
+    ("after 1850", (1851, 2025)), ("since 1850", (1850, 2025)), ("post 1850", (1851, 2025)), ("post-1850", (1851, 2025)), ("1850 or later", (1850, 2025)), ("from 1850", (1850, 2025)), ("not before 1850", (1850, 2025)), (">1850", (1851, 2025)), ("≥ 1850", (1850, 2025)),
     ("<66 Ma", (2024 - 66e6, 2025)), ("after 66 Ma", (2024 - 66e6, 2025)), ("younger than 66 Ma", (2024 - 66e6, 2025)), ("1850 onwards", (1850, 2025)), ("terminus post quem 79", (79, 2025)), ("after 12 April 1961", (day(1961, 4, 12)[1], 2025)),
 ]
 DAYS = [
@@ -178,7 +178,7 @@ REFUSED: list[tuple[str, str, dict[str, Any]]] = [
     ("4500 ± 40 14C BP", "uncalibrated radiocarbon", {}), ("4500 14C yr BP", "uncalibrated radiocarbon", {}), ("4500 rcybp", "uncalibrated radiocarbon", {}), ("4500 RCYBP", "uncalibrated radiocarbon", {}), ("4500 uncal BP", "uncalibrated", {}),
     ("4500 ¹⁴C BP", "uncalibrated radiocarbon", {}), ("4500 radiocarbon years BP", "uncalibrated", {}), ("4500 C14 BP", "uncalibrated", {}), ("4500±40 BP (uncalibrated)", "uncalibrated", {}), ("4500 conventional BP", "uncalibrated", {}),
     ("450 BCE–400", "write the era at both ends", {}), ("331–23 BCE", "write the second year in full", {}), ("1850 ± 10 yr", "is ambiguous", {"compiled": 2024}), ("66.0 ± 0 Ma", "error of 0", {}), ("1850 ± 5 %", "per cent of a calendar year", {}),
-    ("before 1850", "has no early end", {}), ("after 1850", "has no late end", {}), ("until 1850", "has no early end", {}), ("> 40 ka", "has no early end", {}), ("../1985", "has no early end", {}), ("1450-40 BCE", "ISO 8601's", {}),
+    ("before 1850", "has no early end", {}), ("pre-1850", "has no early end", {}), ("1984~?", "no notation", {}), ("1985-04-12?~", "no notation", {}), ("after 1850", "has no late end", {}), ("until 1850", "has no early end", {}), ("> 40 ka", "has no early end", {}), ("../1985", "has no early end", {}), ("1450-40 BCE", "ISO 8601's", {}),
     ("9 May", "no certain year", {}), ("12 April 61", "no certain year", {}), ("C19", "or century 19", {}), ("1969a", "with a letter", {}), ("04.1985", "a month and year", {}), ("20 c.", "no notation", {}),
     ("1969-07-20 25:17", "no notation", {}), ("at least 3.5 Ga", "has no early end", {}), ("66.0 ± 0.1–65 Ma", "error at the end of a range", {}), ("after 2024", "check the limits", {"compiled": 2024}),
     ("0th century", "names a century 0", {}), ("turn of the 19th century", "early, mid or late", {}), ("unknown", "it has no number", {}), ("n.d.", "it has no number", {}), ("unknown/2006", "older draft", {}), ("198u", "older draft", {}),

@@ -14,14 +14,16 @@ from ..span import Span
 from .notation import Notation, Part
 
 _WORDS = {
-    "before": ("before", "prior to", "earlier than", "older than", "ante"),
+    "before": ("before", "prior to", "earlier than", "older than", "ante", "pre"),
     "until": ("until", "till", "up to", "by", "no later than", "not later than", "not after", "terminus ante quem", "taq", "at the latest"),
     "after": ("after", "later than", "younger than", "post"),
     "since": ("since", "from", "starting in", "no earlier than", "not earlier than", "not before", "terminus post quem", "tpq"),
 }
 _MEANING = {word: meaning for meaning, words in _WORDS.items() for word in words}
 _PREFIX = re.compile(
-    r"(" + "|".join(sorted(map(re.escape, _MEANING), key=len, reverse=True)) + r")\b[: ] ?(?=\S)|(<=|>=|<|>) ?(?=\S)", re.IGNORECASE
+    r"(?P<word>" + "|".join(sorted(map(re.escape, _MEANING), key=len, reverse=True)) + r")\b(?:[: ] ?(?=\S)|(?<=pre)-|(?<=post)-)"
+    r"|(?P<sign><=|>=|<|>) ?(?=\S)",
+    re.IGNORECASE,
 )
 _SUFFIX = re.compile(r",? (?:(?:or|and) (earlier|before|older|later|after|younger)|(onwards?))\Z", re.IGNORECASE)
 _OF_AGES = re.compile(r"(at least|more than|over|less than|under|at most) (?=\S)", re.IGNORECASE)
@@ -47,7 +49,7 @@ def read(text: str, settings: Settings, part: Part) -> Span | None:
     if found.re is _SUFFIX:
         meaning = "until" if (found[1] or "").lower() in ("earlier", "before", "older") else "since"
     else:
-        meaning = _MEANING[found[1].lower()] if found[1] else (_BACK if inner.back else _FORTH)[found[2]]
+        meaning = _MEANING[found["word"].lower()] if found["word"] else (_BACK if inner.back else _FORTH)[found["sign"]]
     return _limited(meaning, inner)
 
 

@@ -15,7 +15,7 @@ _MARK = re.compile(r" ?\(?\?\)?\Z")
 def read(text: str, settings: Settings, part: Part) -> Span | None:
     """The date without its mark, with a remark."""
     found = _MARK.search(text)
-    if found is None or not found.start():
+    if found is None or not found.start() or text[found.start() - 1] in "?~%":
         return None
     span = part(text[: found.start()], NOTATION.level)
     return None if span is None else span._replace(remarks=(*span.remarks, "marked uncertain; the bounds are those of the date itself"))
