@@ -65,7 +65,8 @@ def test_each_refused_row_is_refused_for_its_own_reason(db: Path, loaded: list[L
 def test_entries_hold_the_truth_within_what_the_compiler_could_be_off(db: Path, loaded: list[Loaded]) -> None:
     """Bounds contain the true date in most cases, and no best date is off by more than a fifth of its age or ten years."""
     entries = timeline.table(db, "entries")
-    truth = {(w.source, w.title): e.year for w in made.entries() for e in made.kept(made.SEED)[w.source] if e.name == w.event}
+    year_of = {e.name: e.year for e in made.true_record(made.SEED)}
+    truth = {(w.source, w.title): year_of[w.event] for w in made.entries()}
     assert len(entries) == len(truth)
     inside = 0
     for row in entries.itertuples():
