@@ -250,14 +250,13 @@ def _look(path: Path, *, must_exist: bool) -> None:
 
 def _check_version(connection: duckdb.DuckDBPyConnection, path: Path, *, writing: bool = False) -> None:
     with refusals(path):
-        tables = connection.execute("SELECT schema_name || '.' || table_name FROM duckdb_tables() WHERE NOT internal").fetchall()
-    if not tables and writing:
-        with refusals(path):
-            _create(connection)
-        return
-    if ("ledger.about",) not in tables:
-        raise TimelineRefused(f"{path} is a DuckDB file, but no timeline; choose another --db")
-    found = connection.execute("SELECT value FROM ledger.about WHERE key = 'schema_version'").fetchall()
+        try:
+            found = connection.execute("SELECT value FROM ledger.about WHERE key = 'schema_version'").fetchall()
+        except (duckdb.CatalogException, duckdb.BinderException):
+            if writing and not connection.execute("SHOW ALL TABLES").fetchall():
+                _create(connection)  # a database without any table: nobody's
+                return
+            raise TimelineRefused(f"{path} is a DuckDB file, but no timeline; choose another --db") from None
     version = int(found[0][0]) if found and str(found[0][0]).isdigit() else 0
     if version > SCHEMA_VERSION:
         raise TimelineRefused(

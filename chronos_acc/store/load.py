@@ -17,11 +17,12 @@ from ..errors import ListRefused, Refused
 from ..progress import Tell, silent
 from .dates import date_rows
 from .enter import Change, enter, former
+from .exchange import is_export, restore
 from .ledger import Ledger, open_for_writing
 from .remarks import remarks_of
 from .rows import Rows, fill, raw_of
 from .sheets import columns_of
-from .staging import Job, resolve, stage, table_of
+from .staging import STDIN, Job, resolve, stage, table_of
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -68,13 +69,20 @@ def load(
 ) -> list[Loaded]:
     """Load lists into a timeline file, which is made where it is missing; then link its entries anew unless ``link`` is False.
 
-    ``files``: lists, folders of lists with sheets, sheets, or "-" for standard input. With several lists each is loaded that can be; when any
+    ``files``: lists, folders of lists with sheets, sheets, "-" for standard input, or by itself a folder that ``export`` wrote, which brings the
+    exported timeline back into a new file. With several lists each is loaded that can be; when any
     was refused, ListRefused is raised at the end and its ``loaded`` holds what was loaded. A list none of whose rows can be read is refused; if
     it was not held before, its refused rows are kept to be looked at. ``strict`` refuses a list with any row refused, and keeps nothing of it.
 
     Raises ListRefused, SheetRefused, TimelineRefused, WrongUse.
     """
-    jobs = resolve([files] if isinstance(files, (str, Path)) else files, compiled=compiled, as_format=as_format)
+    given = [files] if isinstance(files, (str, Path)) else list(files)
+    exported = [one for one in given if str(one) != STDIN and is_export(one)]
+    if exported:
+        if len(given) > 1:
+            raise ListRefused(f"{exported[0]} is an exported timeline; load it by itself into a new file, then the others")
+        return _bring_back(db, exported[0], tell)
+    jobs = resolve(given, compiled=compiled, as_format=as_format)
     done: list[Loaded] = []
     refusals: list[Refused] = []
     with open_for_writing(db) as ledger:
@@ -97,6 +105,16 @@ def load(
         error.loaded = tuple(done)
         raise error
     return done
+
+
+def _bring_back(db: str | Path, folder: str | Path, tell: Tell) -> list[Loaded]:
+    """An exported timeline: as it was, so that nothing is linked anew."""
+    back = restore(db, folder, tell=tell)
+    added = [loaded if back.changed else 0 for _, _, loaded, _, _ in back.lists]
+    return [
+        Loaded(name, read, loaded, rejected, added=new, duplicates=duplicates, notes=back.notes)
+        for (name, read, loaded, rejected, duplicates), new in zip(back.lists, added, strict=True)
+    ]
 
 
 @dataclass(frozen=True)

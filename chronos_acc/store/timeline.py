@@ -152,13 +152,21 @@ def record(
     TimelineRefused where the milestones are not up to date, RecordRefused for an empty timeline, WrongUse for an unknown list or category.
     """
     with open_for_reading(db) as ledger:
-        ledger.require_linked()
-        whole = _whole(ledger)
-        if sources is not None:
-            unknown = [s for s in sources if s not in whole.lists]
-            if unknown:
-                raise WrongUse(f"there is no list {unknown[0]!r} in the timeline; it has {', '.join(whole.lists)}")
-        default, origin = default_present(ledger, sources)
+        return record_open(ledger, present=present, start=start, sources=sources, min_support=min_support, category=category)
+
+
+def record_open(
+    ledger: Ledger, *, present: float | None = None, start: float | None = None, sources: Sequence[str] | None = None,
+    min_support: int | None = None, category: str | None = None,
+) -> Record:  # fmt: skip
+    """The same from an open file."""
+    ledger.require_linked()
+    whole = _whole(ledger)
+    if sources is not None:
+        unknown = [s for s in sources if s not in whole.lists]
+        if unknown:
+            raise WrongUse(f"there is no list {unknown[0]!r} in the timeline; it has {', '.join(whole.lists)}")
+    default, origin = default_present(ledger, sources)
     if present is None:
         whole = replace(whole, present=default, present_from=origin)
     chosen = whole.only(sources=sources, min_support=min_support, category=category, present=present, start=start)

@@ -14,6 +14,7 @@ from chronos_acc.store import exchange as X
 from chronos_acc.store import timeline as T
 from chronos_acc.store.ledger import open_for_reading, open_for_writing
 from chronos_acc.store.linking import relink
+from chronos_acc.store.load import load
 from chronos_acc.store.runs import record_run
 from tests.store.timelines import KILN, make, put, two_lists
 
@@ -63,6 +64,16 @@ def test_loading_the_same_twice_changes_nothing_and_other_lists_are_refused(db: 
     with pytest.raises(ListRefused, match="already holds"):
         X.restore(db, folder)
     assert T.table(other, "sources")["source"].tolist() == ["gamma"]
+
+
+def test_load_takes_an_exported_folder_by_itself(db: Path, tmp_path: Path) -> None:
+    folder = X.export(db, tmp_path / "out").folder
+    loaded = load(tmp_path / "back.duckdb", folder)
+    assert [(one.source, one.rows_read, one.rows_loaded, one.rows_rejected, one.added) for one in loaded] == [("alpha", 15, 14, 1, 14), ("beta", 15, 15, 0, 15)]
+    assert T.record(tmp_path / "back.duckdb").hash == T.record(db).hash
+    assert load(db, [folder])[0].added == 0
+    with pytest.raises(ListRefused, match="load it by itself"):
+        load(tmp_path / "other.duckdb", [folder, tmp_path / "list.csv"])
 
 
 def test_a_folder_that_was_changed_is_refused(db: Path, tmp_path: Path) -> None:

@@ -6,11 +6,13 @@ from __future__ import annotations
 from pathlib import Path
 
 import numpy as np
+import pandas as pd
 import pytest
 
 from chronos_acc.errors import RecordRefused, TimelineRefused, WrongUse
 from chronos_acc.intervals import interval_series
 from chronos_acc.record import NORMAL, summary_of_parts
+from chronos_acc.store import query as Q
 from chronos_acc.store import timeline as T
 from chronos_acc.store.ledger import open_for_reading, open_for_writing
 from tests.store.timelines import BRIDGE, KILN, MILL, Row, make, put, two_lists
@@ -148,22 +150,25 @@ def test_sql_and_python_give_the_same_interval_series(tmp_path: Path, seed: int)
         {}, {"present": 2020.0}, {"present": 2021.0, "start": middle}, {"present": middle}, {"start": 2021.0, "present": 2022.5},
         {"min_support": 2}, {"category": "c"}, {"present": -1e9}, {"min_support": 1, "category": "d", "start": middle},
     ]  # fmt: skip
-    for choice in choices:
-        record = T.record(db, **choice)  # type: ignore[arg-type]
-        python = interval_series(record, draws=0).to_frame()
-        with open_for_reading(db) as ledger:
-            for name, value in choice.items():
-                ledger.run(f"SET VARIABLE {name} = ?", [value])
-            sql = ledger.frame("FROM intervals ORDER BY year, milestone")
+    with open_for_reading(db) as ledger:
+        for choice in choices:
+            record = T.record_open(ledger, **choice)  # type: ignore[arg-type]
+            python = interval_series(record, draws=0).to_frame()
+            for name in Q.VIEW_VARIABLES:
+                ledger.run(f"SET VARIABLE {name} = ?", [choice.get(name)])
             assert ledger.value("SELECT present_year()") == record.present
-        assert sql["milestone"].tolist() == python["milestone"].tolist(), choice
-        for column in ("year", "age", "interval", "support"):
-            np.testing.assert_array_equal(sql[column].to_numpy(float), python[column].to_numpy(float), err_msg=f"{column} {choice}")
-        np.testing.assert_array_equal(sql["open"].to_numpy(bool), python["open"].to_numpy(bool))
-        assert sql["title"].tolist() == python["title"].tolist()
-        assert [None if np.isnan(v) else int(v) for v in sql["next_milestone"].to_numpy(float)] == [
-            None if v is None or v != v else int(v) for v in python["next_milestone"].astype(object).where(python["next_milestone"].notna(), None)
-        ]
+            _same_series(ledger.frame("FROM intervals ORDER BY year, milestone"), python, str(choice))
+
+
+def _same_series(sql: pd.DataFrame, python: pd.DataFrame, choice: str) -> None:
+    assert sql["milestone"].tolist() == python["milestone"].tolist(), choice
+    for column in ("year", "age", "interval", "support"):
+        np.testing.assert_array_equal(sql[column].to_numpy(float), python[column].to_numpy(float), err_msg=f"{column} {choice}")
+    np.testing.assert_array_equal(sql["open"].to_numpy(bool), python["open"].to_numpy(bool))
+    assert sql["title"].tolist() == python["title"].tolist()
+    assert [None if np.isnan(v) else int(v) for v in sql["next_milestone"].to_numpy(float)] == [
+        None if v is None or v != v else int(v) for v in python["next_milestone"].astype(object).where(python["next_milestone"].notna(), None)
+    ]
 
 
 def test_the_macros_give_the_same_series_too(db: Path) -> None:

@@ -3,8 +3,12 @@
 
 from __future__ import annotations
 
+import atexit
 import json
+import shutil
+import tempfile
 from collections.abc import Mapping, Sequence
+from functools import cache
 from pathlib import Path
 from typing import Any
 
@@ -51,8 +55,22 @@ def put(ledger: Ledger, name: str, rows: Sequence[Row], **source: Any) -> int:
     return number
 
 
+@cache
+def _kept(which: str) -> Path:
+    """A file made once in this run, to be copied."""
+    path = Path(tempfile.mkdtemp(prefix="chronos-acc-tests-")) / "kept.duckdb"
+    atexit.register(shutil.rmtree, path.parent, ignore_errors=True)
+    if which == "empty":
+        with open_for_writing(path):
+            pass
+    else:
+        _two_lists(path)
+    return path
+
+
 def make(path: Path, lists: Mapping[str, Sequence[Row]], link: bool = True, **sources: Mapping[str, Any]) -> Path:
     """A timeline of lists by name; ``sources`` holds more columns of a list by its name."""
+    shutil.copyfile(_kept("empty"), path)
     with open_for_writing(path) as ledger, ledger.transaction():
         for name, rows in lists.items():
             put(ledger, name, rows, **sources.get(name, {}))
@@ -73,6 +91,12 @@ BETA = (
 
 
 def two_lists(path: Path) -> Path:
+    """The timeline of ``_two_lists``, as a copy."""
+    shutil.copyfile(_kept("two lists"), path)
+    return path
+
+
+def _two_lists(path: Path) -> Path:
     """Two lists that share two of four milestones, with different years for one of them among strangers."""
     far = [(t, 500.5 + 97 * i) for i, t in enumerate(ALPHA)]
     near = [(t, 531.5 + 97 * i) for i, t in enumerate(BETA)]
