@@ -11,25 +11,28 @@ from ...trend.null_model import Null
 from ...trend.precision import null_times
 
 Floats = npt.NDArray[np.float64]
-RECORDS = 400  # null records; with some 30 intervals each a bin of age holds hundreds
+CELLS = 120_000  # intervals of null records: some 1,400 records of 85 milestones
+MOST_RECORDS, LEAST_RECORDS = 4000, 200
 BINS = 28
-LEAST = 40  # pairs in a bin from which a 95 % band is drawn
+LEAST = 100  # pairs in a bin from which a 95 % band is drawn
 
 
 def interval_band(record: Record, window: Window, null: Null, *, seed: int, floor: float, stream: int) -> tuple[Floats, Floats, Floats]:
     """Ages (b,) and the 2.5 and 97.5 % points (b,) of the null's intervals that open there, all in years, from young to old.
 
-    ``floor`` is the least age and interval that has a logarithm. Bins of equal log age over the window; those the null hardly visits are left out.
+    ``floor`` is the least age and interval that has a logarithm. Bins of equal log age, from half the youngest age of the window to its length; those the null hardly visits are left out.
     """
     rng = np.random.default_rng([seed, 8801, stream])
-    times = null_times(record, window, null, rng, RECORDS)
+    size = min(MOST_RECORDS, max(LEAST_RECORDS, CELLS // max(len(window.times), 1)))
+    times = null_times(record, window, null, rng, size)
     ages = np.maximum(window.present - times[:, :-1], floor).ravel()
     gaps = np.diff(times, axis=1).ravel()
     ages, gaps = ages[gaps > 0], np.maximum(gaps[gaps > 0], floor)
     if not len(ages):
         empty = np.empty(0)
         return empty, empty, empty
-    edges = np.linspace(np.log(floor), np.log(window.span) + 1e-9, BINS + 1)
+    youngest = max(floor, float(window.ages.min()) / 2)
+    edges = np.linspace(np.log(min(youngest, window.span / 2)), np.log(window.span) + 1e-9, BINS + 1)
     which = np.searchsorted(edges, np.log(ages), side="right") - 1
     middle, low, high = [], [], []
     for b in range(BINS):

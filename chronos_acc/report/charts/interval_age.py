@@ -50,8 +50,8 @@ def build(inputs: Inputs) -> ChartData:
     )  # fmt: skip
     open_age = np.maximum(last["age"].to_numpy(float), floor)
     still = Series("open: nothing since", "dots", "open", floats(open_age), floats(np.maximum(last["interval"].to_numpy(float), floor)))
-    heights = np.concatenate([gaps, open_age, *(s.y for s in lines), *(s.y_low for s in bands), *(s.y_high for s in bands)])
-    bottom, top = limits(heights, "log", 0.04)
+    heights = np.concatenate([gaps, low, high, open_age, *(s.y for s in lines), *(s.y_high for s in bands)])
+    bottom, top = limits(heights, "log", 0.04)  # a band may run out below: no interval lies there
     joined = window.joined
     notes = []
     if joined:

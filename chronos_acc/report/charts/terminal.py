@@ -157,7 +157,7 @@ def _dots(canvas: Canvas, x: Axis, y: Axis, s: Series, index: int) -> None:
 
 
 def _ticks(canvas: Canvas, x: Axis, y: Axis, s: Series) -> None:
-    if len(s) > 2 * canvas.columns or (y.names and x.high - x.low > 3 * canvas.columns):
+    if len(s) > 2 * canvas.columns or (y.names and _ranks(x) > 3 * canvas.columns):
         _crowd(canvas, x, y, s)
         return
     for i in range(len(s)):
@@ -170,6 +170,11 @@ def _ticks(canvas: Canvas, x: Axis, y: Axis, s: Series) -> None:
         place = _along(x, a), _height(y, b)
         if all(map(math.isfinite, place)):
             canvas.glyph(*place, "┃" if canvas.at(*place) in ("│", "┃") else "│", s.role)
+
+
+def _ranks(x: Axis) -> float:
+    """How many whole numbers a linear axis counts."""
+    return x.high - x.low if x.scale == "linear" else 0.0
 
 
 def _crowd(canvas: Canvas, x: Axis, y: Axis, s: Series) -> None:
@@ -242,7 +247,7 @@ def _legend(data: ChartData, width: int) -> list[list[tuple[str, str]]]:
             elif s.mark == "rule":
                 mark = "┊" if s.x else "┄"
             elif s.mark == "ticks":
-                mark = _CROWD[-1] if panel.y.names and data.x.high - data.x.low > 3 * width else "│"
+                mark = _CROWD[-1] if panel.y.names and _ranks(data.x) > 3 * width else "│"
             if s.name and s.name not in seen and len(s):
                 seen.add(s.name)
                 items.append((mark, plain(s.name), ink))
