@@ -12,6 +12,7 @@ from ..trend.capture import grouped
 from ..trend.kernels import growth_of_mean_age
 from ..trend.null_model import youngest_floor
 from ..trend.overlap import SCALES, CaptureFit, Sightings, fit
+from .offset import LEAST, MOST_CELLS
 
 Floats = npt.NDArray[np.float64]
 FEWEST_COUNTED = 5
@@ -56,11 +57,12 @@ def at_least(logits: Floats, threshold: int) -> Floats:
 
 
 def steady_growth(curve: CaptureFit, threshold: int, n: int, span: float, *, rng: np.random.Generator, size: int) -> Floats:
-    """(size,) growth per year that a steady rate shows in n milestones named by at least ``threshold`` lists, in the last ``span`` years up to the present.
+    """(size,) growth per year, fewer for large records, that a steady rate shows in n milestones named by at least ``threshold`` lists, in the last ``span`` years up to the present.
 
     Each replicate takes its own curve from the law of the fitted parameters (where the fit gives one), so the band holds both chance and what is not known of
     the curve.
     """
+    size = min(size, max(LEAST, MOST_CELLS // max(n, 1)))
     middle, edges, weight = _cells(curve, span)
     star = curve.sightings.stretch(curve.scale)(middle / curve.sightings.span)
     alpha, beta = _parameters(curve, rng, size)

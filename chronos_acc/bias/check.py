@@ -55,6 +55,7 @@ class Answer:
     report: str = ""  # what to report in print
     notes: tuple[str, ...] = ()
     headline: int | None = None  # position of the row that speaks for the check on the summary page
+    shown: Row | None = None  # what speaks for it instead, where that is no row of its table
 
 
 @dataclass(frozen=True)

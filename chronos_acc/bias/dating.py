@@ -19,6 +19,7 @@ PRECISIONS = (0.02, 0.05, 0.1, 0.2, 0.5)
 YEARLY = 1.5  # a dating this many years wide or less is taken as written to the year
 FEWEST_DIGITS = 20
 MOST_DRAWS = 1000
+MOST_CELLS = 2_000_000
 
 
 def run(context: Context) -> Answer:
@@ -37,11 +38,16 @@ def run(context: Context) -> Answer:
     return Answer(tuple(rows + digits), summary, "growth over drawn dates and at the coarsest precision the list supports", notes, at)
 
 
+def _draws(context: Context) -> int:
+    """Fewer draws for large records."""
+    return min(context.draws, MOST_DRAWS, max(50, MOST_CELLS // max(len(context.record), 1)))
+
+
 def _drawn(context: Context, published: Growth) -> list[Row]:
     record = context.record
-    if not (record.high > record.low).any():
+    if not (record.high > record.low).any() or not context.draws:
         return []
-    draws = min(context.draws, MOST_DRAWS)
+    draws = _draws(context)
     found = drawn_row("dating", "drawn dates", drawn_growth(record.window, window_draws(record, draws, context.seed)), published, kind="drawn")
     return [] if found is None else [found]
 
@@ -50,9 +56,9 @@ def _coherent(context: Context, published: Growth) -> list[Row]:
     """Each draw follows one list: its dating where it names a milestone, else the next list's, in an order drawn anew."""
     record = context.record
     k = len(record.lists)
-    if k < 2:
+    if k < 2 or not context.draws:
         return []
-    draws = min(context.draws, MOST_DRAWS)
+    draws = _draws(context)
     rng = np.random.default_rng([context.seed, 7501])
     window = record.window
     alone = np.full((k, draws, len(window.times)), np.nan)

@@ -12,12 +12,13 @@ from .growth import growth
 from .rows import count, number, record_row, stands, telling
 
 REPLICATES = 499
+MOST_CELLS = 1_000_000
 
 
 def run(context: Context) -> Answer:
     record = context.record
     published = growth(record.window)
-    found = lists_as_studies(record, seed=context.seed, replicates=min(REPLICATES, context.replicates))
+    found = lists_as_studies(record, seed=context.seed, replicates=_replicates(context))
     notes = tuple(n if n.startswith("lists") else f"lists: {n}" for n in found.notes)
     if not found.rows or found.start is None or found.present is None:
         return Answer(notes=notes or ("lists: needs two independent lists",))
@@ -33,6 +34,11 @@ def run(context: Context) -> Answer:
     agree = "" if pooled is None or pooled.p_equal is None else f"equal growth in all lists has p = {number(pooled.p_equal)}; "
     shown = "" if pooled is None else f"pooled growth {number(pooled.mean)} a year ({number(pooled.low)} to {number(pooled.high)}); "
     return Answer(tuple(rows), f"{agree}{shown}rows: {count(rows)}", "growth of each list on the common window, and whether they agree", notes, at)
+
+
+def _replicates(context: Context) -> int:
+    """Fewer exchanges of labels for large records."""
+    return min(REPLICATES, context.replicates, max(99, MOST_CELLS // max(len(context.record), 1)))
 
 
 def _pooled(p: PooledRow, n: int, published: float | None, start: float, present: float) -> Row:

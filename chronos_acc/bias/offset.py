@@ -18,6 +18,8 @@ from .growth import Growth, profile_ends, rank_p
 
 Floats = npt.NDArray[np.float64]
 CELLS = 1500
+MOST_CELLS = 2_000_000  # events drawn for one null; fewer replicates serve larger records, down to LEAST
+LEAST = 399
 
 
 @dataclass(frozen=True)
@@ -38,7 +40,7 @@ class Offset:
 
         Growth is a monotone function of the mean age, so the p is that of the mean age and the band is mapped from its quantiles.
         """
-        null = self.mean_ages(n, rng=rng, size=size)
+        null = self.mean_ages(n, rng=rng, size=int(min(size, max(LEAST, MOST_CELLS // max(n, 1)))))
         estimate, low, high = self.fit(mean_age, n)
         first, median, last = (self.estimate(float(q)) for q in np.quantile(null, (0.975, 0.5, 0.025)))
         return Growth(n, estimate, low, high, first, median, last, rank_p(mean_age, null))

@@ -40,11 +40,21 @@ class Bias:
         return [plain_row(r) | {k: plain(r.more.get(k)) for k in extra} for r in found]
 
     def to_dict(self) -> dict[str, Any]:
-        """The JSON object: tables by check, then notes."""
+        """The JSON object: tables by check, then notes and what made it."""
         out: dict[str, Any] = {"summary": self._summary()}
         out.update((name, self.rows(name)) for name in self.answers)
-        out["notes"] = list(self.notes)
+        out["notes"] = [self.sentence, *self.notes] if self.answers else list(self.notes)
+        out["made"] = self.made
         return out
+
+    @property
+    def made(self) -> dict[str, Any]:
+        """What made the result: version, seed, draws, replicates, hash of the record."""
+        from .. import __version__
+
+        return {
+            "command": "bias", "version": __version__, "seed": self.seed, "draws": self.draws, "replicates": self.replicates, "record": self.record_hash,
+        }  # fmt: skip
 
     def to_frame(self, table: str = "summary") -> pd.DataFrame:
         """One table as a frame; columns stand even where there is no row."""
@@ -64,7 +74,7 @@ class Bias:
 
     def _line(self, name: str, answer: Answer) -> dict[str, Any]:
         """One line of the summary page: the row that speaks for the check, and what it means."""
-        shown = answer.rows[answer.headline] if answer.headline is not None else None
+        shown = answer.shown or (answer.rows[answer.headline] if answer.headline is not None else None)
         if shown is None:  # no row has enough events to speak for the check
             base = plain_row(Row(name, "all rows", max(r.n for r in answer.rows), None, answer.rows[0].null, None, None, None, None, "too few"))
         else:

@@ -69,7 +69,10 @@ def test_importance_finds_a_threshold_of_notability():
         assert found.published.p_value < 1e-6 and found.published.estimate > 0
         assert page["stands"] in ("weaker", "no", "too few")
         assert page["finding"].startswith("a threshold of notability that falls towards the present decides the trend")
-        assert min(r["complete_to_age"] for r in found.rows("importance") if r["complete_to_age"]) < 700
+        table = found.rows("importance")
+        assert min(r["complete_to_age"] for r in table) < 700
+        assert [r["setting"] for r in table] == sorted({r["setting"] for r in table})
+        assert table[0]["estimate"] == found.published.estimate and abs(page["estimate"]) < 0.5 * page["published"]
 
 
 def test_importance_leaves_growth_alone():
@@ -84,8 +87,8 @@ def test_importance_leaves_growth_alone():
 def test_pooling_one_complete_class_is_the_plain_growth():
     record = plain(np.random.default_rng(9), 80, growth=1.5)
     found = rows(replace(record, importance=np.r_[np.ones(79), 2.0]), "importance").rows("importance")
-    assert found[-1]["kind"] == "pooled over complete ranges"
-    assert found[-1]["estimate"] == pytest.approx(growth(record.window).estimate, rel=1e-6)
+    assert found[0]["pooled_n"] == 80 and found[0]["mix_p_value"] is None
+    assert found[0]["pooled_estimate"] == pytest.approx(growth(record.window).estimate, rel=1e-6)
 
 
 def test_recall_decay_names_the_half_life_and_says_a_list_cannot_tell():

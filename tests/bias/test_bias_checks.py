@@ -39,12 +39,13 @@ def test_folder_and_tuple_agree():
 def test_contract_of_the_rows(result):
     page = result.to_dict()
     json.dumps(page, allow_nan=False)
-    assert list(page)[0] == "summary" and list(page)[-1] == "notes"
+    assert list(page)[0] == "summary" and list(page)[-2:] == ["notes", "made"]
     for name in ["summary", *(c.name for c in CHECKS)]:
         for row in page[name]:
             assert tuple(row)[: len(COLUMNS)] == COLUMNS
             assert row["check"] == name or name == "summary"
             assert row["stands"] in ("yes", "too few", "weaker", "no")
+    assert page["notes"][0] == result.sentence and page["made"]["command"] == "bias"
     assert all(isinstance(r["setting"], float) for name in ("support", "importance") for r in page.get(name, []))
 
 

@@ -35,7 +35,7 @@ def test_every_combination_is_a_row(record, grid):
     assert frame["combination"].tolist() == list(range(1, 81)) and frame["valid"].all() and frame["own"].sum() == 1
     page = grid.to_dict()
     json.dumps(page, allow_nan=False)
-    assert list(page)[: len(TABLES)] == list(TABLES) and page["declared_by"] == {"origin": "small.toml", "hash": "0" * 16}
+    assert list(page)[: len(TABLES)] == list(TABLES) and page["made"]["choices_hash"] == "0" * 16 and page["notes"][0] == grid.sentence
 
 
 def test_the_rate_of_the_own_question_is_the_growth_as_published(record, grid):

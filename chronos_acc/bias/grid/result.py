@@ -97,10 +97,19 @@ class Grid:
     def to_dict(self) -> dict[str, Any]:
         """The JSON object: tables, notes, and what made it."""
         out: dict[str, Any] = {name: self.rows(name) for name in TABLES}
-        out["sentence"] = self.sentence
-        out["notes"] = list(self.notes)
-        out["declared_by"] = {"origin": self.choices.origin, "hash": self.choices.hash}
+        out["notes"] = [self.sentence, *self.notes]
+        out["made"] = self.made
         return out
+
+    @property
+    def made(self) -> dict[str, Any]:
+        """What made the result: version, seed, draws, null records, hashes of the record and of the choices."""
+        from ... import __version__
+
+        return {
+            "command": "grid", "version": __version__, "seed": self.seed, "draws": self.draws, "joint": self.joint, "null": self.null, "record": self.record_hash,
+            "choices": self.choices.origin, "choices_hash": self.choices.hash,
+        }  # fmt: skip
 
     def to_frame(self, table: str = "combinations") -> pd.DataFrame:
         """One table; by default every combination a row."""
@@ -115,8 +124,7 @@ class Grid:
     @property
     def sentence(self) -> str:
         """The first question of the user's own in a sentence."""
-        rows = self._summary()
-        rows = [r for r in rows if r["valid"]]
+        rows = [r for r in self._summary() if r["valid"]]
         if not rows:
             return "no combination could be run"
         r = next((x for x in rows if x["own"]), rows[0])
