@@ -176,24 +176,14 @@ def _wait(fit: Fit) -> _Wait:
     name = fit.curve.name
     if name == "log_linear":
         k = float(fit.theta[0])
-        rate = mean * float(np.exp(fit.curve.log_density(fit.theta, np.ones(1), np.zeros(1)))[0])
-        growth = k / span
-        if abs(k) < 1e-9:
-            return _constant(rate)
-        total = np.inf if k > 0 else rate / -growth
-        return _Wait(
-            rate,
-            lambda m: float(np.log1p(growth * m / rate) / growth) if growth * m > -rate else np.inf,
-            lambda w: float(rate * np.expm1(min(growth * w, 700.0)) / growth),
-            lambda w: float(np.log(rate) + growth * w),
-            total,
-        )
+        log_now = float(np.log(mean) + fit.curve.log_density(fit.theta, np.ones(1), np.zeros(1))[0])
+        return _exponential(log_now, k / span) if abs(k) >= 1e-9 else _constant(float(np.exp(log_now)))
     if name == "power_law":
         b = float(fit.theta[0])
         return _Wait(
             mean * b,
             lambda m: float(span * np.expm1(np.log1p(m / n) / b)),
-            lambda w: float(n * np.expm1(min(b * np.log1p(w / span), 700.0))),
+            lambda w: float(n * np.expm1(b * np.log1p(w / span))) if b * np.log1p(w / span) < 650.0 else np.inf,
             lambda w: float(np.log(mean * b) + (b - 1) * np.log1p(w / span)),
             np.inf,
         )
@@ -209,6 +199,27 @@ def _wait(fit: Fit) -> _Wait:
         )
     after = fit.parameters["after"] if name == "step" else mean
     return _constant(mean if after is None else after)
+
+
+def _exponential(log_now: float, growth: float) -> _Wait:
+    """A rate exp(log_now + growth w), in logarithms throughout: a steep law may stand at a rate that underflows, or leave it at once."""
+    steep = float(np.log(abs(growth)))
+
+    def inverse(m: float) -> float:
+        z = float(np.log(m)) + steep - log_now
+        if growth > 0:
+            return float(np.logaddexp(0.0, z)) / growth
+        return float(np.log1p(-np.exp(z))) / growth if z < 0 else np.inf
+
+    def expected(w: float) -> float:
+        if growth > 0:
+            z = log_now - steep + growth * w + float(np.log(-np.expm1(-growth * w)))
+        else:
+            z = log_now - steep + float(np.log(-np.expm1(growth * w)))
+        return float(np.exp(z)) if z < 700.0 else np.inf
+
+    total = np.inf if growth > 0 else float(np.exp(log_now - steep))
+    return _Wait(float(np.exp(log_now)), inverse, expected, lambda w: log_now + growth * w, total)
 
 
 def _constant(rate: float) -> _Wait:

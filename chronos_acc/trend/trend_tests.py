@@ -48,7 +48,8 @@ class TestRow:
 
     p_value: asymptotic, two-sided as the doubled smaller tail, anderson_darling upper tail. p_exact: from the conditional law of
     the null, same tails. p_adjusted: step-down min-p in its family, the renewal family after the steady one. p_holm: Holm in the
-    same order. None where not computed.
+    same order. None where not computed. z of reverse_arrangements carries the ordinary continuity correction, one half towards the
+    mean (the correction is sometimes printed the other way), and the variance is that of the ties.
     """
 
     __test__ = False  # not a test case of the test runner

@@ -37,6 +37,13 @@ def test_quantile_expected_number_and_density_agree() -> None:
         assert np.exp(wait.log_rate(0.0)) == pytest.approx(wait.rate)
 
 
+def test_a_law_so_steep_that_its_rate_underflows_still_answers() -> None:
+    for dates in (np.append(np.linspace(1, 1.001, 20), [90, 95.0]), np.append([2.0, 3], np.linspace(98.999, 99, 20))):
+        result = ask(dates, 100)
+        assert all(0 <= f.pit <= 1 for f in result.forecasts) and any(f.log_density is None for f in result.forecasts)
+        assert all(r.chance_never <= 1 for r in result.rows)
+
+
 def test_the_steady_law_waits_exponentially(speeding: NextEvent) -> None:
     row = speeding.rows[0]
     assert row.law == "steady" and row.rate_now == pytest.approx(0.5)
