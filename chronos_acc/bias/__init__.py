@@ -7,10 +7,23 @@ from collections.abc import Sequence
 from dataclasses import replace
 
 from ..errors import RecordRefused, WrongUse
-from ..progress import Tell
 from . import (
-    completeness, covariates, dating, depth, equal_effort, exposure, false_splits, granularity, importance, leave_out, lists, merging, recall_decay, recent_end, support,
-)  # fmt: skip
+    completeness,
+    covariates,
+    dating,
+    depth,
+    equal_effort,
+    exposure,
+    false_splits,
+    granularity,
+    importance,
+    leave_out,
+    lists,
+    merging,
+    recall_decay,
+    recent_end,
+    support,
+)
 from .check import Answer, Check, Context, Row
 from .growth import growth
 from .result import Bias, questions
@@ -40,7 +53,8 @@ __all__ = ["CHECKS", "Answer", "Bias", "Check", "Context", "Row", "run_checks"]
 def run_checks(context: Context, names: Sequence[str] | None = None) -> Bias:
     """Run the checks named, all by default, in the order of ``CHECKS``.
 
-    A check that cannot run has no rows and a sentence in ``notes``. Raises WrongUse for a name that is no check, RecordRefused below three milestones.
+    A check that cannot run has no rows and a sentence in ``notes``. Raises WrongUse for a name that is no check, RecordRefused
+    below three milestones.
     """
     known = [c.name for c in CHECKS]
     unknown = [n for n in names or () if n not in known]
@@ -49,7 +63,8 @@ def run_checks(context: Context, names: Sequence[str] | None = None) -> Bias:
     window = context.record.window
     if len(window.times) < LEAST_MILESTONES:
         raise RecordRefused(
-            f"{len(window.times)} milestone{'' if len(window.times) == 1 else 's'} in the window; checks need {LEAST_MILESTONES}: widen the window or load more"
+            f"{len(window.times)} milestone{'' if len(window.times) == 1 else 's'} in the window; "
+            f"checks need {LEAST_MILESTONES}: widen the window or load more"
         )
     chosen = [c for c in CHECKS if names is None or c.name in names]
     answers: dict[str, Answer] = {}

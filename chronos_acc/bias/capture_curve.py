@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""What steady lists would show, given how likely each list names a milestone of a given age: the capture curve fitted to their overlap, without its growth."""
+"""What steady lists would show, given how likely each list names a milestone of a given age: the capture curve fitted to their
+overlap, without its growth.
+"""
 
 from __future__ import annotations
 
@@ -23,8 +25,8 @@ _CELLS = 500_000  # replicates are taken in chunks of about this many probabilit
 def capture_curve(record: Record) -> CaptureFit | None:
     """The joint fit of growth and naming on the scale of age with the lower AIC.
 
-    Growth is free, so that the overlap of the lists and not their crowding decides the curve. None where fewer than two independent lists, or fewer than five
-    shared milestones, speak.
+    Growth is free, so that the overlap of the lists and not their crowding decides the curve. None where fewer than two
+    independent lists, or fewer than five shared milestones, speak.
     """
     window = record.window
     names, mentions = grouped(record)
@@ -38,7 +40,9 @@ def capture_curve(record: Record) -> CaptureFit | None:
 
 
 def at_least(logits: Floats, threshold: int) -> Floats:
-    """(..., q) probability that at least ``threshold`` of the lists name a milestone, from logits (..., k, q): Poisson-binomial by recursion."""
+    """(..., q) probability that at least ``threshold`` of the lists name a milestone, from logits (..., k, q): Poisson-binomial
+    by recursion.
+    """
     k = logits.shape[-2]
     if threshold > k:
         return np.zeros(logits.shape[:-2] + logits.shape[-1:])
@@ -57,10 +61,11 @@ def at_least(logits: Floats, threshold: int) -> Floats:
 
 
 def steady_growth(curve: CaptureFit, threshold: int, n: int, span: float, *, rng: np.random.Generator, size: int) -> Floats:
-    """(size,) growth per year, fewer for large records, that a steady rate shows in n milestones named by at least ``threshold`` lists, in the last ``span`` years up to the present.
+    """(size,) growth per year, fewer for large records, that a steady rate shows in n milestones named by at least ``threshold``
+    lists, in the last ``span`` years up to the present.
 
-    Each replicate takes its own curve from the law of the fitted parameters (where the fit gives one), so the band holds both chance and what is not known of
-    the curve.
+    Each replicate takes its own curve from the law of the fitted parameters (where the fit gives one), so the band holds both
+    chance and what is not known of the curve.
     """
     size = min(size, max(LEAST, MOST_CELLS // max(n, 1)))
     middle, edges, weight = _cells(curve, span)

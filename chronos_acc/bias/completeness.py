@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """Completeness: growth after correction for what independent lists missed, and the share they name by range of age.
 
-Rows of the joint likelihood first, one a scale of age, then one a range of age with the counts of overlap. It corrects only for what the lists missed
-independently of one another: what all of them forgot no overlap can show.
+Rows of the joint likelihood first, one a scale of age, then one a range of age with the counts of overlap. It corrects only for
+what the lists missed independently of one another: what all of them forgot no overlap can show.
 """
 
 from __future__ import annotations
@@ -22,9 +22,21 @@ from .rows import number, record_row, stands, years
 
 NULL = "steady, after correction"
 BIN_COLUMNS = (
-    "age_from", "age_to", "shared", "method", "total", "total_low", "total_high", "completeness", "completeness_low", "completeness_high", "chao_bound", "chapman",
-    "log_linear_low", "log_linear_high",
-)  # fmt: skip
+    "age_from",
+    "age_to",
+    "shared",
+    "method",
+    "total",
+    "total_low",
+    "total_high",
+    "completeness",
+    "completeness_low",
+    "completeness_high",
+    "chao_bound",
+    "chapman",
+    "log_linear_low",
+    "log_linear_high",
+)
 
 
 def run(context: Context) -> Answer:
@@ -42,7 +54,17 @@ def run(context: Context) -> Answer:
         if part is None:
             continue
         columns = {k: v for k, v in asdict(b).items() if k in BIN_COLUMNS}
-        rows.append(record_row("completeness", f"ages {years(b.age_from)} to {years(b.age_to)}", part, published, kind="age range", named=b.named, **columns))
+        rows.append(
+            record_row(
+                "completeness",
+                f"ages {years(b.age_from)} to {years(b.age_to)}",
+                part,
+                published,
+                kind="age range",
+                named=b.named,
+                **columns,
+            )
+        )
     shown = rows[at]
     summary = (
         f"after correction for what {len(capture.lists)} independent lists missed, growth is {number(shown.estimate)} a year "
@@ -61,15 +83,36 @@ def _scale(capture: Capture, i: int, published: Growth) -> Row:
         if steady is not None:
             gain = max(0.0, found.log_likelihood - steady.log_likelihood)
             p = max(float(erfc(gain**0.5)), SMALLEST_P)  # chi-square on one degree of freedom, of twice the gain
-    more: dict[str, Any] = {"low": found.low, "high": found.high, "kind": "joint likelihood", "age_effect": found.age_effect, "aic": found.aic}
-    more.update(headline=found.headline, shared=capture.shared, **{f"share_{s.at.replace(' ', '_')}": s.share for s in capture.shares if found.headline})
-    more.update({f"share_{s.at.replace(' ', '_')}_{end}": getattr(s, end) for s in capture.shares if found.headline for end in ("low", "high")})
+    more: dict[str, Any] = {
+        "low": found.low,
+        "high": found.high,
+        "kind": "joint likelihood",
+        "age_effect": found.age_effect,
+        "aic": found.aic,
+    }
+    more.update(
+        headline=found.headline,
+        shared=capture.shared,
+        **{f"share_{s.at.replace(' ', '_')}": s.share for s in capture.shares if found.headline},
+    )
+    more.update(
+        {f"share_{s.at.replace(' ', '_')}_{end}": getattr(s, end) for s in capture.shares if found.headline for end in ("low", "high")}
+    )
     low = None if found.low is None else found.low - found.growth
     high = None if found.high is None else found.high - found.growth
     return Row(
-        "completeness", f"joint likelihood, {found.scale}", capture.n, found.growth, NULL, low, 0.0, high, p,
-        stands(found.growth, p, published.estimate), more,
-    )  # fmt: skip
+        "completeness",
+        f"joint likelihood, {found.scale}",
+        capture.n,
+        found.growth,
+        NULL,
+        low,
+        0.0,
+        high,
+        p,
+        stands(found.growth, p, published.estimate),
+        more,
+    )
 
 
 def _against_the_tipping_point(context: Context, capture: Capture) -> str:
@@ -83,5 +126,8 @@ def _against_the_tipping_point(context: Context, capture: Capture) -> str:
 
 
 CHECK = Check(
-    "completeness", "Does the trend stand after correction for what independent lists missed?", "two independent lists that share ten milestones", run
+    "completeness",
+    "Does the trend stand after correction for what independent lists missed?",
+    "two independent lists that share ten milestones",
+    run,
 )

@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""Covariates: what moves with the date. Nothing is adjusted for: precision, support, category and list are consequences of age as much as its company."""
+"""Covariates: what moves with the date. Nothing is adjusted for: precision, support, category and list are consequences of age as
+much as its company.
+"""
 
 from __future__ import annotations
 
@@ -33,7 +35,9 @@ def run(context: Context) -> Answer:
     if not rows:
         return Answer(notes=("covariates: nothing differs between milestones but their dates",))
     summary = f"moves with the date: {', '.join(moving)}; never adjusted for" if moving else "nothing moves with the date at the 5 % level"
-    rows.insert(0, record_row("covariates", "all milestones, unadjusted", record, published, covariate=None, moves_with=None, moves_with_p=None))
+    rows.insert(
+        0, record_row("covariates", "all milestones, unadjusted", record, published, covariate=None, moves_with=None, moves_with_p=None)
+    )
     at = 0  # nothing here says whether the trend stands: the rows below it are picked by a consequence of age
     return Answer(tuple(rows), summary, "which columns move with the date, without adjusting for them", (), at)
 
@@ -68,7 +72,11 @@ def _halves(record: Record, name: str, value: Floats, published: Growth, tau: fl
     out = []
     for side, keep in (("lower", known & ~upper), ("upper", upper)):
         if keep.any():
-            out.append(record_row("covariates", f"{name}, {side} half", record.only(keep=keep), published, covariate=name, moves_with=tau, moves_with_p=p))
+            out.append(
+                record_row(
+                    "covariates", f"{name}, {side} half", record.only(keep=keep), published, covariate=name, moves_with=tau, moves_with_p=p
+                )
+            )
     return out
 
 
@@ -85,8 +93,9 @@ def _classes(record: Record, name: str, labels: tuple[str | None, ...], publishe
     if p is not None and p < LEVEL:
         moving.append(f"{name} (p {number(p)})")
     return [
-        record_row("covariates", f"{name} {x}", record.only(category=x), published, covariate=name, moves_with=None, moves_with_p=p) for x in names
-    ]  # fmt: skip
+        record_row("covariates", f"{name} {x}", record.only(category=x), published, covariate=name, moves_with=None, moves_with_p=p)
+        for x in names
+    ]
 
 
 def _lists(record: Record, published: Growth, moving: list[str]) -> list[Row]:
@@ -100,7 +109,11 @@ def _lists(record: Record, published: Growth, moving: list[str]) -> list[Row]:
         if p is not None and p < LEVEL:
             moving.append(f"list {x} (tau {tau:.2f})")
         if named.any():
-            out.append(record_row("covariates", f"named by {x}", record.only(keep=named), published, covariate="list", moves_with=tau, moves_with_p=p))
+            out.append(
+                record_row(
+                    "covariates", f"named by {x}", record.only(keep=named), published, covariate="list", moves_with=tau, moves_with_p=p
+                )
+            )
     return out
 
 

@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""Dating: heaping of digits by era and list, all dates coarsened to one relative precision, drawn dates, and draws that follow one list at a time."""
+"""Dating: heaping of digits by era and list, all dates coarsened to one relative precision, drawn dates, and draws that follow
+one list at a time.
+"""
 
 from __future__ import annotations
 
@@ -48,7 +50,9 @@ def _drawn(context: Context, published: Growth) -> list[Row]:
     if not (record.high > record.low).any() or not context.draws:
         return []
     draws = _draws(context)
-    found = drawn_row("dating", "drawn dates", drawn_growth(record.window, window_draws(record, draws, context.seed)), published, kind="drawn")
+    found = drawn_row(
+        "dating", "drawn dates", drawn_growth(record.window, window_draws(record, draws, context.seed)), published, kind="drawn"
+    )
     return [] if found is None else [found]
 
 
@@ -120,9 +124,16 @@ def _coarse(context: Context, published: Growth) -> list[Row]:
         null = _coarsened(null_ages, precision, window.span)
         rows.append(
             simulated_row(
-                "dating", f"all dates to {precision:.0%} of age", window.n, float(found), "steady, dated alike", null, published, kind="coarsened",
+                "dating",
+                f"all dates to {precision:.0%} of age",
+                window.n,
+                float(found),
+                "steady, dated alike",
+                null,
+                published,
+                kind="coarsened",
                 precision=precision,
-            )  # fmt: skip
+            )
         )
     return rows
 
@@ -142,7 +153,9 @@ def _digits(context: Context, published: Growth) -> list[Row]:
     value, source = np.floor(record.low[yearly]), record.source[yearly]
     cuts = np.quantile(value, [0.0, 1 / 3, 2 / 3, 1.0])
     eras = [("all dates to the year", -np.inf, np.inf)]
-    eras += [(f"{years(a)} to {years(b)}", a, b if i == 2 else b - 1) for i, (a, b) in enumerate(zip(cuts[:-1], cuts[1:], strict=True)) if b > a]
+    eras += [
+        (f"{years(a)} to {years(b)}", a, b if i == 2 else b - 1) for i, (a, b) in enumerate(zip(cuts[:-1], cuts[1:], strict=True)) if b > a
+    ]
     rows = []
     for stream, (name, low, high) in enumerate(eras):
         inside = (value >= low) & (value <= high)
@@ -150,8 +163,9 @@ def _digits(context: Context, published: Growth) -> list[Row]:
         rows.append((name, value[inside], part, stream))
     rows += [
         (f"list {x}", value[source == j], record.only(sources=[x]) if len(record.lists) > 1 else record, 100 + j)
-        for j, x in enumerate(record.lists) if len(record.lists) > 1
-    ]  # fmt: skip
+        for j, x in enumerate(record.lists)
+        if len(record.lists) > 1
+    ]
     out = []
     for name, digits, part, stream in rows:
         if len(digits) < FEWEST_DIGITS or part is None:

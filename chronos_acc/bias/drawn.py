@@ -20,7 +20,9 @@ Floats = npt.NDArray[np.float64]
 
 @dataclass(frozen=True)
 class Drawn:
-    """Per draw: growth per year, its two-sided p under a steady rate, counted events; ``swaps`` the share of neighbouring pairs that change places."""
+    """Per draw: growth per year, its two-sided p under a steady rate, counted events; ``swaps`` the share of neighbouring pairs
+    that change places.
+    """
 
     growth: Floats
     p_value: Floats
@@ -61,9 +63,16 @@ def drawn_row(check: str, setting: str, found: Drawn, published: Growth, **more:
     centre = growth_of_mean(float(found.mean[middle]), int(found.n[middle]), float(found.span[middle]))
     low, high = np.quantile(found.growth, (0.025, 0.975))
     return row(
-        check, setting, centre, published, draws_low=float(low), draws_high=float(high), draws_significant=float((found.p_value < LEVEL).mean()),
-        swap_share=found.swaps, **more,
-    )  # fmt: skip
+        check,
+        setting,
+        centre,
+        published,
+        draws_low=float(low),
+        draws_high=float(high),
+        draws_significant=float((found.p_value < LEVEL).mean()),
+        swap_share=found.swaps,
+        **more,
+    )
 
 
 def window_draws(record: Record, draws: int, seed: int) -> Floats:

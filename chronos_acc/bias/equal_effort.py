@@ -1,9 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """Equal effort: distinct milestones per year of each bin, with mentions thinned to equal coverage, and the growth of that rate.
 
-Coverage of a bin is Good's 1 - f1/m, the chance that one more mention names a milestone already named (m mentions, f1 milestones named once; Good 1953). Bins are
-thinned to the lowest coverage among them, in expectation (Chao & Jost 2012, Ecology 93:2533-2547). Never to equal counts per unit of log age: that would build
-picking evenly per log age into the data.
+Coverage of a bin is Good's 1 - f1/m, the chance that one more mention names a milestone already named (m mentions, f1 milestones
+named once; Good 1953). Bins are thinned to the lowest coverage among them, in expectation (Chao & Jost 2012, Ecology
+93:2533-2547). Never to equal counts per unit of log age: that would build picking evenly per log age into the data.
 """
 
 from __future__ import annotations
@@ -40,7 +40,9 @@ def run(context: Context) -> Answer:
     ages = window.present - window.counted
     rows = [r for kind in ("calendar", "log age") if (r := _row(context, window, published, ages, support, len(names), kind)) is not None]
     if not rows:
-        return Answer(notes=(f"equal_effort: fewer than two bins hold {FEWEST_MENTIONS} mentions and {FEWEST_SHARED} shared milestones each",))
+        return Answer(
+            notes=(f"equal_effort: fewer than two bins hold {FEWEST_MENTIONS} mentions and {FEWEST_SHARED} shared milestones each",)
+        )
     at = telling(rows, published)
     shown = rows[at] if at is not None else rows[0]
     summary = f"at equal coverage ({shown.more['coverage']:.2f}) growth is {number(shown.estimate)} a year; rows: {count(rows)}"
@@ -72,13 +74,24 @@ def _row(context: Context, window: Window, published: Growth, ages: Floats, supp
     p = rank_p(mean, means)  # growth is a monotone function of the mean age
     more = {"bins": len(edges) - 1, "coverage": float(coverage[0]), "distinct": float(distinct[0].sum()), "youngest_edge": float(edges[1])}
     return Row(
-        "equal_effort", f"{kind}, {len(edges) - 1} bins", len(ages), estimate, "steady, mentions shuffled", low, median, high, p,
-        stands(estimate, p, published.estimate), more,
-    )  # fmt: skip
+        "equal_effort",
+        f"{kind}, {len(edges) - 1} bins",
+        len(ages),
+        estimate,
+        "steady, mentions shuffled",
+        low,
+        median,
+        high,
+        p,
+        stands(estimate, p, published.estimate),
+        more,
+    )
 
 
 def _edges(ages: Floats, support: Ints, window: Window, kind: str) -> Floats:
-    """Edges of age from the present to the start; bins join their older neighbour until each holds enough mentions and shared milestones."""
+    """Edges of age from the present to the start; bins join their older neighbour until each holds enough mentions and shared
+    milestones.
+    """
     if kind == "calendar":
         edges = np.linspace(0.0, window.span, BINS + 1)
     else:

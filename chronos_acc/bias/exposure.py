@@ -28,7 +28,8 @@ def run(context: Context) -> Answer:
     notes = []
     if year[0] > window.start or year[-1] < window.present - 1.0:
         notes.append(
-            f"exposure: known from {year[0]:g} to {year[-1]:g}, the window runs from {window.start:g} to {window.present:g}; held constant beyond its ends"
+            f"exposure: known from {year[0]:g} to {year[-1]:g}, the window runs from {window.start:g} to {window.present:g}; "
+            "held constant beyond its ends"
         )
 
     def known(age: Floats) -> Floats:
@@ -41,20 +42,31 @@ def run(context: Context) -> Answer:
     weight = known(window.present - times)
     per_event = float(weight.mean()) * window.span / window.n
     new = row(
-        "exposure", "per unit of exposure", found, published, "steady per unit of exposure", exposure_first=float(weight[0]), exposure_last=float(weight[-1]),
+        "exposure",
+        "per unit of exposure",
+        found,
+        published,
+        "steady per unit of exposure",
+        exposure_first=float(weight[0]),
+        exposure_last=float(weight[-1]),
         exposure_per_milestone=per_event,
-    )  # fmt: skip
-    text = f"per unit of exposure growth is {number(found.estimate)} a year, while exposure itself grew {weight[-1] / weight[0]:.3g}-fold over the window"
+    )
+    fold = weight[-1] / weight[0]
+    text = f"per unit of exposure growth is {number(found.estimate)} a year, while exposure itself grew {fold:.3g}-fold over the window"
     return Answer((new,), text, "growth per unit of exposure, and where the exposure comes from", tuple(notes), 0)
 
 
 def table_of(exposure: Any) -> tuple[Floats, Floats]:
-    """Years in order and exposure above zero, from a pair of columns, a two-column array, or an object with ``years`` and ``values`` or ``exposure``."""
+    """Years in order and exposure above zero, from a pair of columns, a two-column array, or an object with ``years`` and
+    ``values`` or ``exposure``.
+    """
     if hasattr(exposure, "years"):
         columns = (exposure.years, exposure.values if hasattr(exposure, "values") else exposure.exposure)
     else:
         array = np.asarray(exposure, dtype=float)
-        columns = (array[0], array[1]) if array.ndim == 2 and len(array) == 2 else (array[:, 0], array[:, 1]) if array.ndim == 2 else ((), ())
+        columns = (
+            (array[0], array[1]) if array.ndim == 2 and len(array) == 2 else (array[:, 0], array[:, 1]) if array.ndim == 2 else ((), ())
+        )
     year, value = np.asarray(columns[0], dtype=float), np.asarray(columns[1], dtype=float)
     if not len(year) or year.shape != value.shape or not (np.isfinite(year) & np.isfinite(value)).all() or not (value > 0).all():
         raise WrongUse("exposure needs finite years, each with a value above zero; mend the table")

@@ -1,8 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
-"""False splits: what if linking missed pairs? One milestone under two titles is counted twice, and that happens where many lists speak, which is recently.
+"""False splits: what if linking missed pairs? One milestone under two titles is counted twice, and that happens where many lists
+speak, which is recently.
 
-The rate of missed pairs is estimated from the probabilities of the pairs that linking left apart. The record is then split further at that rate, at random, again
-and again; what one more dose of splits adds is taken off once, which extrapolates to a record without them (as in Cook & Stefanski 1994, to first order).
+The rate of missed pairs is estimated from the probabilities of the pairs that linking left apart. The record is then split
+further at that rate, at random, again and again; what one more dose of splits adds is taken off once, which extrapolates to a
+record without them (as in Cook & Stefanski 1994, to first order).
 """
 
 from __future__ import annotations
@@ -50,7 +52,11 @@ def run(context: Context) -> Answer:
         rows.append(row("false_splits", f"{rate:.2%} of pairs, taken back", back, published, kind=f"{kind}, extrapolated", rate=rate))
     wanted = "estimated, extrapolated" if estimated is not None else "assumed, extrapolated"
     at = next((i for i, r in enumerate(rows) if r.more["kind"] == wanted and (estimated is not None or r.more["rate"] == ASSUMED[1])), None)
-    rate_words = f"linking misses about {estimated:.1%} of true pairs" if estimated is not None else "the rate of missed pairs is assumed, not estimated"
+    rate_words = (
+        f"linking misses about {estimated:.1%} of true pairs"
+        if estimated is not None
+        else "the rate of missed pairs is assumed, not estimated"
+    )
     shown = rows[at].estimate if at is not None else None
     summary = f"{rate_words}; without their splits growth would be about {number(shown)} a year; rows: {count(rows)}"
     return Answer(tuple(rows), summary, "the estimated rate of missed pairs, and growth with their splits taken back", notes, at)

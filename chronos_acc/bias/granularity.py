@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""Granularity: fine milestones gather where much is known, which is recently. Trend level by level, and with children collapsed into their parents."""
+"""Granularity: fine milestones gather where much is known, which is recently. Trend level by level, and with children collapsed
+into their parents.
+"""
 
 from __future__ import annotations
 
@@ -25,7 +27,9 @@ def run(context: Context) -> Answer:
         rows.append(record_row("granularity", "children collapsed", part, published, kind="parent", milestones_lost=int((~keep).sum())))
     for level in levels if len(levels) > 1 else []:
         keep = np.array([x == level for x in record.level], dtype=bool)
-        rows.append(record_row("granularity", f"level {level}", record.only(keep=keep), published, kind="level", milestones_lost=int((~keep).sum())))
+        rows.append(
+            record_row("granularity", f"level {level}", record.only(keep=keep), published, kind="level", milestones_lost=int((~keep).sum()))
+        )
     at = 0 if has_parents and rows[0].n >= ENOUGH else telling(rows, published)
     shown = rows[at] if at is not None else rows[0]
     summary = f"{shown.setting}: growth {number(shown.estimate)} a year from {shown.n} milestones; rows: {count(rows)}"

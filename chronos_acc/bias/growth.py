@@ -1,8 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """Growth of the log-linear rate in closed form, beside what a steady rate gives for the same n and window.
 
-Given n events in a window, the estimate of growth is a monotone function of their mean age, and so of Laplace's statistic. Under a steady rate the mean of the
-n age fractions is the mean of n uniforms, whose law is known exactly (Irwin 1927; Hall 1927): the band and the p of a row need no simulation.
+Given n events in a window, the estimate of growth is a monotone function of their mean age, and so of Laplace's statistic. Under
+a steady rate the mean of the n age fractions is the mean of n uniforms, whose law is known exactly (Irwin 1927; Hall 1927): the
+band and the p of a row need no simulation.
 """
 
 from __future__ import annotations
@@ -83,7 +84,9 @@ def _irwin_hall(x: Floats, n: int) -> Floats:
 
 
 def _inverted(mean: Floats, n: int) -> Floats:
-    """By inverting the characteristic function of the standardised sum (Gil-Pelaez 1951): the integrand is smooth and dies like a normal one."""
+    """By inverting the characteristic function of the standardised sum (Gil-Pelaez 1951): the integrand is smooth and dies like a
+    normal one.
+    """
     z = np.minimum((0.5 - mean) * math.sqrt(12.0 * n), 8.0)  # further out the law is 0 to rounding
     t, weight = _nodes(n)
     half = t * math.sqrt(3.0 / n)

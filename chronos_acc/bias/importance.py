@@ -1,10 +1,11 @@
 # SPDX-License-Identifier: Apache-2.0
 """Importance: is the trend there among the important, and does a threshold of notability that falls towards the present make it?
 
-If only listing changes, the mix of importance changes with age: minor milestones appear late. So a class is taken as complete back to where its share among it and
-the classes above it drops (one change point after another, judged by permutation), never by its own trend, which would beg the question; where the whole mix shows
-no change with age, every class counts as complete. Pooled growth is one growth fitted to all classes, each on its own complete range, as unequal periods of
-observation are pooled in earthquake catalogues (Weichert 1980, Bull. Seismol. Soc. Am. 70:1337-1346).
+If only listing changes, the mix of importance changes with age: minor milestones appear late. So a class is taken as complete
+back to where its share among it and the classes above it drops (one change point after another, judged by permutation), never by
+its own trend, which would beg the question; where the whole mix shows no change with age, every class counts as complete. Pooled
+growth is one growth fitted to all classes, each on its own complete range, as unequal periods of observation are pooled in
+earthquake catalogues (Weichert 1980, Bull. Seismol. Soc. Am. 70:1337-1346).
 """
 
 from __future__ import annotations
@@ -26,7 +27,8 @@ MOST_CLASSES = 10
 QUANTILES = np.array([0.0, 0.25, 0.5, 0.75, 0.9])  # thresholds where importance takes more values than that
 PERMUTATIONS = 499
 GATE = 0.1  # p of the whole mix changing with age, from which classes are not looked at: all count as complete
-SUSPECT = 0.25  # p of a change of the mix from which a range counts as complete: cutting too often costs precision, cutting too seldom leaves the bias
+# p of a change of the mix from which a range counts as complete: cutting too often costs precision, too seldom leaves the bias
+SUSPECT = 0.25
 SIDE = 4  # milestones on each side of a change of the mix
 
 
@@ -58,13 +60,20 @@ def run(context: Context) -> Answer:
     left_out = int((~known).sum())
     notes = (f"importance: {left_out} milestones without importance take no part",) if left_out else ()
     return Answer(
-        tuple(rows), _sentence(rows, shown, published, (tau, tau_p, changes)), "growth pooled over the ranges in which each class is complete", notes, len(rows) - 1, shown
+        tuple(rows),
+        _sentence(rows, shown, published, (tau, tau_p, changes)),
+        "growth pooled over the ranges in which each class is complete",
+        notes,
+        len(rows) - 1,
+        shown,
     )
 
 
 @dataclass(frozen=True)
 class _Stratum:
-    """A class of importance: ages (q,) inside its complete range, how many it holds in all, the range in years, and the p of the first change of the mix."""
+    """A class of importance: ages (q,) inside its complete range, how many it holds in all, the range in years, and the p of the
+    first change of the mix.
+    """
 
     ages: Floats
     n: int
@@ -73,23 +82,39 @@ class _Stratum:
 
 
 def _row(record: Record, edges: Floats, i: int, stratum: _Stratum, pooled: Growth, published: Growth) -> Row:
-    """Milestones of at least one importance; beside them the class that starts there, where it is complete, and the classes from it upward pooled."""
+    """Milestones of at least one importance; beside them the class that starts there, where it is complete, and the classes from
+    it upward pooled.
+    """
     low, high = float(edges[i]), float(edges[i + 1]) if i + 1 < len(edges) else None
     with np.errstate(invalid="ignore"):
         whole = growth(record.only(keep=(record.importance >= low) & (record.importance < (np.inf if high is None else high))).window)
-    inner = growth_of_mean(float(stratum.ages.mean() / stratum.span), len(stratum.ages), stratum.span) if len(stratum.ages) else Growth(0, None)
+    inner = (
+        growth_of_mean(float(stratum.ages.mean() / stratum.span), len(stratum.ages), stratum.span) if len(stratum.ages) else Growth(0, None)
+    )
     more = {
-        "class_below": high, "class_n": stratum.n, "class_estimate": whole.estimate, "class_p_value": whole.p_value, "complete_to_age": stratum.span,
-        "mix_p_value": stratum.mix_p, "complete_n": inner.n, "complete_estimate": inner.estimate, "complete_p_value": inner.p_value, "pooled_n": pooled.n,
-        "pooled_estimate": pooled.estimate, "pooled_low": pooled.low, "pooled_high": pooled.high, "pooled_p_value": pooled.p_value,
+        "class_below": high,
+        "class_n": stratum.n,
+        "class_estimate": whole.estimate,
+        "class_p_value": whole.p_value,
+        "complete_to_age": stratum.span,
+        "mix_p_value": stratum.mix_p,
+        "complete_n": inner.n,
+        "complete_estimate": inner.estimate,
+        "complete_p_value": inner.p_value,
+        "pooled_n": pooled.n,
+        "pooled_estimate": pooled.estimate,
+        "pooled_low": pooled.low,
+        "pooled_high": pooled.high,
+        "pooled_p_value": pooled.p_value,
         "pooled_stands": stands(pooled.estimate, pooled.p_value, published.estimate),
-    }  # fmt: skip
+    }
     return record_row("importance", low, record.only(min_importance=low), published, **more)
 
 
 def _sentence(rows: Sequence[Row], pooled: Row, published: Growth, mix: tuple[float, float, float]) -> str:
     tau, tau_p, changes = mix
-    moves = f"importance {'rises' if tau > 0 else 'falls'} with age (Kendall's tau {tau:.2f}, p = {number(tau_p)}; higher beyond some age: p = {number(changes)})"
+    way = "rises" if tau > 0 else "falls"
+    moves = f"importance {way} with age (Kendall's tau {tau:.2f}, p = {number(tau_p)}; higher beyond some age: p = {number(changes)})"
     text = f"{moves}; over the ranges in which each class is complete growth is {number(pooled.estimate)} a year; rows: {count(rows)}"
     speeding = published.estimate is not None and published.estimate > 0
     if speeding and changes < GATE and pooled.stands != "yes":
@@ -99,7 +124,9 @@ def _sentence(rows: Sequence[Row], pooled: Row, published: Growth, mix: tuple[fl
     return text
 
 
-def _complete(ages: Floats, mine: npt.NDArray[np.bool_], from_here_up: npt.NDArray[np.bool_], span: float, rng: np.random.Generator) -> tuple[float, float | None]:
+def _complete(
+    ages: Floats, mine: npt.NDArray[np.bool_], from_here_up: npt.NDArray[np.bool_], span: float, rng: np.random.Generator
+) -> tuple[float, float | None]:
     """Age back to which a class keeps its share among the classes from it upward, and the p of the first change found."""
     order = np.argsort(ages[from_here_up], kind="stable")
     age, label = ages[from_here_up][order], mine[from_here_up][order].astype(float)
@@ -118,7 +145,9 @@ def _complete(ages: Floats, mine: npt.NDArray[np.bool_], from_here_up: npt.NDArr
 
 
 def _change(label: Floats) -> tuple[npt.NDArray[np.int64], Floats]:
-    """Per row of labels, youngest first: the split before which their share is higher, and its gain in log-likelihood; 0 where there is none."""
+    """Per row of labels, youngest first: the split before which their share is higher, and its gain in log-likelihood; 0 where
+    there is none.
+    """
     n = label.shape[1]
     young = np.arange(SIDE, n - SIDE + 1)
     total = np.cumsum(label, axis=1)
@@ -148,7 +177,9 @@ def _pooled(context: Context, strata: Sequence[_Stratum]) -> Growth:
     observed = float(sum(a.sum() for a, _ in used))
 
     def estimate(total: float) -> float:
-        return float(brentq(lambda k: float((counts * ratio * _mean_age(k * ratio)).sum()) - total / longest, -1e7, 1e7, xtol=1e-10, rtol=1e-12))
+        return float(
+            brentq(lambda k: float((counts * ratio * _mean_age(k * ratio)).sum()) - total / longest, -1e7, 1e7, xtol=1e-10, rtol=1e-12)
+        )
 
     def per_event(k: float) -> float:
         return -k * observed / longest / n - float((counts * _log_mass(k * ratio)).sum()) / n
@@ -175,7 +206,9 @@ def _log_mass(k: Floats) -> Floats:
 
 
 def mix_changes(ages: Floats, value: Floats, rng: np.random.Generator) -> float:
-    """p that importance is higher beyond some age than before it: the largest rank sum over all splits (Pettitt 1979, Appl. Stat. 28:126-135), permuted."""
+    """p that importance is higher beyond some age than before it: the largest rank sum over all splits (Pettitt 1979, Appl. Stat.
+    28:126-135), permuted.
+    """
     from scipy.stats import rankdata
 
     rank = rankdata(value[np.argsort(ages, kind="stable")])

@@ -28,7 +28,11 @@ def run(context: Context) -> Answer:
         at = telling(rows, published)
     rows += single + greedy
     return Answer(
-        tuple(rows), f"rows: {count(rows)}; {sentence}", "the list or category whose loss matters most, and how many milestones carry the trend", (), at
+        tuple(rows),
+        f"rows: {count(rows)}; {sentence}",
+        "the list or category whose loss matters most, and how many milestones carry the trend",
+        (),
+        at,
     )
 
 
@@ -38,7 +42,9 @@ def _lists(record: Record, published: Growth) -> list[Row]:
         if len(record.lists) < 2:
             break
         rest = record.only(sources=[x for i, x in enumerate(record.lists) if i != j])
-        rows.append(record_row("leave_out", f"without list {name}", rest, published, left_out="list", milestones_lost=len(record) - len(rest)))
+        rows.append(
+            record_row("leave_out", f"without list {name}", rest, published, left_out="list", milestones_lost=len(record) - len(rest))
+        )
     return rows
 
 
@@ -48,7 +54,9 @@ def _categories(record: Record, published: Growth) -> list[Row]:
     for name in names if len(names) > 1 else []:
         keep = np.array([c != name for c in record.category], dtype=bool)
         rest = record.only(keep=keep)
-        rows.append(record_row("leave_out", f"without category {name}", rest, published, left_out="category", milestones_lost=int((~keep).sum())))
+        rows.append(
+            record_row("leave_out", f"without category {name}", rest, published, left_out="category", milestones_lost=int((~keep).sum()))
+        )
     return rows
 
 
@@ -67,7 +75,9 @@ def _epochs(context: Context, published: Growth) -> list[Row]:
         if high <= low or not pieces or not len(left):
             continue
         rng = np.random.default_rng([context.seed, 7301, i])
-        remains = offset(window.span, float((window.present - left).min()), pieces=[(window.present - b, window.present - a) for a, b in pieces])
+        remains = offset(
+            window.span, float((window.present - left).min()), pieces=[(window.present - b, window.present - a) for a, b in pieces]
+        )
         found = remains.growth(float((window.present - left).mean()), len(left), rng=rng, size=context.replicates)
         rows.append(
             row("leave_out", f"without {years(low)} to {years(high)}", found, published, left_out="epoch", milestones_lost=int(out.sum()))
@@ -76,7 +86,9 @@ def _epochs(context: Context, published: Growth) -> list[Row]:
 
 
 def _milestones(record: Record, published: Growth) -> tuple[list[Row], list[Row], str]:
-    """Each milestone left out in turn: the two intervals beside it merge and all is fitted again. Then the most telling one, again and again."""
+    """Each milestone left out in turn: the two intervals beside it merge and all is fitted again. Then the most telling one,
+    again and again.
+    """
     window = record.window
     if published.estimate is None or published.p_value is None or window.n < 3:
         return [], [], "too few milestones to leave any out"
@@ -119,8 +131,8 @@ def _without(record: Record, positions: list[int], published: Growth, setting: s
 def _greedy(record: Record, sign: float) -> list[int] | None:
     """Positions in the window whose loss ends the significance, most telling first; None where half of them do not suffice.
 
-    At one n and window, p depends on the mean age alone, so the most telling counted milestone is the youngest of a speeding record and the oldest of a slowing
-    one; the only rival is the milestone that opens the window.
+    At one n and window, p depends on the mean age alone, so the most telling counted milestone is the youngest of a speeding
+    record and the oldest of a slowing one; the only rival is the milestone that opens the window.
     """
     window = record.window
     times = window.times

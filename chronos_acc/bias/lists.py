@@ -33,7 +33,9 @@ def run(context: Context) -> Answer:
     at = len(rows) - 1 if pooled is not None else telling(rows, published)
     agree = "" if pooled is None or pooled.p_equal is None else f"equal growth in all lists has p = {number(pooled.p_equal)}; "
     shown = "" if pooled is None else f"pooled growth {number(pooled.mean)} a year ({number(pooled.low)} to {number(pooled.high)}); "
-    return Answer(tuple(rows), f"{agree}{shown}rows: {count(rows)}", "growth of each list on the common window, and whether they agree", notes, at)
+    return Answer(
+        tuple(rows), f"{agree}{shown}rows: {count(rows)}", "growth of each list on the common window, and whether they agree", notes, at
+    )
 
 
 def _replicates(context: Context) -> int:
@@ -47,12 +49,34 @@ def _pooled(p: PooledRow, n: int, published: float | None, start: float, present
     error = (p.high - p.low) / 2 / float(stdtrit(df, 0.975))
     value = 2.0 * float(stdtr(df, -abs(p.mean) / error)) if error > 0 else None
     more = {
-        "low": p.low, "high": p.high, "kind": "pooled", "start": start, "present": present, "k": p.k, "p_equal": p.p_equal, "i2": p.i2, "tau2": p.tau2,
-        "prediction_low": p.prediction_low, "prediction_high": p.prediction_high, "funnel_p": p.funnel_p,
-    }  # fmt: skip
+        "low": p.low,
+        "high": p.high,
+        "kind": "pooled",
+        "start": start,
+        "present": present,
+        "k": p.k,
+        "p_equal": p.p_equal,
+        "i2": p.i2,
+        "tau2": p.tau2,
+        "prediction_low": p.prediction_low,
+        "prediction_high": p.prediction_high,
+        "funnel_p": p.funnel_p,
+    }
     return Row(
-        "lists", "pooled", n, p.mean, "no growth in any list", p.low - p.mean, 0.0, p.high - p.mean, value, stands(p.mean, value, published), more
-    )  # fmt: skip
+        "lists",
+        "pooled",
+        n,
+        p.mean,
+        "no growth in any list",
+        p.low - p.mean,
+        0.0,
+        p.high - p.mean,
+        value,
+        stands(p.mean, value, published),
+        more,
+    )
 
 
-CHECK = Check("lists", "Do the lists, taken as studies of one thing, agree?", "two independent lists with more than eight milestones each", run)
+CHECK = Check(
+    "lists", "Do the lists, taken as studies of one thing, agree?", "two independent lists with more than eight milestones each", run
+)

@@ -32,7 +32,9 @@ def run(context: Context) -> Answer:
             context.tell("merging anew", i / len(THRESHOLDS))
             linked = link(entries, context.decisions, LinkOptions(accept=accept, review=min(accept, 0.1)))
             part = merged(record, entries, linked.milestone, belongs)
-            rows.append(record_row("merging", f"accept from {accept:g}", part, published, kind="threshold", accept=accept, milestones=len(part)))
+            rows.append(
+                record_row("merging", f"accept from {accept:g}", part, published, kind="threshold", accept=accept, milestones=len(part))
+            )
     else:
         notes = (f"merging: above {MOST_ENTRIES:,} entries the threshold is not varied; link with another --accept and compare",)
     prefer = [("preferred", x) for x in record.lists]

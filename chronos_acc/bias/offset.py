@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """Growth beside a known factor of the rate: a listed share that falls with age, an exposure, or a window with a hole in it.
 
-The rate is known(age) times exp(-g age), up to a scale. Given n events the mean age is enough for g, as in the plain log-linear law, and under g = 0 ages are
-drawn from known(age) itself, which gives the null of the same estimate.
+The rate is known(age) times exp(-g age), up to a scale. Given n events the mean age is enough for g, as in the plain log-linear
+law, and under g = 0 ages are drawn from known(age) itself, which gives the null of the same estimate.
 """
 
 from __future__ import annotations
@@ -104,7 +104,8 @@ def _newton(target: float, ages: Floats, log_mass: Floats) -> float:
 def offset(
     span: float, smallest: float, known: Callable[[Floats], Floats] | None = None, pieces: Sequence[tuple[float, float]] | None = None
 ) -> Offset:
-    """Cells fine near the present and wide far from it; ``pieces`` are the stretches of age (low, high) that count, all of the window by default.
+    """Cells fine near the present and wide far from it; ``pieces`` are the stretches of age (low, high) that count, all of the
+    window by default.
 
     ``smallest`` is the age to be resolved, ``known`` maps ages (q,) to the factor, 1 by default.
     """

@@ -1,9 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """Recall decay: what remains of the growth if listing forgets with age, and how fast forgetting would have to be.
 
-The estimate of a row is the growth left beside a listed share of 2^(-age/h), or of 1/(1 + age/s). Steady listing forgotten at that speed is the null. At the fitted
-speed nothing is left by construction, so that row carries no p: the fitted half-life equals the doubling time, and one list cannot say which of the two it is.
-Rows by range of age show the growth within the range, and what forgetting at the fitted speed would have left unlisted there.
+The estimate of a row is the growth left beside a listed share of 2^(-age/h), or of 1/(1 + age/s). Steady listing forgotten at
+that speed is the null. At the fitted speed nothing is left by construction, so that row carries no p: the fitted half-life equals
+the doubling time, and one list cannot say which of the two it is. Rows by range of age show the growth within the range, and what
+forgetting at the fitted speed would have left unlisted there.
 """
 
 from __future__ import annotations
@@ -39,7 +40,9 @@ def run(context: Context) -> Answer:
             continue
         rows.append(_row(context, window, published, form.form, form.estimate, "fitted", f"{form.form}, fitted", form))
         if form.critical is not None:
-            rows.append(_row(context, window, published, form.form, form.critical, "critical", f"{form.form}, just ends the significance", form))
+            rows.append(
+                _row(context, window, published, form.form, form.critical, "critical", f"{form.form}, just ends the significance", form)
+            )
     for share in GIVEN:
         half_life = share * window.span
         rows.append(_row(context, window, published, "exponential", half_life, "given", f"half-life {years(half_life)} years", None))
@@ -51,9 +54,21 @@ def run(context: Context) -> Answer:
         rows.extend(_by_age(context, published, named))
     notes = tuple(f"recall_decay: {n}" for n in found.notes)
     if found.adequate is None and refused:
-        return Answer(tuple(rows), _sentence(found), "that no form of forgetting tried gives this shape, and which were tried", notes, _position(rows, "shape"))
+        return Answer(
+            tuple(rows),
+            _sentence(found),
+            "that no form of forgetting tried gives this shape, and which were tried",
+            notes,
+            _position(rows, "shape"),
+        )
     at = next((i for i, r in enumerate(rows) if named is not None and r.more["kind"] == "fitted" and r.more["form"] == named.form), 0)
-    return Answer(tuple(rows), _sentence(found), "the half-life of forgetting that would suffice, the listed share it implies, and the unlisted number", notes, at)
+    return Answer(
+        tuple(rows),
+        _sentence(found),
+        "the half-life of forgetting that would suffice, the listed share it implies, and the unlisted number",
+        notes,
+        at,
+    )
 
 
 def _position(rows: list[Row], kind: str) -> int:
@@ -63,9 +78,18 @@ def _position(rows: list[Row], kind: str) -> int:
 def _refused(window: Window, published: Growth, p: float) -> Row:
     """No form suffices: the growth stands as published, with the larger p of the fits (Anderson-Darling, refitted in each replicate)."""
     return Row(
-        "recall_decay", "no form tried suffices", window.n, published.estimate, "recall_decay, shape of the best fit", None, None, None, p,
-        stands(published.estimate, p, published.estimate), {"form": "both", "kind": "shape", "fit_p": p},
-    )  # fmt: skip
+        "recall_decay",
+        "no form tried suffices",
+        window.n,
+        published.estimate,
+        "recall_decay, shape of the best fit",
+        None,
+        None,
+        None,
+        p,
+        stands(published.estimate, p, published.estimate),
+        {"form": "both", "kind": "shape", "fit_p": p},
+    )
 
 
 def _sentence(found: Tipping) -> str:
@@ -76,7 +100,11 @@ def _sentence(found: Tipping) -> str:
     if form is None or form.estimate is None:
         return "no form tried suffices: forgetting of these forms alone does not give this shape"
     oldest = next((s for s in form.shares if s.at == "oldest"), None)
-    speed = f"half forgotten every {years(form.estimate)} years" if form.form == "exponential" else f"remembered as 1/(1 + age/{years(form.estimate)})"
+    speed = (
+        f"half forgotten every {years(form.estimate)} years"
+        if form.form == "exponential"
+        else f"remembered as 1/(1 + age/{years(form.estimate)})"
+    )
     share = "" if oldest is None else f", {oldest.share:.2g} of the oldest listed and {years(form.unlisted or 0.0)} unlisted"
     if form.form == "exponential":
         return f"a steady rate {speed} gives the same record{share}; this equals the doubling time, and a list alone cannot say which"
@@ -98,12 +126,22 @@ def _row(
     if kind == "fitted":
         left = replace(left, null_low=None, null_median=None, null_high=None, p_value=None)
     total = window.n * window.span / known.total
-    more: dict[str, Any] = {"form": form, "kind": kind, "parameter": parameter, "parameter_low": None, "parameter_high": None, "fit_p": None, "suffices": None}
+    more: dict[str, Any] = {
+        "form": form,
+        "kind": kind,
+        "parameter": parameter,
+        "parameter_low": None,
+        "parameter_high": None,
+        "fit_p": None,
+        "suffices": None,
+    }
     oldest_first = np.sort(window.ages)[::-1]
     more["share_oldest"] = float(_share(form, parameter, oldest_first[0]))
     more["share_tenth_oldest"] = float(_share(form, parameter, oldest_first[9])) if len(oldest_first) >= 10 else None
     more["share_median"] = float(_share(form, parameter, np.array(np.median(oldest_first))))
-    more.update(listed=window.n, total=total, total_low=None, total_high=None, unlisted=total - window.n, unlisted_low=None, unlisted_high=None)
+    more.update(
+        listed=window.n, total=total, total_low=None, total_high=None, unlisted=total - window.n, unlisted_low=None, unlisted_high=None
+    )
     if kind == "fitted" and fitted is not None:
         for name in ("fit_p", "suffices", "total", "total_low", "total_high", "unlisted", "unlisted_low", "unlisted_high"):
             more[name] = getattr(fitted, name)
@@ -124,9 +162,19 @@ def _by_age(context: Context, published: Growth, form: TippingForm) -> list[Row]
             continue
         rows.append(
             record_row(
-                "recall_decay", f"ages {years(b.age_from)} to {years(b.age_to)}", part, published, form=form.form, kind="age range", parameter=form.estimate,
-                listed=b.listed, total=b.listed + b.unlisted, unlisted=b.unlisted, unlisted_low=b.unlisted_low, unlisted_high=b.unlisted_high,
-            )  # fmt: skip
+                "recall_decay",
+                f"ages {years(b.age_from)} to {years(b.age_to)}",
+                part,
+                published,
+                form=form.form,
+                kind="age range",
+                parameter=form.estimate,
+                listed=b.listed,
+                total=b.listed + b.unlisted,
+                unlisted=b.unlisted,
+                unlisted_low=b.unlisted_low,
+                unlisted_high=b.unlisted_high,
+            )
         )
     return rows
 

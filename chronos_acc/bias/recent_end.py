@@ -28,7 +28,9 @@ def run(context: Context) -> Answer:
     rising = len(rows) > 1 and all(
         b.estimate is not None and a.estimate is not None and b.estimate > a.estimate for a, b in zip(rows[:3], rows[1:4], strict=False)
     )
-    summary = f"rows: {count(rows)}" + ("; growth rises as the latest years are left out, as recognition that takes time would have it" if rising else "")
+    summary = f"rows: {count(rows)}" + (
+        "; growth rises as the latest years are left out, as recognition that takes time would have it" if rising else ""
+    )
     return Answer(tuple(rows), summary, "growth with the last 10 and 50 years left out", notes, at)
 
 

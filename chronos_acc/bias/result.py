@@ -53,8 +53,13 @@ class Bias:
         from .. import __version__
 
         return {
-            "command": "bias", "version": __version__, "seed": self.seed, "draws": self.draws, "replicates": self.replicates, "record": self.record_hash,
-        }  # fmt: skip
+            "command": "bias",
+            "version": __version__,
+            "seed": self.seed,
+            "draws": self.draws,
+            "replicates": self.replicates,
+            "record": self.record_hash,
+        }
 
     def to_frame(self, table: str = "summary") -> pd.DataFrame:
         """One table as a frame; columns stand even where there is no row."""
@@ -76,7 +81,9 @@ class Bias:
         """One line of the summary page: the row that speaks for the check, and what it means."""
         shown = answer.shown or (answer.rows[answer.headline] if answer.headline is not None else None)
         if shown is None:  # no row has enough events to speak for the check
-            base = plain_row(Row(name, "all rows", max(r.n for r in answer.rows), None, answer.rows[0].null, None, None, None, None, "too few"))
+            base = plain_row(
+                Row(name, "all rows", max(r.n for r in answer.rows), None, answer.rows[0].null, None, None, None, None, "too few")
+            )
         else:
             base = plain_row(shown) | {"check": name}
         significant = self.published.p_value is not None and self.published.p_value < LEVEL

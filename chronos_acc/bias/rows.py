@@ -20,9 +20,11 @@ ENOUGH = 8  # counted events from which a row may speak for its check
 
 
 def stands(estimate: float | None, p_value: float | None, published: float | None) -> str:
-    """First that applies: no (opposite sign), yes (p < .05 and at least half the published estimate), weaker (under half), too few (the rest).
+    """First that applies: no (opposite sign), yes (p < .05 and at least half the published estimate), weaker (under half), too
+    few (the rest).
 
-    The rule compares with the published estimate whether or not that one is significant itself; the summary says so where it is not.
+    The rule compares with the published estimate whether or not that one is significant itself; the summary says so where it is
+    not.
     """
     if estimate is None or published is None or not math.isfinite(estimate):
         return "too few"
@@ -37,8 +39,19 @@ def stands(estimate: float | None, p_value: float | None, published: float | Non
 def row(check: str, setting: float | str, found: Growth, published: Growth, null: str = "steady", **more: Any) -> Row:
     """A row beside the exact steady null of its own n and window."""
     extra = {"low": found.low, "high": found.high, **more}
-    return Row(check, setting, found.n, found.estimate, null, found.null_low, found.null_median, found.null_high, found.p_value,
-               stands(found.estimate, found.p_value, published.estimate), extra)  # fmt: skip
+    return Row(
+        check,
+        setting,
+        found.n,
+        found.estimate,
+        null,
+        found.null_low,
+        found.null_median,
+        found.null_high,
+        found.p_value,
+        stands(found.estimate, found.p_value, published.estimate),
+        extra,
+    )
 
 
 def record_row(check: str, setting: float | str, record: Record, published: Growth, **more: Any) -> Row:

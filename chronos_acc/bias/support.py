@@ -1,7 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
-"""Support: milestones named by at least so many independent lists, beside what steady lists with the fitted capture curve give at the same threshold.
+"""Support: milestones named by at least so many independent lists, beside what steady lists with the fitted capture curve give at
+the same threshold.
 
-Asking for more lists raises the bias of recall, since old milestones are the ones that few lists remember: a row here never upgrades a verdict.
+Asking for more lists raises the bias of recall, since old milestones are the ones that few lists remember: a row here never
+upgrades a verdict.
 """
 
 from __future__ import annotations
@@ -34,14 +36,25 @@ def run(context: Context) -> Answer:
         rng = np.random.default_rng([context.seed, 7101, threshold])
         null = steady_growth(curve, threshold, found.n, part.window.span, rng=rng, size=context.replicates)
         new = simulated_row(
-            "support", float(threshold), found.n, found.estimate, NULL, null, published,
-            low=found.low, high=found.high, excess=found.estimate - float(np.median(null)), p_steady=found.p_value, capture_scale=curve.scale,
-        )  # fmt: skip
+            "support",
+            float(threshold),
+            found.n,
+            found.estimate,
+            NULL,
+            null,
+            published,
+            low=found.low,
+            high=found.high,
+            excess=found.estimate - float(np.median(null)),
+            p_steady=found.p_value,
+            capture_scale=curve.scale,
+        )
         rows.append(_never_upgraded(new, published.estimate, published.p_value))
     at = 1 if len(rows) > 1 and rows[1].n >= ENOUGH else 0
     shown = rows[at]
     summary = (
-        f"at {shown.setting:g} lists or more growth is {number(shown.estimate)} a year, and steady lists that forget alike give {number(shown.null_median)}; "
+        f"at {shown.setting:g} lists or more growth is {number(shown.estimate)} a year, "
+        f"and steady lists that forget alike give {number(shown.null_median)}; "
         f"rows: {count(rows)}"
     )
     return Answer(tuple(rows), summary, "never a trend at a support threshold without what forgetting gives at that threshold", (), at)
@@ -57,4 +70,6 @@ def _never_upgraded(row: Row, published: float | None, published_p: float | None
     return row if published_p is not None and published_p < LEVEL else replace(row, stands="too few")
 
 
-CHECK = Check("support", "Does the trend stand among milestones that several lists name?", "two independent lists that share milestones", run)
+CHECK = Check(
+    "support", "Does the trend stand among milestones that several lists name?", "two independent lists that share milestones", run
+)

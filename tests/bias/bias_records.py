@@ -18,9 +18,16 @@ def log_linear_ages(rng: np.random.Generator, n: int, growth: float, span: float
 
 
 def listed(
-    rng: np.random.Generator, *, truth: int, span: float = 1000.0, growth: float = 0.0, half_life: float | None = None, lists: int = 4,
-    chance: float = 0.5, unit: float = 1.0,
-) -> Record:  # fmt: skip
+    rng: np.random.Generator,
+    *,
+    truth: int,
+    span: float = 1000.0,
+    growth: float = 0.0,
+    half_life: float | None = None,
+    lists: int = 4,
+    chance: float = 0.5,
+    unit: float = 1.0,
+) -> Record:
     """Lists that name each of ``truth`` milestones independently with a chance halved every ``half_life`` years of age."""
     ages = log_linear_ages(rng, truth, growth, span)
     p = chance * (np.exp2(-ages / half_life) if half_life else np.ones(truth))
@@ -31,4 +38,6 @@ def listed(
 
 def plain(rng: np.random.Generator, n: int, growth: float = 0.0, span: float = 1000.0, start: bool = True) -> Record:
     """One list of n milestones."""
-    return Record.from_dates(2000.0 - log_linear_ages(rng, n, growth, span), present=2000.0, start=2000.0 - span if start else None, unit=1.0)
+    return Record.from_dates(
+        2000.0 - log_linear_ages(rng, n, growth, span), present=2000.0, start=2000.0 - span if start else None, unit=1.0
+    )

@@ -34,7 +34,9 @@ def test_steady_lists_that_forget_are_not_called_speeding_at_support_two():
 
 
 def test_growth_stands_at_support_two():
-    found = [rows(listed(np.random.default_rng(s), truth=140, growth=2.8, chance=0.5), "support").rows("support")[1]["stands"] for s in range(4)]
+    found = [
+        rows(listed(np.random.default_rng(s), truth=140, growth=2.8, chance=0.5), "support").rows("support")[1]["stands"] for s in range(4)
+    ]
     assert found.count("yes") >= 3
 
 
@@ -194,7 +196,9 @@ def test_coarsened_rows_stand_beside_a_null_dated_alike():
 
 
 def test_granularity_collapses_children():
-    record = Record.from_dates([10.0, 20.0, 30.0, 40.0, 50.0], present=60.0, titles=["Sowing", "Early Sowing", "Late Sowing", "Oven A", "Oven B"])
+    record = Record.from_dates(
+        [10.0, 20.0, 30.0, 40.0, 50.0], present=60.0, titles=["Sowing", "Early Sowing", "Late Sowing", "Oven A", "Oven B"]
+    )
     record = replace(record, parent=(None, "sowing", "sowing", "Ovens", "Ovens"), level=("1", "2", "2", "2", "2"))
     assert collapsed(record).tolist() == [True, False, False, True, False]
     found = rows(record, "granularity").rows("granularity")
@@ -216,7 +220,24 @@ def test_false_splits_make_acceleration_and_are_taken_back():
 
 def entries_of(record, rng, spelling=0.3):
     """Entries of three lists under titles of invented words, some spelled another way."""
-    words = ["kiln", "loom", "plough", "sail", "lens", "canal", "clock", "bridge", "mill", "press", "lamp", "dyke", "forge", "seed", "rope", "glass"]
+    words = [
+        "kiln",
+        "loom",
+        "plough",
+        "sail",
+        "lens",
+        "canal",
+        "clock",
+        "bridge",
+        "mill",
+        "press",
+        "lamp",
+        "dyke",
+        "forge",
+        "seed",
+        "rope",
+        "glass",
+    ]
     titles = [f"{words[i % 16].title()} of {words[(i * 7 + i // 16) % 16]} number {i}" for i in range(len(record))]
     source, title, best, label = [], [], [], []
     for j in range(len(record.lists)):
@@ -230,9 +251,17 @@ def entries_of(record, rng, spelling=0.3):
     milestone = np.array([first.setdefault(x, k) for x, k in zip(label, ids, strict=True)])
     best = np.array(best)
     entries = Entries(
-        id=ids, source=np.array(source), sources=record.lists, title=tuple(title), earliest=best - 0.5, best=best, latest=best + 0.5,
-        normal=np.zeros(len(best), bool), category=(None,) * len(best), present=record.present,
-    )  # fmt: skip
+        id=ids,
+        source=np.array(source),
+        sources=record.lists,
+        title=tuple(title),
+        earliest=best - 0.5,
+        best=best,
+        latest=best + 0.5,
+        normal=np.zeros(len(best), bool),
+        category=(None,) * len(best),
+        present=record.present,
+    )
     return entries, milestone, replace(record, id=np.array([first[i] for i in range(len(record))]))
 
 
@@ -259,11 +288,25 @@ def replace_order(record, order):
     place = np.argsort(order)
     parts = np.argsort(place[record.owner], kind="stable")
     return replace(
-        record, id=record.id[order], title=tuple(record.title[i] for i in order), best=record.best[order], earliest=record.earliest[order],
-        latest=record.latest[order], unit=record.unit[order], sd=record.sd[order], owner=place[record.owner][parts], source=record.source[parts],
-        weight=record.weight[parts], kind=record.kind[parts], low=record.low[parts], mode=record.mode[parts], high=record.high[parts],
-        mentions=record.mentions[order], category=tuple(record.category[i] for i in order), importance=record.importance[order],
-    )  # fmt: skip
+        record,
+        id=record.id[order],
+        title=tuple(record.title[i] for i in order),
+        best=record.best[order],
+        earliest=record.earliest[order],
+        latest=record.latest[order],
+        unit=record.unit[order],
+        sd=record.sd[order],
+        owner=place[record.owner][parts],
+        source=record.source[parts],
+        weight=record.weight[parts],
+        kind=record.kind[parts],
+        low=record.low[parts],
+        mode=record.mode[parts],
+        high=record.high[parts],
+        mentions=record.mentions[order],
+        category=tuple(record.category[i] for i in order),
+        importance=record.importance[order],
+    )
 
 
 def test_exposure_takes_away_what_people_explain():

@@ -86,9 +86,18 @@ def test_steady_p_is_uniform():
 
 @pytest.mark.parametrize(
     ("estimate", "p", "published", "word"),
-    [(-1, 0.001, 2, "no"), (1.2, 0.01, 2, "yes"), (0.8, 0.01, 2, "weaker"), (0.8, 0.5, 2, "weaker"), (1.5, 0.2, 2, "too few"), (None, None, 2, "too few"),
-     (1.5, None, 2, "too few"), (-1.5, 0.01, -2, "yes"), (1, 0.01, None, "too few")],
-)  # fmt: skip
+    [
+        (-1, 0.001, 2, "no"),
+        (1.2, 0.01, 2, "yes"),
+        (0.8, 0.01, 2, "weaker"),
+        (0.8, 0.5, 2, "weaker"),
+        (1.5, 0.2, 2, "too few"),
+        (None, None, 2, "too few"),
+        (1.5, None, 2, "too few"),
+        (-1.5, 0.01, -2, "yes"),
+        (1, 0.01, None, "too few"),
+    ],
+)
 def test_stands(estimate, p, published, word):
     assert stands(estimate, p, published) == word
 

@@ -57,7 +57,7 @@ def test_spelled_out_for_a_record():
     options, notes = expanded(default_choices(), record)
     assert options["lists"] == ("all", "without list 1", "without list 2", "without list 3") and not notes
     every = combinations(options, {})
-    # 3 datings, 3 ends, 2 short, 3 predictors, 2 estimators for the slope; 3 datings and 2 ends for the rate; 4 lists and 2 supports for both
+    # the slope: 3 datings, 3 ends, 2 short, 3 predictors, 2 estimators; the rate: 3 datings and 2 ends; both: 4 lists and 2 supports
     assert len(every) == 8 * (108 + 6)
     assert sum(c.own for c in every) == 1 and every[0].own
     assert len({tuple(c.options.values()) for c in every}) == len(every)

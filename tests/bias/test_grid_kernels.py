@@ -26,7 +26,9 @@ def loop(times, start, present, floor, spec):
         if spec.joined and gap < floor:
             continue
         y.append(np.log10(max(gap, floor)))
-        x.append({"log10_age": np.log10(max(p - a, floor)), "log10_time": -np.log10(b - s) if b > s else 300.0, "order": None}[spec.predictor])
+        x.append(
+            {"log10_age": np.log10(max(p - a, floor)), "log10_time": -np.log10(b - s) if b > s else 300.0, "order": None}[spec.predictor]
+        )
     if spec.predictor == "order":
         x = list(range(len(y), 0, -1))
     if spec.estimator == "ols":
@@ -42,7 +44,9 @@ def loop(times, start, present, floor, spec):
 
 SPECS = [
     Spec(counted, joined, predictor, estimator)
-    for counted, joined, predictor, estimator in product((False, True), (False, True), ("log10_age", "order", "log10_time"), ("ols", "theil_pairs", "theil_sen"))
+    for counted, joined, predictor, estimator in product(
+        (False, True), (False, True), ("log10_age", "order", "log10_time"), ("ols", "theil_pairs", "theil_sen")
+    )
 ]
 
 

@@ -13,10 +13,13 @@ from chronos_acc.record import Record
 from chronos_acc.trend.nulls import LOG_UNIFORM
 
 SMALL = choices_of(
-    {"arbitrary": {"predictor": ["log10_age", "order"], "estimator": ["ols", "theil_pairs"], "young_end": ["open", "last"]},
-     "question": {"response": ["log10_interval", "rate"], "lists": ["all", "each left out"], "min_support": [1, 2]}},
-    "small.toml", "0" * 16,
-)  # fmt: skip
+    {
+        "arbitrary": {"predictor": ["log10_age", "order"], "estimator": ["ols", "theil_pairs"], "young_end": ["open", "last"]},
+        "question": {"response": ["log10_interval", "rate"], "lists": ["all", "each left out"], "min_support": [1, 2]},
+    },
+    "small.toml",
+    "0" * 16,
+)
 
 
 @pytest.fixture(scope="module")
@@ -39,7 +42,11 @@ def test_every_combination_is_a_row(record, grid):
 
 
 def test_the_rate_of_the_own_question_is_the_growth_as_published(record, grid):
-    row = next(r for r in grid.rows("combinations") if r["response"] == "rate" and r["lists"] == "all" and r["min_support"] == 1 and r["young_end"] == "open")
+    row = next(
+        r
+        for r in grid.rows("combinations")
+        if r["response"] == "rate" and r["lists"] == "all" and r["min_support"] == 1 and r["young_end"] == "open"
+    )
     assert row["estimate"] == pytest.approx(growth(record.window).estimate, rel=1e-9)
     assert row["estimand"] == "growth per year" and row["predictor"] is None
 
@@ -47,7 +54,9 @@ def test_the_rate_of_the_own_question_is_the_growth_as_published(record, grid):
 def test_shares_are_given_question_by_question(grid):
     rows = grid.rows("summary")
     assert len(rows) == 16 and sum(r["combinations"] for r in rows) == 80
-    z = np.array([r["z"] for r in grid.rows("combinations") if r["response"] == "log10_interval" and r["lists"] == "all" and r["min_support"] == 1])
+    z = np.array(
+        [r["z"] for r in grid.rows("combinations") if r["response"] == "log10_interval" and r["lists"] == "all" and r["min_support"] == 1]
+    )
     first = rows[0]
     assert first["own"] and first["valid"] == 8
     assert first["share_speeding"] == pytest.approx((z >= 1.959964).mean()) and first["median_z"] == pytest.approx(np.median(z))

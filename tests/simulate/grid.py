@@ -27,7 +27,8 @@ def small() -> Choices:
 
 def joint(records: int, replicates: int = 199) -> Iterator[str]:
     """How often the joint test rejects at 5 %."""
-    yield "\n| truth | n | share, log interval | median z, log interval | median z, rate | largest z over the grid alone |\n| --- | --- | --- | --- | --- | --- |"
+    yield "\n| truth | n | share, log interval | median z, log interval | median z, rate | largest z over the grid alone |"
+    yield "| --- | --- | --- | --- | --- | --- |"
     for truth, doublings in (("steady", 0.0), ("two doublings", 2.0), ("four doublings", 4.0)):
         for n in (30, 100):
             hits = np.zeros(4)
@@ -36,7 +37,11 @@ def joint(records: int, replicates: int = 199) -> Iterator[str]:
                 grid = run_grid(Context(record, seed=i, draws=0), small(), joint=replicates)
                 rows = {r["response"]: r for r in grid.rows("summary") if r["min_support"] == 1.0}
                 slope, rate = rows["log10_interval"], rows["rate"]
-                best = max(abs(r["z"]) for r in grid.rows("combinations") if r["z"] is not None and r["response"] == "log10_interval" and r["min_support"] == 1.0)
+                best = max(
+                    abs(r["z"])
+                    for r in grid.rows("combinations")
+                    if r["z"] is not None and r["response"] == "log10_interval" and r["min_support"] == 1.0
+                )
                 hits += [slope["p_share"] < 0.05, slope["p_median_z"] < 0.05, rate["p_median_z"] < 0.05, best > 1.96]
             yield f"| {truth} | {n} | " + " | ".join(f"{100 * h / records:.0f} %" for h in hits) + " |"
 
@@ -56,7 +61,8 @@ def speed(draws: int = 1000) -> Iterator[str]:
         log_log(age, interval)
     times = len(grid.lines) / 100
     bare = (time.perf_counter() - wall) * times, (time.process_time() - used) * times
-    yield f"| grid, {len(grid.lines):,} combinations, {draws:,} draws, {len(record)} milestones, joint test of 499 | {both[0]:.2f} | {both[1]:.2f} |"
+    what = f"grid, {len(grid.lines):,} combinations, {draws:,} draws, {len(record)} milestones, joint test of 499"
+    yield f"| {what} | {both[0]:.2f} | {both[1]:.2f} |"
     yield f"| as many plain regressions | {bare[0]:.2f} | {bare[1]:.2f} |"
     yield f"| ratio | {both[0] / bare[0]:.2f} | {both[1] / bare[1]:.2f} |"
     yield f"\nPeak memory {resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024:.0f} MB"

@@ -1,8 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """The choices a grid runs over, declared in one place: the defaults, or a TOML file of the user's own.
 
-Arbitrary choices are equally defensible answers to one question; shares are given over them alone. Choices that change the question (what responds, and which
-milestones are asked) only say which question the shares belong to. A file's hash is printed, so that choices can be shown to have been made before looking.
+Arbitrary choices are equally defensible answers to one question; shares are given over them alone. Choices that change the
+question (what responds, and which milestones are asked) only say which question the shares belong to. A file's hash is printed,
+so that choices can be shown to have been made before looking.
 """
 
 from __future__ import annotations
@@ -25,7 +26,9 @@ Option = str | float
 
 @dataclass(frozen=True)
 class Choice:
-    """One choice: its group, the responses it applies to, what is allowed (words, or numbers from a least value on), and the default options."""
+    """One choice: its group, the responses it applies to, what is allowed (words, or numbers from a least value on), and the
+    default options.
+    """
 
     name: str
     group: str
@@ -37,29 +40,59 @@ class Choice:
 
 
 CHOICES: tuple[Choice, ...] = (
-    Choice("response", QUESTION, RESPONSES, RESPONSES, None, RESPONSES, "log10_interval: log interval regressed; rate: growth of the log-linear rate"),
+    Choice(
+        "response",
+        QUESTION,
+        RESPONSES,
+        RESPONSES,
+        None,
+        RESPONSES,
+        "log10_interval: log interval regressed; rate: growth of the log-linear rate",
+    ),
     Choice("lists", QUESTION, RESPONSES, ("all", EACH_OUT), None, ("all", EACH_OUT), "lists that speak: all, or all but one, each in turn"),
     Choice("min_support", QUESTION, RESPONSES, (), 1.0, (1.0, 2.0), "independent lists that must name a milestone"),
     Choice("min_importance", QUESTION, RESPONSES, ("any",), float("-inf"), ("any",), "least importance of a milestone"),
     Choice("category", QUESTION, RESPONSES, ("any", "each"), None, ("any",), "one category: any, each in turn, or names"),
-    Choice("dates", ARBITRARY, RESPONSES, ("pooled", "earliest", "latest"), None, ("pooled", "earliest", "latest"), "dating where lists differ"),
     Choice(
-        "young_end", ARBITRARY, RESPONSES, ("open", "counted", "last"), None, ("open", "counted", "last"),
+        "dates", ARBITRARY, RESPONSES, ("pooled", "earliest", "latest"), None, ("pooled", "earliest", "latest"), "dating where lists differ"
+    ),
+    Choice(
+        "young_end",
+        ARBITRARY,
+        RESPONSES,
+        ("open", "counted", "last"),
+        None,
+        ("open", "counted", "last"),
         "the interval up to the present: open (left out), counted as if closed, or the last milestone is the present",
     ),
     Choice(
-        "short_intervals", ARBITRARY, ("log10_interval",), ("joined", "floored"), None, ("joined", "floored"),
+        "short_intervals",
+        ARBITRARY,
+        ("log10_interval",),
+        ("joined", "floored"),
+        None,
+        ("joined", "floored"),
         "intervals under half the finest dating unit: milestones joined, or interval raised to it",
     ),
     Choice(
-        "predictor", ARBITRARY, ("log10_interval",), ("log10_age", "order", "log10_time"), None, ("log10_age", "order", "log10_time"),
+        "predictor",
+        ARBITRARY,
+        ("log10_interval",),
+        ("log10_age", "order", "log10_time"),
+        None,
+        ("log10_age", "order", "log10_time"),
         "what log10 interval is regressed on; a positive slope is speeding",
     ),
     Choice(
-        "estimator", ARBITRARY, ("log10_interval",), ("ols", "theil_pairs", "theil_sen"), None, ("ols", "theil_pairs"),
+        "estimator",
+        ARBITRARY,
+        ("log10_interval",),
+        ("ols", "theil_pairs", "theil_sen"),
+        None,
+        ("ols", "theil_pairs"),
         "least squares, Theil's median of slopes between halves (1950), or of all pairs (slow)",
     ),
-)  # fmt: skip
+)
 BY_NAME = {c.name: c for c in CHOICES}
 RATE_ENDS = ("open", "last")  # a rate knows no interval that could be counted
 
@@ -75,7 +108,10 @@ class Choices:
 
     def to_toml(self) -> str:
         """A file to start from; reads back to the same choices."""
-        lines = ["# Choices of a grid. Arbitrary: equally defensible answers to one question. Question: each option asks another question.", ""]
+        lines = [
+            "# Choices of a grid. Arbitrary: equally defensible answers to one question. Question: each option asks another question.",
+            "",
+        ]
         for group in (ARBITRARY, QUESTION):
             lines.append(f"[{group}]")
             for c in CHOICES:
@@ -103,7 +139,9 @@ def read_choices(path: str | Path) -> Choices:
         raw = path.read_bytes()
         given = tomllib.loads(raw.decode("utf-8"))
     except OSError as error:
-        raise WrongUse(f"{path}: cannot be read ({error.strerror}); give the path of a TOML file, or none for the default choices") from None
+        raise WrongUse(
+            f"{path}: cannot be read ({error.strerror}); give the path of a TOML file, or none for the default choices"
+        ) from None
     except (UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
         raise WrongUse(f"{path}: is not TOML in UTF-8 ({error})") from None
     return choices_of(given, str(path.name), _digest(raw))
@@ -136,7 +174,9 @@ def choices_of(given: Mapping[str, Any], origin: str, digest: str) -> Choices:
             raise WrongUse(f"{origin}: there is no choice {name!r}{_nearest(name, BY_NAME)}; the choices are {', '.join(BY_NAME)}")
         own[name] = _option(BY_NAME[name], value, origin)
         if name not in ("lists", "category") and own[name] not in options[name]:
-            raise WrongUse(f"{origin}: your own {name}, {value!r}, is not among its options {', '.join(map(str, options[name]))}; add it there")
+            raise WrongUse(
+                f"{origin}: your own {name}, {value!r}, is not among its options {', '.join(map(str, options[name]))}; add it there"
+            )
     return Choices(options, own, origin, digest)
 
 

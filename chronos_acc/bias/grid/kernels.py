@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""Every statistic of the grid over many records of one set of milestones at once: rows are draws or null records, columns milestones in order of date."""
+"""Every statistic of the grid over many records of one set of milestones at once: rows are draws or null records, columns
+milestones in order of date.
+"""
 
 from __future__ import annotations
 
@@ -21,8 +23,9 @@ _PAIR_CELLS = 4_000_000
 
 @dataclass(frozen=True)
 class Frame:
-    """How rows are read. start: given, or None where the first milestone opens the window; opening and closing: how many stand at the start and at the present;
-    present: None where the last milestone is the present; floor: half the finest dating unit."""
+    """How rows are read. start: given, or None where the first milestone opens the window; opening and closing: how many stand at
+    the start and at the present; present: None where the last milestone is the present; floor: half the finest dating unit.
+    """
 
     start: float | None
     present: float | None
@@ -64,7 +67,8 @@ def growth_and_z(times: Floats, frame: Frame) -> tuple[Floats, Floats, int]:
 
 
 def slopes(times: Floats, frame: Frame, specs: Sequence[Spec]) -> tuple[list[Floats], dict[tuple[bool, bool], Floats]]:
-    """Slope of each spec (R,), NaN where there is none, and intervals kept per row for (counted, joined); logs are taken once for all specs.
+    """Slope of each spec (R,), NaN where there is none, and intervals kept per row for (counted, joined); logs are taken once for
+    all specs.
 
     Logs are natural inside; slopes on log predictors are the same, that on order is scaled to log10.
     """
@@ -103,9 +107,11 @@ def _intervals(times: Floats, frame: Frame, counted: bool) -> _Intervals:
     interval = ends[:, 1:] - ends[:, :-1]
     age = present - ends[:, :-1]
     return _Intervals(
-        log_interval=np.log(np.maximum(interval, frame.floor)), log_age=np.log(np.maximum(age, frame.floor)), elapsed=ends[:, 1:] - start,
+        log_interval=np.log(np.maximum(interval, frame.floor)),
+        log_age=np.log(np.maximum(age, frame.floor)),
+        elapsed=ends[:, 1:] - start,
         long=interval >= frame.floor,
-    )  # fmt: skip
+    )
 
 
 def _predictor(grid: _Intervals, name: str, keep: Bools | None) -> Floats:

@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""What a grid found: a row a combination, shares question by question with the joint test, the extremes in words, and the variance by choice."""
+"""What a grid found: a row a combination, shares question by question with the joint test, the extremes in words, and the
+variance by choice.
+"""
 
 from __future__ import annotations
 
@@ -27,8 +29,10 @@ EXTREMES = 3
 
 @dataclass(frozen=True)
 class Line:
-    """One combination. n: intervals or counted events; estimate: slope or growth per year, comparable within one response, predictor and estimator only; z on best
-    dates; median and 95 % range of both over drawn dates; reason: why it could not be run, or empty."""
+    """One combination. n: intervals or counted events; estimate: slope or growth per year, comparable within one response,
+    predictor and estimator only; z on best dates; median and 95 % range of both over drawn dates; reason: why it could not be
+    run, or empty.
+    """
 
     number: int
     options: Mapping[str, Option | None]
@@ -62,17 +66,28 @@ class Line:
         """As a row of the table of combinations."""
         response = str(self.options["response"])
         return {
-            "combination": self.number, **{c.name: self.options[c.name] for c in CHOICES}, "own": self.own, "valid": not self.reason, "n": self.n,
-            "estimand": ESTIMANDS[response], "estimate": plain(self.estimate), "z": plain(self.z), "draws_estimate": plain(self.draws_estimate),
-            "draws_low": plain(self.draws_low), "draws_high": plain(self.draws_high), "draws_z": plain(self.draws_z),
-            "draws_speeding": plain(self.draws_speeding), "reason": self.reason or None,
-        }  # fmt: skip
+            "combination": self.number,
+            **{c.name: self.options[c.name] for c in CHOICES},
+            "own": self.own,
+            "valid": not self.reason,
+            "n": self.n,
+            "estimand": ESTIMANDS[response],
+            "estimate": plain(self.estimate),
+            "z": plain(self.z),
+            "draws_estimate": plain(self.draws_estimate),
+            "draws_low": plain(self.draws_low),
+            "draws_high": plain(self.draws_high),
+            "draws_z": plain(self.draws_z),
+            "draws_speeding": plain(self.draws_speeding),
+            "reason": self.reason or None,
+        }
 
 
 @dataclass(frozen=True)
 class Grid:
-    """``lines`` in order of number; ``z_joint`` (B, combinations) z of every combination on each null record, None without the joint test; ``declared``
-    how many combinations the choices make."""
+    """``lines`` in order of number; ``z_joint`` (B, combinations) z of every combination on each null record, None without the
+    joint test; ``declared`` how many combinations the choices make.
+    """
 
     lines: tuple[Line, ...]
     z_joint: Floats | None
@@ -107,9 +122,16 @@ class Grid:
         from ... import __version__
 
         return {
-            "command": "grid", "version": __version__, "seed": self.seed, "draws": self.draws, "joint": self.joint, "null": self.null, "record": self.record_hash,
-            "choices": self.choices.origin, "choices_hash": self.choices.hash,
-        }  # fmt: skip
+            "command": "grid",
+            "version": __version__,
+            "seed": self.seed,
+            "draws": self.draws,
+            "joint": self.joint,
+            "null": self.null,
+            "record": self.record_hash,
+            "choices": self.choices.origin,
+            "choices_hash": self.choices.hash,
+        }
 
     def to_frame(self, table: str = "combinations") -> pd.DataFrame:
         """One table; by default every combination a row."""
@@ -129,7 +151,8 @@ class Grid:
             return "no combination could be run"
         r = next((x for x in rows if x["own"]), rows[0])
         text = (
-            f"of {r['valid']} combinations of arbitrary choices that ask the same question, {_percent(r['share_speeding'])} find speeding and "
+            f"of {r['valid']} combinations of arbitrary choices that ask the same question, "
+            f"{_percent(r['share_speeding'])} find speeding and "
             f"{_percent(r['share_slowing'])} slowing; median z {r['median_z']:.2f}"
         )
         if r["p_share"] is not None:
@@ -151,9 +174,18 @@ class Grid:
         own = next((int(i) for i in members if self.lines[int(i)].own), None)
         head.update(own=own is not None, combinations=len(members), valid=int(good.sum()))
         names = (
-            "share_speeding", "share_slowing", "share_significant", "share_opposite", "median_z", "least_z", "greatest_z", "own_z", "own_place", "p_share",
+            "share_speeding",
+            "share_slowing",
+            "share_significant",
+            "share_opposite",
+            "median_z",
+            "least_z",
+            "greatest_z",
+            "own_z",
+            "own_place",
+            "p_share",
             "p_median_z",
-        )  # fmt: skip
+        )
         if not good.any():
             return head | dict.fromkeys(names)
         z = z[good]
@@ -162,9 +194,18 @@ class Grid:
         own_z = None if own is None else plain(float(self._z[own]))
         p_share, p_median = self._joint_p(members[good], significant, middle)
         values = (
-            float((z >= Z95).mean()), float((z <= -Z95).mean()), significant, float((z * middle < 0).mean()), middle, float(z.min()), float(z.max()), own_z,
-            None if own_z is None else float((z < own_z).mean() + 0.5 * (z == own_z).mean()), p_share, p_median,
-        )  # fmt: skip
+            float((z >= Z95).mean()),
+            float((z <= -Z95).mean()),
+            significant,
+            float((z * middle < 0).mean()),
+            middle,
+            float(z.min()),
+            float(z.max()),
+            own_z,
+            None if own_z is None else float((z < own_z).mean() + 0.5 * (z == own_z).mean()),
+            p_share,
+            p_median,
+        )
         return head | dict(zip(names, values, strict=True))
 
     def _joint_p(self, members: npt.NDArray[np.int64], significant: float, middle: float) -> tuple[float | None, float | None]:
@@ -191,13 +232,22 @@ class Grid:
         for response in dict.fromkeys(str(x.options["response"]) for x in self.lines):
             mine = [i for i, x in enumerate(self.lines) if x.options["response"] == response and np.isfinite(self._z[i])]
             ranked = sorted(mine, key=lambda i: (-self._z[i], i))
-            picked = [("greatest", i) for i in ranked[:EXTREMES]] + [("least", i) for i in ranked[-EXTREMES:][::-1] if i not in ranked[:EXTREMES]]
+            picked = [("greatest", i) for i in ranked[:EXTREMES]] + [
+                ("least", i) for i in ranked[-EXTREMES:][::-1] if i not in ranked[:EXTREMES]
+            ]
             picked += [("own", i) for i in mine if self.lines[i].own]
             out += [
-                {"response": response, "extreme": name, "z": float(self._z[i]), "estimate": plain(self.lines[i].estimate), "n": self.lines[i].n,
-                 "combination": self.lines[i].number, "in_words": words(self.lines[i].options)}
+                {
+                    "response": response,
+                    "extreme": name,
+                    "z": float(self._z[i]),
+                    "estimate": plain(self.lines[i].estimate),
+                    "n": self.lines[i].n,
+                    "combination": self.lines[i].number,
+                    "in_words": words(self.lines[i].options),
+                }
                 for name, i in picked
-            ]  # fmt: skip
+            ]
         return out
 
     def _variance(self) -> list[dict[str, Any]]:
@@ -211,17 +261,33 @@ class Grid:
                     known = list(dict.fromkeys(self.lines[i].options[c.name] for i in mine))
                     levels[c.name] = np.array([known.index(self.lines[i].options[c.name]) for i in mine], dtype=np.int64)
             for s in shares(levels, self._z[mine]) if mine else ():
-                out.append({"response": response, "choice": s.choice, "group": BY_NAME[s.choice].group, "first_order": s.first_order, "total": s.total, "method": s.method})
+                out.append(
+                    {
+                        "response": response,
+                        "choice": s.choice,
+                        "group": BY_NAME[s.choice].group,
+                        "first_order": s.first_order,
+                        "total": s.total,
+                        "method": s.method,
+                    }
+                )
         return out
 
     def _choices(self) -> list[dict[str, Any]]:
         """What was chosen from, as declared for this record."""
         own = next((x.options for x in self.lines if x.own), {})
         return [
-            {"choice": c.name, "group": c.group, "options": ", ".join(f"{o:g}" if isinstance(o, float) else str(o) for o in self.options[c.name]),
-             "own": own.get(c.name), "meaning": c.meaning, "origin": self.choices.origin, "hash": self.choices.hash}
+            {
+                "choice": c.name,
+                "group": c.group,
+                "options": ", ".join(f"{o:g}" if isinstance(o, float) else str(o) for o in self.options[c.name]),
+                "own": own.get(c.name),
+                "meaning": c.meaning,
+                "origin": self.choices.origin,
+                "hash": self.choices.hash,
+            }
             for c in CHOICES
-        ]  # fmt: skip
+        ]
 
     def _invalid(self) -> list[dict[str, Any]]:
         """Combinations that could not be run, counted by reason and by what they ask."""
@@ -235,9 +301,13 @@ class Grid:
 
 TABLES = ("summary", "combinations", "extremes", "variance", "choices", "invalid")
 _EMPTY = {
-    "summary": ("response",), "combinations": ("combination",), "extremes": ("response", "extreme", "z", "estimate", "n", "combination", "in_words"),
-    "variance": ("response", "choice", "group", "first_order", "total", "method"), "choices": ("choice",), "invalid": ("question", "reason", "combinations"),
-}  # fmt: skip
+    "summary": ("response",),
+    "combinations": ("combination",),
+    "extremes": ("response", "extreme", "z", "estimate", "n", "combination", "in_words"),
+    "variance": ("response", "choice", "group", "first_order", "total", "method"),
+    "choices": ("choice",),
+    "invalid": ("question", "reason", "combinations"),
+}
 
 
 def _percent(share: float) -> str:

@@ -1,9 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """Running a grid: every combination on the same uniforms, each record's combinations together, on all cores.
 
-The common estimand is z, the normal quantile of the mid-rank of the statistic in the steady null of that combination: as many events, uniform on its window and
-dated alike, read by the same analysis. The joint test redraws the record once per replicate, and all combinations run on it; the k-th oldest null date
-carries the lists, category and importance of the k-th oldest milestone, and its date moves between ways of dating in proportion to its age.
+The common estimand is z, the normal quantile of the mid-rank of the statistic in the steady null of that combination: as many
+events, uniform on its window and dated alike, read by the same analysis. The joint test redraws the record once per replicate,
+and all combinations run on it; the k-th oldest null date carries the lists, category and importance of the k-th oldest milestone,
+and its date moves between ways of dating in proportion to its age.
 """
 
 from __future__ import annotations
@@ -48,19 +49,27 @@ class _Job:
 
 
 def run_grid(
-    context: Context, choices: Choices | None = None, joint: int = JOINT, tell: Tell | None = None, *, null: Null = STEADY, workers: int | None = None
+    context: Context,
+    choices: Choices | None = None,
+    joint: int = JOINT,
+    tell: Tell | None = None,
+    *,
+    null: Null = STEADY,
+    workers: int | None = None,
 ) -> Grid:
     """Every combination of the choices on the context's record.
 
-    ``joint`` null records make the joint test (0: left out), redrawn by ``null``. Drawn dates: ``context.draws``. Ctrl-C keeps what is done and says so. Raises
-    RecordRefused below three milestones, WrongUse for choices the record cannot have.
+    ``joint`` null records make the joint test (0: left out), redrawn by ``null``. Drawn dates: ``context.draws``. Ctrl-C keeps
+    what is done and says so. Raises RecordRefused below three milestones, WrongUse for choices the record cannot have.
     """
     tell = context.tell if tell is None else tell
     choices = default_choices() if choices is None else choices
     if joint < 0:
         raise WrongUse(f"the joint test takes 0 null records or more, not {joint}")
     if len(context.record.window.times) < 3:
-        raise RecordRefused(f"{len(context.record.window.times)} milestones in the window; a grid needs three: widen the window or load more")
+        raise RecordRefused(
+            f"{len(context.record.window.times)} milestones in the window; a grid needs three: widen the window or load more"
+        )
     base = in_window(context.record)
     options, notes = expanded(choices, base)
     every = combinations(options, choices.own)
@@ -75,14 +84,25 @@ def run_grid(
     job = _Job(base, context.seed, context.draws, redrawn, Event())
     lines, columns, interrupted = _all(job, list(groups.values()), tell, workers or os.cpu_count() or 1)
     if interrupted:
-        notes = (*notes, f"interrupted: {len(lines)} of {len(every)} combinations were run; shares, variance and joint test are of these alone")
+        notes = (
+            *notes,
+            f"interrupted: {len(lines)} of {len(every)} combinations were run; shares, variance and joint test are of these alone",
+        )
     order = sorted(range(len(lines)), key=lambda i: lines[i].number)
     z_joint = np.column_stack([columns[i] for i in order]) if redrawn is not None and lines else None
     return Grid(
-        lines=tuple(lines[i] for i in order), z_joint=z_joint, null=f"{null.name}{f' ({null.setting})' if null.setting else ''}", joint=joint,
-        options={k: tuple(v) for k, v in options.items()}, choices=choices, declared=len(every), seed=context.seed, draws=context.draws,
-        record_hash=context.record.hash, notes=notes,
-    )  # fmt: skip
+        lines=tuple(lines[i] for i in order),
+        z_joint=z_joint,
+        null=f"{null.name}{f' ({null.setting})' if null.setting else ''}",
+        joint=joint,
+        options={k: tuple(v) for k, v in options.items()},
+        choices=choices,
+        declared=len(every),
+        seed=context.seed,
+        draws=context.draws,
+        record_hash=context.record.hash,
+        notes=notes,
+    )
 
 
 def _all(job: _Job, groups: Sequence[list[Combination]], tell: Tell, workers: int) -> tuple[list[Line], list[Floats], bool]:
@@ -204,8 +224,9 @@ def _regressions(group: list[Combination], v: Variant, end: Any, sets: dict[str,
         return [], []
     frame = v.frame(end)
     specs = [
-        Spec(end == "counted", c.options["short_intervals"] == "joined", str(c.options["predictor"]), str(c.options["estimator"])) for c in mine
-    ]  # fmt: skip
+        Spec(end == "counted", c.options["short_intervals"] == "joined", str(c.options["predictor"]), str(c.options["estimator"]))
+        for c in mine
+    ]
     best, kept = slopes(sets["best"].times, frame, specs)
     of = {name: _slopes(sets[name], frame, specs) for name in ("null", "draws", "joint") if name in sets}
     lines: list[Line] = []
@@ -214,7 +235,9 @@ def _regressions(group: list[Combination], v: Variant, end: Any, sets: dict[str,
         used = int(kept[specs[i].counted, specs[i].joined][0])
         joint = mid_rank_z(of["joint"][i], of["null"][i]) if "joint" in of else np.empty(0)
         if used < FEWEST_INTERVALS or not np.isfinite(best[i][0]):
-            reason = f"{used} intervals, {FEWEST_INTERVALS} are needed" if used < FEWEST_INTERVALS else "no slope: the predictor does not vary"
+            reason = (
+                f"{used} intervals, {FEWEST_INTERVALS} are needed" if used < FEWEST_INTERVALS else "no slope: the predictor does not vary"
+            )
             lines.append(Line.invalid(c, reason))
             columns.append(np.full(len(joint), np.nan))
             continue

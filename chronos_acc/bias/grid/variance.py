@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""How much of the variance of z each choice makes: first-order and total shares over a full factorial, Type II sums of squares where cells are missing."""
+"""How much of the variance of z each choice makes: first-order and total shares over a full factorial, Type II sums of squares
+where cells are missing.
+"""
 
 from __future__ import annotations
 
@@ -57,7 +59,10 @@ def _type_two(names: Sequence[str], codes: Mapping[str, Ints], z: Floats, spread
     """Each main effect after the others."""
     dummies = {k: np.eye(int(codes[k].max()) + 1)[codes[k]][:, 1:] for k in names}
     left = _left(list(dummies.values()), z)
-    return tuple(Share(k, max(0.0, _left([d for j, d in dummies.items() if j != k], z) - left) / spread, None, "Type II, cells missing") for k in names)
+    return tuple(
+        Share(k, max(0.0, _left([d for j, d in dummies.items() if j != k], z) - left) / spread, None, "Type II, cells missing")
+        for k in names
+    )
 
 
 def _left(columns: Sequence[Floats], z: Floats) -> float:

@@ -1,5 +1,7 @@
 # SPDX-License-Identifier: Apache-2.0
-"""The records a grid asks: lists, support, importance, category and the dating where lists differ; and its combinations, spelled out for one record."""
+"""The records a grid asks: lists, support, importance, category and the dating where lists differ; and its combinations, spelled
+out for one record.
+"""
 
 from __future__ import annotations
 
@@ -39,7 +41,9 @@ class Combination:
 
 @dataclass(frozen=True)
 class Variant:
-    """One record: its window and, for the joint test, the rank in the base window of each of its milestones (w,) and their age over the base age (w,)."""
+    """One record: its window and, for the joint test, the rank in the base window of each of its milestones (w,) and their age
+    over the base age (w,).
+    """
 
     record: Record
     window: Window
@@ -69,7 +73,9 @@ def expanded(choices: Choices, record: Record) -> tuple[dict[str, tuple[Option, 
         elif o == "all" or (isinstance(o, str) and o.removeprefix("without ") in record.lists and len(record.lists) > 1):
             lists.append(o)
         else:
-            raise WrongUse(f"choice lists: {o!r} is not possible; use 'all', {EACH_OUT!r}, or 'without NAME' with one of {', '.join(record.lists)}")
+            raise WrongUse(
+                f"choice lists: {o!r} is not possible; use 'all', {EACH_OUT!r}, or 'without NAME' with one of {', '.join(record.lists)}"
+            )
     options["lists"] = tuple(dict.fromkeys(lists)) or ("all",)
     if len(record.lists) < 2:
         notes.append("one list only: no list is left out, and there is one way to date")
@@ -154,18 +160,34 @@ def dated(record: Record, rule: str) -> Record:
     first = np.concatenate([[True], np.diff(record.owner[order]) > 0]) if len(order) else np.zeros(0, bool)
     pick = order[first]
     points = [
-        summary_of_parts(np.ones(1), record.kind[p : p + 1], record.low[p : p + 1], record.mode[p : p + 1], record.high[p : p + 1]) for p in pick
-    ]  # fmt: skip
+        summary_of_parts(np.ones(1), record.kind[p : p + 1], record.low[p : p + 1], record.mode[p : p + 1], record.high[p : p + 1])
+        for p in pick
+    ]
     best, earliest, latest, unit, sd = (np.array(c, dtype=float) for c in zip(*points, strict=True)) if points else (np.zeros(0),) * 5
     return replace(
-        record, best=best, earliest=earliest, latest=latest, unit=unit, sd=sd, owner=record.owner[pick], source=record.source[pick], weight=np.ones(len(pick)),
-        kind=record.kind[pick], low=record.low[pick], mode=record.mode[pick], high=record.high[pick],
-    )  # fmt: skip
+        record,
+        best=best,
+        earliest=earliest,
+        latest=latest,
+        unit=unit,
+        sd=sd,
+        owner=record.owner[pick],
+        source=record.source[pick],
+        weight=np.ones(len(pick)),
+        kind=record.kind[pick],
+        low=record.low[pick],
+        mode=record.mode[pick],
+        high=record.high[pick],
+    )
 
 
 def words(options: Mapping[str, Option | None]) -> str:
     """A combination in words."""
-    return ", ".join(f"{k.replace('_', ' ')} {v:g}" if isinstance(v, float) else f"{k.replace('_', ' ')} {v}" for k, v in options.items() if v is not None)
+    return ", ".join(
+        f"{k.replace('_', ' ')} {v:g}" if isinstance(v, float) else f"{k.replace('_', ' ')} {v}"
+        for k, v in options.items()
+        if v is not None
+    )
 
 
 def question_of(options: Mapping[str, Any]) -> tuple[Option | None, ...]:
