@@ -24,7 +24,10 @@ def test_axis_places_values_between_its_limits():
     assert Axis("age", "years", 1.0, 2.0).title == "age (years)" and Axis("list", "", 0.0, 1.0).title == "list"
 
 
-@pytest.mark.parametrize("low, high, scale", [(1.0, 1.0, "linear"), (2.0, 1.0, "linear"), (0.0, 1.0, "log"), (math.nan, 1.0, "linear"), (0.0, math.inf, "linear")])
+@pytest.mark.parametrize(
+    "low, high, scale",
+    [(1.0, 1.0, "linear"), (2.0, 1.0, "linear"), (0.0, 1.0, "log"), (math.nan, 1.0, "linear"), (0.0, math.inf, "linear")]
+)
 def test_axis_refuses_limits_it_cannot_draw(low, high, scale):
     with pytest.raises(WrongUse, match="axis 'x'"):
         Axis("x", "", low, high, scale)
@@ -36,7 +39,8 @@ def test_series_refuses_columns_of_unequal_length():
 
 
 @given(
-    st.floats(-1e10, 1e10, allow_nan=False), st.floats(1e-6, 1e10, allow_nan=False), st.integers(2, 14), st.sampled_from(["number", "year", "share", "length"]),
+    st.floats(-1e10, 1e10, allow_nan=False), st.floats(1e-6, 1e10, allow_nan=False), st.integers(2, 14),
+    st.sampled_from(["number", "year", "share", "length"]),
 )  # fmt: skip
 def test_linear_ticks_are_round_inside_and_few(low, width, most, style):
     high = low + width

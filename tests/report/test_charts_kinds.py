@@ -80,11 +80,14 @@ def test_band_of_a_null_holds_most_of_its_own_points():
     ages, gaps = (window.present - times[:, :-1]).ravel(), np.diff(times, axis=1).ravel()
     inner = (ages > age.min()) & (ages < age.max())
     at = np.log(ages[inner])
-    inside = (np.log(gaps[inner]) >= np.interp(at, np.log(age), np.log(low))) & (np.log(gaps[inner]) <= np.interp(at, np.log(age), np.log(high)))
+    gap, bottom, top = np.log(gaps[inner]), np.interp(at, np.log(age), np.log(low)), np.interp(at, np.log(age), np.log(high))
+    inside = (gap >= bottom) & (gap <= top)
     assert 0.90 < inside.mean() < 0.98
 
 
-@pytest.mark.parametrize("record", [several_lists(), log_uniform(), Record.from_dates([0.0, 500.0, 900.0, 1000.0], present=1100.0, start=-100.0)])
+@pytest.mark.parametrize(
+    "record", [several_lists(), log_uniform(), Record.from_dates([0.0, 500.0, 900.0, 1000.0], present=1100.0, start=-100.0)]
+)
 def test_cumulative_counts_and_laws_end_at_the_count(record):
     data = chart("cumulative", record=record)
     count = _series(data, "milestones")
@@ -183,7 +186,8 @@ def test_small_and_odd_records_are_drawn_or_refused_in_one_line(kind, name):
 
 @pytest.fixture(scope="module")
 def small_grid():
-    choices = choices_of({"arbitrary": {"predictor": ["log10_age", "order"], "young_end": ["open", "last"]}, "question": {"response": ["log10_interval", "rate"]}}, "t", "0")
+    arbitrary = {"predictor": ["log10_age", "order"], "young_end": ["open", "last"]}
+    choices = choices_of({"arbitrary": arbitrary, "question": {"response": ["log10_interval", "rate"]}}, "t", "0")
     return run_grid(Context(record=several_lists(), draws=20), choices, joint=60, workers=1)
 
 

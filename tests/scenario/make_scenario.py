@@ -130,7 +130,7 @@ def kept(seed: int) -> dict[str, set[Event]]:
 
 
 def _preserved(e: Event, dug: bool) -> float:
-    """Chance that an event left a bed that the survey found: rock, gravel and till are lost with age; lake mud is cored where the museum digs."""
+    """Chance that an event left a bed that the survey found: rock, gravel and till are lost with age; mud is cored where the museum dug."""
     if e.kind == "people":
         return 0.0 if e.age <= 400 else 0.3 if dug else 0.01
     lasting = {"rock": 50e6, "river": 0.5e6, "ice": 30e3}

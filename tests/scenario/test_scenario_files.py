@@ -35,7 +35,8 @@ def test_seed_suits_and_the_first_ones_do_not() -> None:
 def test_story_gives_the_true_counts(record: list[made.Event], lists: dict[str, set[made.Event]]) -> None:
     story = (made.FOLDER / "story.md").read_text(encoding="utf-8")
     counts = Counter(e.kind for e in record)
-    for process, kind in {"rock": "rock", "river": "river", "ice": "ice", "people": "people", "old works": "old", "machines": "mach"}.items():
+    names = {"rock": "rock", "river": "river", "ice": "ice", "people": "people", "old works": "old", "machines": "mach"}
+    for process, kind in names.items():
         assert re.search(rf"^\| {process} \|.*\| {counts[kind]} \|$", story, re.M), process
     assert f"holds {len(record)} events" in story
     refused = Counter(r[0] for r in made.REFUSED)

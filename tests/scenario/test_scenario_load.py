@@ -1,5 +1,5 @@
 # SPDX-License-Identifier: Apache-2.0
-"""The scenario through the tool: every row read or refused for the reason intended, linked well against gold, and judged as its story says."""
+"""The scenario through the tool: every row read or refused for the reason intended, linked well against gold, judged as its story says."""
 
 from __future__ import annotations
 

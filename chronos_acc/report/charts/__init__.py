@@ -45,8 +45,8 @@ def chart(
 ) -> ChartData:
     """The numbers of one kind of chart for a record.
 
-    ``trend``, ``bias``, ``grid`` and ``intervals`` are results for the same record, where they are at hand; a kind computes what it lacks with
-    ``seed`` and ``draws`` if that takes a second or two, and else says what to give. Ages and intervals in years.
+    ``trend``, ``bias``, ``grid`` and ``intervals`` are results for the same record, where they are at hand; a kind computes what it
+    lacks with ``seed`` and ``draws`` if that takes a second or two, and else says what to give. Ages and intervals in years.
     Raises WrongUse for an unknown kind or a missing result, RecordRefused where the record is too small.
     """
     for member in CHARTS:

@@ -20,7 +20,8 @@ LEAST = 100  # pairs in a bin from which a 95 % band is drawn
 def interval_band(record: Record, window: Window, null: Null, *, seed: int, floor: float, stream: int) -> tuple[Floats, Floats, Floats]:
     """Ages (b,) and the 2.5 and 97.5 % points (b,) of the null's intervals that open there, all in years, from young to old.
 
-    ``floor`` is the least age and interval that has a logarithm. Bins of equal log age, from half the youngest age of the window to its length; those the null hardly visits are left out.
+    ``floor`` is the least age and interval that has a logarithm. Bins of equal log age, from half the youngest
+    age of the window to its length; those the null hardly visits are left out.
     """
     rng = np.random.default_rng([seed, 8801, stream])
     size = min(MOST_RECORDS, max(LEAST_RECORDS, CELLS // max(len(window.times), 1)))

@@ -47,20 +47,21 @@ class Canvas:
 
     def stroke(self, points: list[tuple[float, float]], ink: str, pattern: int = 0, heavy: bool = False) -> None:
         """A line through shares, dot by dot, in one of PATTERNS, two dots thick where ``heavy``; parts outside the area are left out."""
-        below = 1 / (self.rows * 4)
         drawn, gap = PATTERNS[pattern % len(PATTERNS)]
         step = 0
         for (x0, y0), (x1, y1) in zip(points, points[1:], strict=False):
             if not all(map(math.isfinite, (x0, y0, x1, y1))):
                 continue
             across, up = (x1 - x0) * self.columns * 2, (y1 - y0) * self.rows * 4
+            steep = abs(up) > abs(across)
+            aside, below = (1 / (self.columns * 2), 0.0) if steep else (0.0, 1 / (self.rows * 4))
             length = min(max(1, math.ceil(max(abs(across), abs(up)))), 20_000)
             for k in range(length):
                 if step % (drawn + gap) < drawn:
                     x, y = x0 + (x1 - x0) * k / length, y0 + (y1 - y0) * k / length
                     self._dot(x, y, ink)
                     if heavy:
-                        self._dot(x + (1 / (self.columns * 2) if abs(up) > abs(across) else 0.0), y - (0.0 if abs(up) > abs(across) else below), ink)
+                        self._dot(x + aside, y - below, ink)
                 step += 1
 
     def _dot(self, x: float, y: float, ink: str) -> None:

@@ -44,8 +44,9 @@ def build(inputs: Inputs) -> ChartData:
             middle = [float(np.sqrt(max(b.age_from, floor) * max(b.age_to, floor))) for b in bins]
             points.append(
                 Series(
-                    name, "dots", "data", floats(middle), floats(b.completeness for b in bins), floats(max(b.age_from, floor) for b in bins),
-                    floats(max(b.age_to, floor) for b in bins), floats(b.completeness_low for b in bins), floats(b.completeness_high for b in bins),
+                    name, "dots", "data", floats(middle), floats(b.completeness for b in bins),
+                    floats(max(b.age_from, floor) for b in bins), floats(max(b.age_to, floor) for b in bins),
+                    floats(b.completeness_low for b in bins), floats(b.completeness_high for b in bins),
                 )
             )  # fmt: skip
     named = window.index[window.opening : len(window.times) - window.closing]
@@ -55,7 +56,10 @@ def build(inputs: Inputs) -> ChartData:
         notes.append("no bin of age holds ten shared milestones")
     apart = sum(not _meets(capture.fit, b, floor) for b in capture.bins)
     if apart:
-        notes.append(f"{apart} of {len(capture.bins)} bins lie outside the joint fit's band: one curve of naming does not suit all ages, or lists follow one another")
+        notes.append(
+            f"{apart} of {len(capture.bins)} bins lie outside the joint fit's band: one curve of naming does not suit all ages, "
+            "or lists follow one another"
+        )
     return ChartData(
         "completeness",
         CHART.question,
@@ -76,4 +80,6 @@ def _meets(fit: CaptureFit, found: CoverageBin, floor: float) -> bool:
     return False
 
 
-CHART = Chart("completeness", "What share of the milestones of each age did the lists find?", "two independent lists that share ten milestones", build)
+CHART = Chart(
+    "completeness", "What share of the milestones of each age did the lists find?", "two independent lists that share ten milestones", build
+)

@@ -26,7 +26,8 @@ class Axis:
     """One axis: what it shows, in which unit, and from where to where.
 
     ``low`` and ``high`` are the limits in the axis's unit, low < high; ``backward`` axes run from high to low (ages, so that time runs to
-    the right). On a "names" axis the values are 0, 1, 2 … and ``names`` are their labels, from the top or left. ``style`` says how a tick is written.
+    the right). On a "names" axis the values are 0, 1, 2 … and ``names`` are their labels, from the top or left.
+    ``style`` says how a tick is written.
     """
 
     label: str
@@ -65,8 +66,8 @@ class Series:
     """Points that belong together (p of them), in the units of the axes.
 
     ``mark`` dots (with bars where bounds are given), line, steps, band (between y_low and y_high along x), rule (a line across the panel at
-    each x, or at each y where x is empty) and ticks (short upright strokes). ``role``: data, open, null, law, mark, faint: how much weight it has. Bounds are empty or as long as
-    x; NaN where there is none. ``label`` names single points, empty or as long as x.
+    each x, or at each y where x is empty) and ticks (short upright strokes). ``role``: data, open, null, law, mark, faint: how much
+    weight it has. Bounds are empty or as long as x; NaN where there is none. ``label`` names single points, empty or as long as x.
     """
 
     name: str
@@ -117,7 +118,7 @@ class ChartData:
         return tuple(s for panel in self.panels for s in panel.series)
 
     def to_frame(self) -> pd.DataFrame:
-        """One row a point: panel, series, mark, role, x, y, x_low, x_high, y_low, y_high, label; unrounded, NaN where a value does not exist."""
+        """One row a point: panel, series, mark, role, x, y, x_low, x_high, y_low, y_high, label; unrounded, NaN where there is no value."""
         import pandas as pd
 
         rows: list[dict[str, Any]] = []
@@ -151,7 +152,8 @@ class ChartData:
 
         panels = [{"y": axis(p.y), "series": [series(s) for s in p.series]} for p in self.panels]
         return {
-            "kind": self.kind, "question": self.question, "x": axis(self.x), "panels": panels, "reading": self.reading, "notes": list(self.notes),
+            "kind": self.kind, "question": self.question, "x": axis(self.x), "panels": panels, "reading": self.reading,
+            "notes": list(self.notes),
         }  # fmt: skip
 
 

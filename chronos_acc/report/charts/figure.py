@@ -1,7 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """A chart as a figure for print: PNG, SVG or PDF by the file's ending. Needs the extra "figures" (matplotlib).
 
-Same data, same bytes: no dates in the files, and the ids of an SVG are hashed with a fixed salt. No global state of the plotting library is touched.
+Same data, same bytes: no dates in the files, and the ids of an SVG are hashed with a fixed salt. No global state of the plotting
+library is touched.
 """
 
 from __future__ import annotations
@@ -24,8 +25,8 @@ ENDINGS = ("png", "svg", "pdf")
 _STYLE = {
     "font.family": "DejaVu Sans", "font.size": 8.5, "axes.titlesize": 10, "axes.labelsize": 8.5, "axes.edgecolor": palette.QUIET,
     "axes.labelcolor": palette.INK, "xtick.color": palette.QUIET, "ytick.color": palette.QUIET, "xtick.labelcolor": palette.INK,
-    "ytick.labelcolor": palette.INK, "text.color": palette.INK, "axes.linewidth": 0.8, "svg.hashsalt": "chronos-acc", "svg.fonttype": "path",
-    "pdf.fonttype": 42, "hatch.linewidth": 0.5, "path.simplify": True, "axes.unicode_minus": True,
+    "ytick.labelcolor": palette.INK, "text.color": palette.INK, "axes.linewidth": 0.8, "svg.hashsalt": "chronos-acc",
+    "svg.fonttype": "path", "pdf.fonttype": 42, "hatch.linewidth": 0.5, "path.simplify": True, "axes.unicode_minus": True,
 }  # fmt: skip
 _NOT_OURS = ("backend", "backend_fallback", "interactive", "toolbar")  # of a person's session; figures are drawn without them
 _METADATA: dict[str, dict[str, Any]] = {
@@ -43,7 +44,8 @@ def to_figure(data: ChartData, path: str | os.PathLike[str]) -> Path:
     target = Path(path)
     ending = target.suffix.lower().lstrip(".")
     if ending not in ENDINGS:
-        raise WrongUse(f"a figure is written as png, svg or pdf by the file's ending, not {target.suffix or 'without one'!r}: {target.name}")
+        given = repr(target.suffix) if target.suffix else "without one"
+        raise WrongUse(f"a figure is written as png, svg or pdf by the file's ending, not {given}: {target.name}")
     try:
         import matplotlib
         from matplotlib.figure import Figure
@@ -86,7 +88,8 @@ def _compose(figure: Any, data: ChartData) -> None:
     axes[-1].set_xlabel(_text(data.x.title))
     if handles:
         columns = 2 if max(map(len, handles)) > 26 or len(handles) > 3 else len(handles)
-        figure.legend(handles.values(), handles.keys(), loc="outside lower left", ncols=columns, frameon=False, fontsize=7.8, handlelength=2.6)
+        place = {"loc": "outside lower left", "ncols": columns, "frameon": False, "fontsize": 7.8, "handlelength": 2.6}
+        figure.legend(handles.values(), handles.keys(), **place)
 
 
 def _frame(ax: Any, x: Axis, y: Axis) -> None:
@@ -119,15 +122,16 @@ def _panel(ax: Any, x: Axis, panel: Panel, handles: dict[str, Any]) -> None:
     for s in panel.series:
         if s.mark == "band":
             handle = ax.fill_between(
-                s.x, s.y_low, s.y_high, facecolor=palette.BANDS[bands % 2], alpha=0.75, linewidth=0.6, edgecolor=palette.QUIET if bands % 2 else "none",
-                hatch=palette.HATCHES[bands % 2] or None, zorder=1 + bands % 2 * 0.1,
+                s.x, s.y_low, s.y_high, facecolor=palette.BANDS[bands % 2], alpha=0.75, linewidth=0.6,
+                edgecolor=palette.QUIET if bands % 2 else "none", hatch=palette.HATCHES[bands % 2] or None, zorder=1 + bands % 2 * 0.1,
             )  # fmt: skip
             bands += 1
         elif s.mark in ("line", "steps"):
             law = s.role == "law"
             handle = ax.plot(
                 s.x, s.y, drawstyle="steps-post" if s.mark == "steps" else "default", color=palette.LAWS[laws % 4] if law else _colour(s),
-                lw={"law": 1.3, "faint": 0.7}.get(s.role, 1.6), linestyle=palette.STROKES[laws % 4] if law else "solid", zorder=3 + (not law) * 0.5,
+                lw={"law": 1.3, "faint": 0.7}.get(s.role, 1.6), linestyle=palette.STROKES[laws % 4] if law else "solid",
+                zorder=3 + (not law) * 0.5,
             )[0]  # fmt: skip
             laws += law
         elif s.mark == "rule":
@@ -142,9 +146,11 @@ def _panel(ax: Any, x: Axis, panel: Panel, handles: dict[str, Any]) -> None:
             _bars(ax, s)
             hollow = s.role == "open"
             size = 5.5 if hollow or s.role == "mark" else 1.6 if len(s) > CROWD else 3.8
+            edge = 1.3 if hollow else 0.0 if size < 2 else 0.4
             handle = ax.plot(
                 s.x, s.y, linestyle="none", marker="D" if s.role in ("open", "mark") else palette.MARKS[dots % 4], ms=size,
-                mfc=palette.PAPER if hollow else _colour(s), mec=_colour(s) if hollow else palette.PAPER, mew=1.3 if hollow else 0.0 if size < 2 else 0.4, zorder=6 if hollow else 5,
+                mfc=palette.PAPER if hollow else _colour(s), mec=_colour(s) if hollow else palette.PAPER, mew=edge,
+                zorder=6 if hollow else 5,
             )[0]  # fmt: skip
             dots += s.role == "data"
         if s.name and len(s):
@@ -156,7 +162,8 @@ def _colour(s: Series) -> str:
 
 
 def _bars(ax: Any, s: Series) -> None:
-    style = {"color": palette.SIGNAL if s.role == "mark" else palette.QUIET, "lw": 1.2 if s.role == "mark" else 0.7, "zorder": 2.5, "alpha": 0.8}
+    loud = s.role == "mark"
+    style = {"color": palette.SIGNAL if loud else palette.QUIET, "lw": 1.2 if loud else 0.7, "zorder": 2.5, "alpha": 0.8}
     if s.x_low:
         pairs = [(y, a, b) for y, a, b in zip(s.y, s.x_low, s.x_high, strict=True) if math.isfinite(a) and math.isfinite(b)]
         ax.hlines([p[0] for p in pairs], [p[1] for p in pairs], [p[2] for p in pairs], **style)

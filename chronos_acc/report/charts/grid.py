@@ -16,14 +16,14 @@ def build(inputs: Inputs) -> ChartData:
     grid = inputs.grid
     if grid is None:
         raise missing("grid", "grid", "run_grid")
-    lines = sorted((line for line in grid.lines if line.z is not None and np.isfinite(line.z)), key=lambda line: (line.z, _mixed(line.number)))
+    valid = [i for i, line in enumerate(grid.lines) if line.z is not None and np.isfinite(line.z)]
+    lines = sorted((grid.lines[i] for i in valid), key=lambda line: (line.z, _mixed(line.number)))
     if not lines:
         raise RecordRefused("no combination of the grid could be run, so there is nothing to sort; its table `invalid` says why")
     z = floats(line.z for line in lines)
     rank = floats(range(1, len(lines) + 1))
     series = []
     if grid.z_joint is not None and len(grid.z_joint):
-        valid = [i for i, line in enumerate(grid.lines) if line.z is not None and np.isfinite(line.z)]
         null = np.sort(grid.z_joint[:, valid], axis=1)  # what does not exist sorts last
         null = null[np.isfinite(null).all(axis=1)]
         if len(null) >= 20:
@@ -49,11 +49,12 @@ def build(inputs: Inputs) -> ChartData:
                 continue
             at = tuple(r for r, line in zip(rank, lines, strict=True) if line.options[choice] == option)
             strips.append(Series("stands behind these ranks", "ticks", "faint", at, (float(len(names)),) * len(at)))
-            names.append(f"{choice.replace('_', ' ')}: {option:g}" if isinstance(option, float) else f"{choice.replace('_', ' ')}: {option}")
+            shown = f"{option:g}" if isinstance(option, float) else option
+            names.append(f"{choice.replace('_', ' ')}: {shown}")
     tied = max(z.count(v) for v in (z[0], z[-1], float(np.median(z))))
     notes = [grid.sentence, *grid.notes]
     if tied > len(z) / 20:
-        notes.append(f"{tied} combinations share one z, the end of what their null records can show; their order among one another is mixed on purpose")
+        notes.append(f"{tied} combinations share one z, the end of what their null records can show; their order is mixed on purpose")
     panels = [Panel(Axis("z against a steady rate", "", low_z, high_z), tuple(series))]
     if names:
         panels.append(Panel(Axis("options", "", -0.5, len(names) - 0.5, "names", names=tuple(names)), tuple(strips)))

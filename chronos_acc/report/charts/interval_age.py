@@ -43,7 +43,8 @@ def build(inputs: Inputs) -> ChartData:
     slope, level = (float(v) for v in kernels.log_log(ages, gaps)[:2]) if len(ages) > 2 else (np.nan, np.nan)
     if np.isfinite(slope):
         ends = np.array([ages.min(), ages.max()])
-        lines.append(Series(f"least squares, slope {slope:.2f}", "line", "law", floats(ends), floats(10.0 ** (level + slope * np.log10(ends)))))
+        fitted = 10.0 ** (level + slope * np.log10(ends))
+        lines.append(Series(f"least squares, slope {slope:.2f}", "line", "law", floats(ends), floats(fitted)))
     points = Series(
         "milestone, with 95 % bars", "dots", "data", floats(ages), floats(gaps), floats(young), floats(old), floats(low), floats(high),
         label=tuple(str(t) for t in closed["title"]),
@@ -58,13 +59,15 @@ def build(inputs: Inputs) -> ChartData:
         notes.append(f"{joined} milestones share their date with the one before; an interval of zero has no place on a log axis")
     if len(ages) and len(bands[0]):
         out = _outside(bands[0], ages, gaps)
-        notes.append(f"{out} of {len(ages)} intervals lie outside the band of even picking; chance alone puts about {0.05 * len(ages):.0f} there")
+        chance = f"{0.05 * len(ages):.0f}"
+        notes.append(f"{out} of {len(ages)} intervals lie outside the band of even picking; chance alone puts about {chance} there")
     return ChartData(
         "interval_age",
         CHART.question,
         age_axis(record, [*ages, *open_age, *(a for s in bands for a in s.x)]),
         (Panel(Axis("interval to the next", "years", bottom, top, "log", style="length"), (*bands, *lines, points, still)),),
-        "A straight cloud with slope near 1 is what even picking per log age gives by itself; only points outside the bands ask for another explanation.",
+        "A straight cloud with slope near 1 is what even picking per log age gives by itself; only points outside the bands ask "
+        "for another explanation.",
         tuple(notes),
     )
 

@@ -70,7 +70,8 @@ def at_least(window: Window, count: int, what: str) -> None:
     from ...errors import RecordRefused
 
     if len(window.times) < count:
-        raise RecordRefused(f"{what} needs {count} milestones inside the window; there are {len(window.times)}. Load more lists or widen the window")
+        there = len(window.times)
+        raise RecordRefused(f"{what} needs {count} milestones inside the window; there are {there}. Load more lists or widen the window")
 
 
 def missing(kind: str, result: str, function: str) -> WrongUse:

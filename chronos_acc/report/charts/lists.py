@@ -47,7 +47,10 @@ def build(inputs: Inputs) -> ChartData:
         p = pooled[0]
         rows = (*names, "pooled")
         series.append(
-            Series("pooled mean (Hartung–Knapp), 95 %", "dots", "mark", floats([p.mean]), (float(len(names)),), floats([p.low]), floats([p.high]))
+            Series(
+                "pooled mean (Hartung–Knapp), 95 %", "dots", "mark", floats([p.mean]), (float(len(names)),), floats([p.low]),
+                floats([p.high]),
+            )  # fmt: skip
         )
         if p.p_equal is not None:
             notes.append(f"equal slopes: p = {p.p_equal:.3f}, by exchanging the labels of lists within milestones")
@@ -60,15 +63,16 @@ def build(inputs: Inputs) -> ChartData:
         CHART.question,
         Axis("slope of log interval on log age", "", low, high),
         (Panel(Axis("list", "", -0.5, len(rows) - 0.5, "names", names=rows), tuple(series)),),
-        "A slope near 1 is what even picking per log age gives by itself; lists that disagree on one stretch of time were made differently.",
+        "A slope near 1 is what even picking per log age gives by itself; lists that disagree on one stretch of time were "
+        "made differently.",
         tuple(notes),
     )
 
 
 def _dots(name: str, role: str, rows: list[tuple[int, float, float | None, float | None]], shift: float, names: tuple[str, ...]) -> Series:
     return Series(
-        name, "dots", "faint" if role == "faint" else "data", floats(r[1] for r in rows), floats(r[0] + shift for r in rows), floats(r[2] for r in rows),
-        floats(r[3] for r in rows), label=tuple(names[r[0]] for r in rows),
+        name, "dots", "faint" if role == "faint" else "data", floats(r[1] for r in rows), floats(r[0] + shift for r in rows),
+        floats(r[2] for r in rows), floats(r[3] for r in rows), label=tuple(names[r[0]] for r in rows),
     )  # fmt: skip
 
 

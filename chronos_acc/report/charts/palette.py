@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """Colours, strokes and marks of printed figures.
 
-Told apart by lightness and by form as well as by hue: hues follow the advice of Okabe and Ito (2008) for readers who see red and green alike, and
-lightness falls in steps, so that a grey copy keeps the order. Nothing is said by colour alone.
+Told apart by lightness and by form as well as by hue: hues follow the advice of Okabe and Ito (2008) for readers who see red and green
+alike, and lightness falls in steps, so that a grey copy keeps the order. Nothing is said by colour alone.
 """
 
 from __future__ import annotations

@@ -32,10 +32,12 @@ def build(inputs: Inputs) -> ChartData:
             continue
         name = "half forgotten every" if form.form == "exponential" else "1/(1 + age/s), s ="
         verdict = "" if form.suffices is None else ", suffices" if form.suffices else ", does not suffice"
-        curves.append(Series(f"{name} {numbers.span(form.estimate)}{verdict}", "line", "law", floats(grid), floats(form.listed_share(grid))))
+        words = f"{name} {numbers.span(form.estimate)}{verdict}"
+        curves.append(Series(words, "line", "law", floats(grid), floats(form.listed_share(grid))))
         bands.append(_band(form, grid))
         if form.form == "exponential":
-            marks.append(Series("tipping point", "dots", "mark", (form.estimate,), (0.5,), floats([form.low]), floats([_finite(form.high, top)])))
+            high = top if form.high is None else form.high
+            marks.append(Series("tipping point", "dots", "mark", (form.estimate,), (0.5,), floats([form.low]), floats([high])))
     rug = Series("milestone", "ticks", "faint", floats(ages), (0.0,) * len(ages))
     notes = list(found.notes)
     if not curves:
@@ -45,7 +47,8 @@ def build(inputs: Inputs) -> ChartData:
         CHART.question,
         age_axis(record, [float(grid[0]), top]),
         (Panel(Axis("listed share of a steady past", "", -0.04, 1.04, style="share"), (*bands, *curves, rug, *marks)),),
-        "If compilers forget at least as fast as a curve falls, a steady past gives this list; slower forgetting leaves some of the crowding unexplained.",
+        "If compilers forget at least as fast as a curve falls, a steady past gives this list; slower forgetting leaves some of the "
+        "crowding unexplained.",
         tuple(notes),
     )
 
@@ -65,10 +68,6 @@ def _curve(exponential: bool, size: float | None, grid: Floats) -> Floats:
     if size == 0:
         return np.zeros_like(grid)
     return np.asarray(np.exp2(-grid / size) if exponential else 1.0 / (1.0 + grid / size))
-
-
-def _finite(value: float | None, otherwise: float) -> float:
-    return otherwise if value is None else value
 
 
 CHART = Chart("recall", "How fast would compilers have to forget for a steady past to look like this?", "three milestones", build)

@@ -31,17 +31,20 @@ def build(inputs: Inputs) -> ChartData:
     rows = []
     for j, name in enumerate(record.lists):
         named = record.mentions[index, j]
-        rows.append(Series("named by the list", "ticks", "faint", floats(ages[named]), (float(j),) * int(named.sum()), label=(name,) * int(named.sum())))
+        count = int(named.sum())
+        rows.append(Series("named by the list", "ticks", "faint", floats(ages[named]), (float(j),) * count, label=(name,) * count))
+    k = len(record.lists)
     panels = (
         Panel(Axis("named by", "independent lists", -0.5, most - 0.5, "names", names=names), levels, 1.0),
-        Panel(Axis("each list", "", -0.5, len(record.lists) - 0.5, "names", names=record.lists), tuple(rows), max(0.6, len(record.lists) / max(most, 1))),
+        Panel(Axis("each list", "", -0.5, k - 0.5, "names", names=record.lists), tuple(rows), max(0.6, k / most)),
     )
     return ChartData(
         "support",
         CHART.question,
         age_axis(record, [*ages]),
         panels,
-        "Where one list ends and another begins, the spacing is the lists' before it is history's; milestones with more support are better known, and younger.",
+        "Where one list ends and another begins, the spacing is the lists' before it is history's; milestones with "
+        "more support are better known, and younger.",
     )
 
 

@@ -107,7 +107,8 @@ def _band(canvas: Canvas, x: Axis, y: Axis, s: Series, index: int) -> None:
     for (x0, a0, b0), (x1, a1, b1) in zip(points, points[1:], strict=False):
         if not all(map(math.isfinite, (x0, x1, a0, a1, b0, b1))):
             continue
-        for column in range(max(math.ceil(x0 * canvas.columns - 0.5), 0), min(math.floor(x1 * canvas.columns - 0.5), canvas.columns - 1) + 1):
+        first, last = math.ceil(x0 * canvas.columns - 0.5), math.floor(x1 * canvas.columns - 0.5)
+        for column in range(max(first, 0), min(last, canvas.columns - 1) + 1):
             t = ((column + 0.5) / canvas.columns - x0) / (x1 - x0) if x1 > x0 else 0.5
             canvas.shade(column, a0 + (a1 - a0) * t, b0 + (b1 - b0) * t, 1 << min(index, 1))
 
