@@ -69,7 +69,7 @@ def test_after_a_swap_the_interval_runs_to_what_comes_next_in_that_draw() -> Non
 
 
 @settings(max_examples=40, deadline=None)
-@given(st.lists(st.floats(-1e6, 2000), min_size=0, max_size=12), st.floats(0, 1e4), st.integers(0, 10))
+@given(st.lists(st.floats(-1e6, 2000), min_size=0, max_size=12), st.floats(1e-3, 1e4) | st.just(0.0), st.integers(0, 10))
 def test_never_negative_and_whole(dates: list[float], unit: float, seed: int) -> None:
     series = interval_series(Record.from_dates(dates, present=2000.0, unit=unit), seed=seed, draws=30)
     for values in (series.interval, series.interval_low, series.interval_median, series.interval_high):

@@ -37,10 +37,12 @@ def link(entries: Entries, decisions: Sequence[Decision] = (), options: LinkOpti
     tell("reading titles", 0.0)
     titles = Titles.of(ranked.title)
     found = find(ranked, titles, tell)
-    model, scores = fit(ranked, titles, found)
-    clusters, contradicted = build(ranked.source, found.a, found.b, scores.score, options.accept, same, different)
-    a, b, state = _states(ranked, found.a, found.b, scores.score, clusters, options, same, different)
-    table = _score_pairs(ranked, titles, model, found.near, a, b, found.a, found.b, scores)
+    tell("estimating likelihood ratios", 0.0)
+    model, held, scores = fit(ranked, titles, found)
+    pair_a, pair_b = found.a[held], found.b[held]
+    clusters, contradicted = build(ranked.source, pair_a, pair_b, scores.score, options.accept, same, different)
+    a, b, state = _states(ranked, pair_a, pair_b, scores.score, clusters, options, same, different)
+    score, parts = _score_pairs(ranked, titles, model, found.near, a, b, pair_a, pair_b, scores)
     label = clusters.labels()
     smallest = np.full(len(order), np.iinfo(np.int64).max, dtype=np.int64)
     np.minimum.at(smallest, label, ranked.id)
@@ -50,7 +52,6 @@ def link(entries: Entries, decisions: Sequence[Decision] = (), options: LinkOpti
     left, right = order[a], order[b]
     first, second = np.minimum(left, right), np.maximum(left, right)
     rows = np.lexsort((second, first))
-    score, parts = table
     return Linked(
         a=first[rows],
         b=second[rows],

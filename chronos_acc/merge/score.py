@@ -32,10 +32,10 @@ NONE_SHARED_COUNT = 200.0
 PRECISE_DATES = np.array([0.26, 0.24, 0.18, 0.15, 0.09, 0.05, 0.03])
 WIDE_DATES = np.array([0.12, 0.18, 0.20, 0.20, 0.15, 0.10, 0.05])
 FAR_SAMPLE = 150_000
-MESSAGES = 30
+MESSAGES = 12
 STRONGEST = 25.0  # log odds; beyond, differences between floats would lose the rivals
-HOPELESS = 1e-5  # a probability under the prior model
-ROUNDS = 40
+HOPELESS = -7.0  # log odds under the prior model: one in a thousand
+ROUNDS = 25
 STRATA = 3
 MOST_SHARED = 0.75  # no two lists are so alike that an entry without a partner would be a surprise
 
@@ -88,7 +88,8 @@ class Model:
 class Features:
     """What the model looks at, one row a pair."""
 
-    similarity: Floats
+    step: Ints  # title similarity: the bin centre below
+    rest: Floats  # and the way from there to the next, 0 to 1
     met: Bools  # a distinctive word of one title is met in the other
     stratum: Ints  # how much the shorter of the two titles says: 0 little to 2 much
     date_bin: Ints
@@ -110,10 +111,14 @@ def features(entries: Entries, titles: Titles, a: Ints, b: Ints, similarity: Flo
     gap = np.abs(entries.best[a] - entries.best[b]) / (reach[a] + reach[b])
     wide = (room[a] + room[b]) / (reach[a] + reach[b]) < 0.6
     list_a, list_b = entries.source[a], entries.source[b]
+    centre = 0.5 * (TITLE_EDGES[1:] + TITLE_EDGES[:-1])
+    position = np.interp(similarity, centre, np.arange(len(centre), dtype=float))
+    step = np.minimum(position.astype(np.int64), len(centre) - 2)
     code = _category_codes(entries)
     known = (code[a] >= 0) & (code[b] >= 0) & comparable[list_a, list_b]
     return Features(
-        similarity=similarity,
+        step=step,
+        rest=position - step,
         met=met,
         stratum=_strata(titles, a, b),
         date_bin=np.clip(np.searchsorted(DATE_EDGES, np.minimum(gap, 1.0), side="left") - 1, 0, len(DATE_EDGES) - 2).astype(np.int64),
@@ -125,8 +130,8 @@ def features(entries: Entries, titles: Titles, a: Ints, b: Ints, similarity: Flo
     )
 
 
-def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Scores]:
-    """Estimate the model on the candidates, and score them."""
+def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Bools, Scores]:
+    """Estimate the model on the candidates; which of them (q,) have a chance at all, and the scores of those."""
     comparable = _shared_vocabulary(entries)
     chance, far_pairs = _measured_chance(entries, titles, found)
     seen = features(entries, titles, found.a, found.b, found.similarity, found.met, found.near, comparable)
@@ -137,26 +142,26 @@ def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Sco
     category = np.log(np.array([(1 - CATEGORY_AGREES) / (1 - CHANCE_AGREES), CATEGORY_AGREES / CHANCE_AGREES]))
     nothing = seen.only(np.zeros(len(found.a), dtype=bool))
     model = Model(_title_ratio(nothing, found.a[:0], np.zeros(0), chance), dates, category, share, comparable)
-    prior = rate(model, seen, key_a, key_b, k * lists)
-    first = prior.score
-    others = seen.only(prior.title < 0)  # how dates and categories agree by chance is measured on neighbours of unlike titles
+    first = log_odds_parts(model, seen)
+    others = seen.only(first[0] < 0)  # how dates and categories agree by chance is measured on neighbours of unlike titles
     date_chance, agree_chance = _date_chance(others), _agree_chance(others)
-    held = first > HOPELESS  # the rest cannot rise, and in a crowded span it is nearly all
+    held: Bools = first[0] + first[1] + first[2] + first[3] > HOPELESS  # the rest cannot rise, and in a crowded span it is nearly all
     some, some_a, some_b = seen.only(held), key_a[held], key_b[held]
-    title_bin = _title_bin(some.similarity)
+    title_bin = _title_bin(found.similarity[held])
     size = np.bincount(entries.source, minlength=lists).astype(float)
     shorter = np.minimum(size[:, None], size[None, :])
-    p = first[held]
+    scores = rate(model, some, some_a, some_b, k * lists)
     for _ in range(ROUNDS):
+        p = scores.score
         model = Model(
             _title_ratio(some, title_bin, p, chance), _date_ratio(some, p, date_chance), _category_ratio(some, p, agree_chance),
             _share(some, p, shorter), comparable,
         )  # fmt: skip
-        before, p = p, rate(model, some, some_a, some_b, k * lists).score
-        if not len(p) or np.abs(p - before).max() < 1e-3:
+        scores = rate(model, some, some_a, some_b, k * lists)
+        if np.abs(scores.score - p).max(initial=0.0) < 3e-3:
             break
-    scores = rate(model, seen, key_a, key_b, k * lists)
-    return Model(model.title_ratio, model.date_ratio, model.category_ratio, model.share, comparable, _remarks(far_pairs, float(p.sum()))), scores
+    notes = _remarks(far_pairs, float(scores.score.sum()))
+    return Model(model.title_ratio, model.date_ratio, model.category_ratio, model.share, comparable, notes), held, scores
 
 
 def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> Scores:
@@ -175,7 +180,7 @@ def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> S
         new_a, new_b = 1 / np.maximum(taken[key_a] - from_b, 1.0), 1 / np.maximum(taken[key_b] - from_a, 1.0)
         moved = max(np.abs(new_a - free_a).max(initial=0.0), np.abs(new_b - free_b).max(initial=0.0))
         free_a, free_b = 0.5 * (free_a + new_a), 0.5 * (free_b + new_b)
-        if moved < 1e-4:
+        if moved < 1e-3:
             break
     rivals = -np.log(free_a * free_b)
     return Scores(1 / (1 + np.exp(rivals - log_odds)), title, date, category, prior, rivals)
@@ -183,9 +188,8 @@ def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> S
 
 def log_odds_parts(model: Model, seen: Features) -> tuple[Floats, Floats, Floats, Floats]:
     """Log likelihood ratios of title, date and category, and the log prior odds."""
-    centre = 0.5 * (TITLE_EDGES[1:] + TITLE_EDGES[:-1])
     row = np.where(seen.met, seen.stratum, STRATA)
-    title = np.select([row == g for g in range(STRATA + 1)], [np.interp(seen.similarity, centre, r) for r in model.title_ratio])
+    title = model.title_ratio[row, seen.step] * (1 - seen.rest) + model.title_ratio[row, seen.step + 1] * seen.rest
     date = model.date_ratio[seen.regime, seen.date_bin]
     category = np.where(seen.agree < 0, 0.0, model.category_ratio[np.maximum(seen.agree, 0)])
     share = model.share[seen.list_a, seen.list_b]
