@@ -4,6 +4,7 @@
 from __future__ import annotations
 
 import re
+import shutil
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -17,7 +18,7 @@ from chronos_acc.errors import QueryRefused
 from chronos_acc.store import decisions as D
 from chronos_acc.store import query as Q
 from chronos_acc.store import timeline as T
-from chronos_acc.store.ledger import open_for_writing
+from chronos_acc.store.ledger import GUARDED, open_for_reading, open_for_writing
 from chronos_acc.store.linking import relink
 from chronos_acc.store.runs import record_run
 from tests.store.timelines import BRIDGE, KILN, MILL, put, two_lists
@@ -29,8 +30,8 @@ VALUES = {
 
 
 @pytest.fixture(scope="module")
-def db(tmp_path_factory: pytest.TempPathFactory) -> Path:
-    """A timeline in which every named query finds something."""
+def db(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Path]:
+    """A timeline in which every named query finds something; held open as ``run`` opens it, which makes opening it again cheap."""
     path = two_lists(tmp_path_factory.mktemp("named") / "t.duckdb")
     with open_for_writing(path) as ledger, ledger.transaction():
         put(ledger, "gamma", [("gate", 1500.5), {"title": "gate", "best": 1500.5, "duplicate": True}, (KILN, 1200.5), (MILL, 1650.5), (BRIDGE, 1890.5)], derives_from=["beta"])
@@ -43,7 +44,8 @@ def db(tmp_path_factory: pytest.TempPathFactory) -> Path:
     with open_for_writing(path) as ledger:
         ledger.run("UPDATE ledger.decision SET date_a = 'another'")
     record_run(path, command="chronos-acc grid", seed=1, draws=10, record="abc")
-    return path
+    with open_for_reading(path, config=GUARDED):
+        yield path
 
 
 def test_there_are_at_least_fifteen() -> None:
@@ -101,7 +103,7 @@ def _named_only(keys: str, query: Q.NamedQuery) -> str:
     return ", ".join(dict.fromkeys(out))
 
 
-def test_values(db: Path) -> None:
+def test_values(db: Path, tmp_path: Path) -> None:
     """A few answers known by hand."""
     overlap = Q.run(db, "overlap").set_index(["source_a", "source_b"])
     assert overlap.loc[("alpha", "beta"), "shared"] == 2 and overlap.loc[("beta", "gamma"), "shared"] == 3
@@ -110,7 +112,7 @@ def test_values(db: Path) -> None:
     assert Q.run(db, "duplicates")["title"].tolist() == ["gate"]
     assert Q.run(db, "decisions_to_look_at")["status"].tolist() == ["date changed"]
     support = Q.run(db, "support_by_epoch")
-    assert support["milestones"].sum() == len(T.record(db).window.times) and (support["single"] + support["shared"] == support["milestones"]).all()
+    assert support["milestones"].sum() == len(T.record(shutil.copy(db, tmp_path)).window.times) and (support["single"] + support["shared"] == support["milestones"]).all()
     series = Q.run(db, "intervals")
     counts = Q.run(db, "counts_per_decade_of_age")
     assert counts["milestones"].sum() == len(series) and counts["cumulative"].iloc[-1] == len(series)

@@ -3,6 +3,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from pathlib import Path
 
 import numpy as np
@@ -19,8 +20,11 @@ from tests.store.timelines import BRIDGE, KILN, MILL, Row, make, put, two_lists
 
 
 @pytest.fixture(scope="module")
-def db(tmp_path_factory: pytest.TempPathFactory) -> Path:
-    return two_lists(tmp_path_factory.mktemp("timeline") / "t.duckdb")
+def db(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Path]:
+    """Held open for reading, which makes opening it again cheap."""
+    path = two_lists(tmp_path_factory.mktemp("timeline") / "t.duckdb")
+    with open_for_reading(path):
+        yield path
 
 
 def test_the_record_says_what_the_milestones_say(db: Path) -> None:
