@@ -20,16 +20,17 @@ MAY = {
     "errors": set(),
     "progress": set(),
     "files": {"errors"},
+    "notebook": set(),
     "dating": {"errors", "files"},
     "record": {"dating", "errors", "progress"},
     "merge": {"record", "dating", "errors", "progress"},
-    "intervals": {"record", "dating", "errors", "progress"},
-    "store": {"merge", "record", "dating", "errors", "files", "progress", "intervals", "chronos_acc"},
-    "trend": {"record", "dating", "errors", "progress", "chronos_acc", "intervals"},
-    "bias": {"trend", "merge", "record", "dating", "errors", "progress", "chronos_acc", "intervals"},
-    "report": {"bias", "trend", "merge", "store", "record", "dating", "errors", "files", "progress", "intervals", "chronos_acc"},
+    "intervals": {"record", "dating", "errors", "progress", "notebook"},
+    "store": {"merge", "record", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
+    "trend": {"record", "dating", "errors", "progress", "chronos_acc", "intervals", "notebook"},
+    "bias": {"trend", "merge", "record", "dating", "errors", "progress", "chronos_acc", "intervals", "notebook"},
+    "report": {"bias", "trend", "merge", "store", "record", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
     "steps": {"report", "store", "bias", "trend", "merge", "record", "dating", "errors", "progress", "intervals"},
-    "cli": {"steps", "report", "store", "bias", "trend", "merge", "record", "dating", "errors", "files", "progress", "intervals", "chronos_acc"},
+    "cli": {"steps", "report", "store", "bias", "trend", "merge", "record", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
 }
 
 
