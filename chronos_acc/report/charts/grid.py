@@ -68,9 +68,13 @@ def build(inputs: Inputs) -> ChartData:
     )
 
 
-def _mixed(number: int) -> float:
-    """A place among ties that goes with no option: multiples of the golden ratio spread evenly."""
-    return number * 0.6180339887498949 % 1.0
+def _mixed(number: int) -> int:
+    """A place among ties that goes with no option: the finaliser of SplitMix64 (Steele, Lea and Flood 2014)."""
+    word = 2**64 - 1
+    h = number * 0x9E3779B97F4A7C15 & word
+    h = (h ^ h >> 30) * 0xBF58476D1CE4E5B9 & word
+    h = (h ^ h >> 27) * 0x94D049BB133111EB & word
+    return h ^ h >> 31
 
 
 CHART = Chart("grid", "How much does the answer depend on choices nobody can defend alone?", "the result of a grid", build)
