@@ -177,9 +177,10 @@ def _pooled(context: Context, strata: Sequence[_Stratum]) -> Growth:
     observed = float(sum(a.sum() for a, _ in used))
 
     def estimate(total: float) -> float:
-        return float(
-            brentq(lambda k: float((counts * ratio * _mean_age(k * ratio)).sum()) - total / longest, -1e7, 1e7, xtol=1e-10, rtol=1e-12)
-        )
+        def excess(k: float) -> float:
+            return float((counts * ratio * _mean_age(k * ratio)).sum()) - total / longest
+
+        return float(brentq(excess, -1e15, 1e15, xtol=1e-10, rtol=1e-12, maxiter=400))
 
     def per_event(k: float) -> float:
         return -k * observed / longest / n - float((counts * _log_mass(k * ratio)).sum()) / n

@@ -3,13 +3,19 @@
 
 from __future__ import annotations
 
-from scipy.special import stdtr, stdtrit
+import numpy as np
+import numpy.typing as npt
 
 from ..trend.capture import families, grouped
+from ..trend.kernels import growth_of_mean_age
+from ..trend.meta import pooled as pool_studies
 from ..trend.studies import PooledRow, lists_as_studies
 from .check import Answer, Check, Context, Row
-from .growth import growth
-from .rows import count, number, record_row, stands, telling
+from .growth import Growth, growth
+from .rows import count, number, record_row, simulated_row, telling
+
+Floats = npt.NDArray[np.float64]
+Bools = npt.NDArray[np.bool_]
 
 REPLICATES = 499
 MOST_CELLS = 1_000_000
@@ -29,7 +35,8 @@ def run(context: Context) -> Answer:
         rows.append(record_row("lists", name, part, published, kind="list", start=found.start, present=found.present))
     pooled = next((p for p in found.pooled if p.statistic == "growth"), None)
     if pooled is not None:
-        rows.append(_pooled(pooled, sum(r.n for r in rows), published.estimate, found.start, found.present))
+        chosen = np.array([r.pooled for r in found.rows], dtype=bool)
+        rows.append(_pooled(context, pooled, chosen, published, found.start, found.present))
     at = len(rows) - 1 if pooled is not None else telling(rows, published)
     agree = "" if pooled is None or pooled.p_equal is None else f"equal growth in all lists has p = {number(pooled.p_equal)}; "
     shown = "" if pooled is None else f"pooled growth {number(pooled.mean)} a year ({number(pooled.low)} to {number(pooled.high)}); "
@@ -43,11 +50,15 @@ def _replicates(context: Context) -> int:
     return min(REPLICATES, context.replicates, max(99, MOST_CELLS // max(len(context.record), 1)))
 
 
-def _pooled(p: PooledRow, n: int, published: float | None, start: float, present: float) -> Row:
-    """Hartung-Knapp mean; its p and the band of the mean under no growth from its own standard error."""
-    df = p.k - 1
-    error = (p.high - p.low) / 2 / float(stdtrit(df, 0.975))
-    value = 2.0 * float(stdtr(df, -abs(p.mean) / error)) if error > 0 else None
+def _pooled(context: Context, p: PooledRow, chosen: Bools, published: Growth, start: float, present: float) -> Row:
+    """Hartung-Knapp mean. Lists share milestones, so its own interval is too short: the row's null is a steady rate with the same
+    shared mentions.
+    """
+    window = context.record.only(start=start, present=present).window
+    counted = window.index[window.opening : window.opening + window.n]
+    named = grouped(context.record)[1][counted][:, chosen]
+    named = named[named.any(axis=1)]
+    null = _steady_means(named, window.span, np.random.default_rng([context.seed, 7901]), _replicates(context))
     more = {
         "low": p.low,
         "high": p.high,
@@ -62,19 +73,19 @@ def _pooled(p: PooledRow, n: int, published: float | None, start: float, present
         "prediction_high": p.prediction_high,
         "funnel_p": p.funnel_p,
     }
-    return Row(
-        "lists",
-        "pooled",
-        n,
-        p.mean,
-        "no growth in any list",
-        p.low - p.mean,
-        0.0,
-        p.high - p.mean,
-        value,
-        stands(p.mean, value, published),
-        more,
-    )
+    return simulated_row("lists", "pooled", len(named), p.mean, "steady, mentions shared alike", null, published, **more)
+
+
+def _steady_means(named: Bools, span: float, rng: np.random.Generator, size: int) -> Floats:
+    """(size,) pooled growth per year of lists that name (m, k) the milestones of a steady rate."""
+    n = named.sum(axis=0).astype(float)
+    mean = rng.random((size, len(named))) @ named / n
+    k = growth_of_mean_age(np.clip(mean, 1e-9, 1 - 1e-9))
+    small = np.abs(k) < 1e-3
+    safe = np.where(small, 1.0, np.minimum(np.abs(k), 500.0))
+    variance = np.where(small, 1.0 / 12.0, 1.0 / safe**2 - 1.0 / (4.0 * np.sinh(safe / 2.0) ** 2))  # of an age fraction
+    error = 1.0 / np.sqrt(n * variance)
+    return np.array([pool_studies(a, b).mean for a, b in zip(k, error, strict=True)]) / span
 
 
 CHECK = Check(
