@@ -76,10 +76,16 @@ def date_rows(ledger: Ledger, rows: Rows, settings: Settings, tell: Tell = silen
     if distinct:
         _read(ledger, keys, distinct, settings, seen, tell)
     if "digits" not in settings.given:
-        rounded = int(ledger.value("SELECT count(*) FROM list_rows WHERE p_kind > 1 AND title IS NOT NULL AND date[-1] = '0' AND NOT contains(date, '.')"))
+        rounded = int(
+            ledger.value(
+                "SELECT count(*) FROM list_rows WHERE p_kind > 1 AND title IS NOT NULL AND date[-1] = '0' AND NOT contains(date, '.')"
+            )
+        )
         if rounded:
             seen.defaults["digits"] += rounded
-    codes = ledger.notation_codes([NAMES[kind] for (kind,) in ledger.rows("SELECT DISTINCT p_kind FROM list_rows WHERE p_kind IS NOT NULL ORDER BY 1")])
+    codes = ledger.notation_codes(
+        [NAMES[kind] for (kind,) in ledger.rows("SELECT DISTINCT p_kind FROM list_rows WHERE p_kind IS NOT NULL ORDER BY 1")]
+    )
     _view(ledger, rows, keys, undated, bool(distinct), codes, settings)
     return seen
 
@@ -127,7 +133,9 @@ def _read(ledger: Ledger, keys: Sequence[str], distinct: list[tuple[Any, ...]], 
         tell("reading dates", min(1.0, (start + len(chunk)) / len(distinct)))
 
 
-def _view(ledger: Ledger, rows: Rows, keys: Sequence[str], undated: str, has_readings: bool, codes: Mapping[str, int], settings: Settings) -> None:
+def _view(
+    ledger: Ledger, rows: Rows, keys: Sequence[str], undated: str, has_readings: bool, codes: Mapping[str, int], settings: Settings
+) -> None:
     columns = set(rows.columns)
 
     def column(key: str, kind: str = "VARCHAR") -> str:
@@ -144,14 +152,21 @@ def _view(ledger: Ledger, rows: Rows, keys: Sequence[str], undated: str, has_rea
         checks.append(("r.failure IS NOT NULL", "r.failure"))
     if "importance" in columns:
         sound = f"regexp_full_match({importance}, '{_NUMBER}') AND isfinite({number})"
-        checks.append((f"l.importance IS NOT NULL AND NOT ({sound})", "'importance ''' || l.importance[:40] || ''' is no number; give a number, or leave it empty'"))
+        checks.append(
+            (
+                f"l.importance IS NOT NULL AND NOT ({sound})",
+                "'importance ''' || l.importance[:40] || ''' is no number; give a number, or leave it empty'",
+            )
+        )
     reason = "CASE " + " ".join(f"WHEN {test} THEN {text}" for test, text in checks) + " END"
-    read = {name: ("r." + name if has_readings else "NULL") for name in ("earliest_year", "best_year", "latest_year", "is_normal", "notation")}
+    read = {
+        name: ("r." + name if has_readings else "NULL") for name in ("earliest_year", "best_year", "latest_year", "is_normal", "notation")
+    }
     known = " ".join(f"WHEN {kind} THEN {codes[name]}" for kind, name in NAMES.items() if name in codes)
     parts = {
-        "earliest_year": f"coalesce(l.p_best - l.p_half, {read['earliest_year']})",
-        "best_year": f"coalesce(l.p_best, {read['best_year']})",
-        "latest_year": f"coalesce(l.p_best + l.p_half, {read['latest_year']})",
+        "earliest_year": f"CASE WHEN l.p_kind IS NULL THEN {read['earliest_year']} ELSE l.p_best - l.p_half END",
+        "best_year": f"CASE WHEN l.p_kind IS NULL THEN {read['best_year']} ELSE l.p_best END",
+        "latest_year": f"CASE WHEN l.p_kind IS NULL THEN {read['latest_year']} ELSE l.p_best + l.p_half END",
         "is_normal": f"coalesce({read['is_normal']}, false)",
         "notation": f"CASE l.p_kind {known} ELSE {read['notation']} END" if known else read["notation"],
     }

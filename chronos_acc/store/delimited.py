@@ -4,9 +4,10 @@
 The database reads a well-formed file by itself. A file with anything out of the ordinary (a row too long or too short, a line break inside
 quotes, blank lines, bytes that are no UTF-8, mixed line ends) is read line by line here, and every line is accounted for.
 
-Rules (after RFC 4180): a field may stand in double quotes, inside which a doubled quote is one quote; spaces outside the quotes do not count;
-a quote inside an unquoted field is an ordinary character. Blank lines are no rows. Cells beyond the header are let pass when they are
-empty; any other row whose cells do not match the header is refused. A quote that is opened and never rightly closed spoils its own line only.
+Rules (after RFC 4180): a field may stand in double quotes, inside which a doubled quote is one quote; spaces outside the quotes do not
+count; a quote inside an unquoted field is an ordinary character. Blank lines are no rows. Cells beyond the header are let pass when they
+are empty; any other row whose cells do not match the header is refused. A quote that is opened and never rightly closed spoils its own
+line only.
 """
 
 from __future__ import annotations

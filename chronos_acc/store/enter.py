@@ -13,7 +13,21 @@ from .staging import Job, Staged
 from .table import Table
 
 COUNTS = ("rows_read", "rows_loaded", "rows_rejected", "duplicates")
-HELD = ("title", "earliest", "best", "latest", "normal", "notation", "date_text", "category", "importance", "level", "parent", "note", "rest")
+HELD = (
+    "title",
+    "earliest",
+    "best",
+    "latest",
+    "normal",
+    "notation",
+    "date_text",
+    "category",
+    "importance",
+    "level",
+    "parent",
+    "note",
+    "rest",
+)
 
 
 @dataclass(frozen=True)
@@ -64,11 +78,14 @@ def enter(
     said = [*notes]
     if duplicates:
         said.append(
-            f"{'1 entry repeats' if duplicates == 1 else f'{duplicates:,} entries repeat'} title and dating of an earlier row; kept, and marked as duplicate"
+            f"{'1 entry repeats' if duplicates == 1 else f'{duplicates:,} entries repeat'} title and dating of an earlier row; "
+            "kept, and marked as duplicate"
         )
     with ledger.transaction():
         source = before.source if before else ledger.new_ids("source")
-        added, changed, gone = _replace(ledger, source, loaded) if before else (_insert(ledger, source, loaded), 0, 0)
+        added, changed, gone = (
+            _replace(ledger, source, loaded) if before else (_insert(ledger, source, rows.count - len(rows.refused), loaded), 0, 0)
+        )
         if before and (added or changed or gone):
             said.append(
                 f"in place of what {before.file} gave on {before.loaded_at} UTC: {added:,} added, {changed:,} changed, {gone:,} gone; "
@@ -104,9 +121,8 @@ def _number(ledger: Ledger) -> int:
     return int(ledger.value("SELECT count(*) FROM list_nth WHERE duplicate"))
 
 
-def _insert(ledger: Ledger, source: int, loaded: int) -> int:
+def _insert(ledger: Ledger, source: int, count: int, loaded: int) -> int:
     """The entries of a list that is new; ids follow the rows."""
-    count = int(ledger.value("SELECT coalesce(max(place) + 1, 0) FROM dated WHERE reason IS NULL"))
     first = ledger.new_ids("entry", count) if count else 0
     repeated = bool(ledger.value("SELECT count(*) FROM list_nth"))
     nth = "coalesce(n.nth, 1) AS nth, coalesce(n.duplicate, false) AS duplicate" if repeated else "1 AS nth, false AS duplicate"
@@ -123,7 +139,8 @@ def _replace(ledger: Ledger, source: int, loaded: int) -> tuple[int, int, int]:
     """The entries of a list that was there: an entry keeps its id while (title, nth) lives. Returns added, changed, gone."""
     listed = ", ".join(f"d.{name} AS {name}" for name in HELD)
     ledger.run(
-        f"CREATE OR REPLACE TEMP TABLE list_fresh AS SELECT d.place, d.row AS row, coalesce(n.nth, 1) AS nth, coalesce(n.duplicate, false) AS duplicate, "
+        "CREATE OR REPLACE TEMP TABLE list_fresh AS SELECT d.place, d.row AS row, "
+        "coalesce(n.nth, 1) AS nth, coalesce(n.duplicate, false) AS duplicate, "
         f"{listed} FROM dated AS d LEFT JOIN list_nth AS n ON n.place = d.place WHERE d.reason IS NULL"
     )
     differs = " OR ".join(f"o.{name} IS DISTINCT FROM f.{name}" for name in HELD)
@@ -139,7 +156,8 @@ def _replace(ledger: Ledger, source: int, loaded: int) -> tuple[int, int, int]:
     ledger.run("DELETE FROM ledger.entry WHERE source = ?", [source])
     fields = ", ".join(f"f.{name} AS {name}" for name in ("row", "nth", "duplicate", *HELD))
     ledger.run(
-        f"INSERT INTO ledger.entry BY NAME SELECT coalesce(k.entry, ? - 1 + row_number() OVER (PARTITION BY k.entry IS NULL ORDER BY f.place)) AS entry, "
+        "INSERT INTO ledger.entry BY NAME SELECT "
+        "coalesce(k.entry, ? - 1 + row_number() OVER (PARTITION BY k.entry IS NULL ORDER BY f.place)) AS entry, "
         f"? AS source, {fields} FROM list_fresh AS f LEFT JOIN list_kept AS k ON k.place = f.place ORDER BY f.place",
         [first, source],
     )
@@ -149,7 +167,16 @@ def _replace(ledger: Ledger, source: int, loaded: int) -> tuple[int, int, int]:
 
 
 def _source(
-    ledger: Ledger, source: int, job: Job, staged: Staged, table: Table, read: int, loaded: int, duplicates: int, notes: Sequence[str], new: bool
+    ledger: Ledger,
+    source: int,
+    job: Job,
+    staged: Staged,
+    table: Table,
+    read: int,
+    loaded: int,
+    duplicates: int,
+    notes: Sequence[str],
+    new: bool,
 ) -> None:
     sheet = job.sheet
     values = {

@@ -69,10 +69,10 @@ def load(
 ) -> list[Loaded]:
     """Load lists into a timeline file, which is made where it is missing; then link its entries anew unless ``link`` is False.
 
-    ``files``: lists, folders of lists with sheets, sheets, "-" for standard input, or by itself a folder that ``export`` wrote, which brings the
-    exported timeline back into a new file. With several lists each is loaded that can be; when any
-    was refused, ListRefused is raised at the end and its ``loaded`` holds what was loaded. A list none of whose rows can be read is refused; if
-    it was not held before, its refused rows are kept to be looked at. ``strict`` refuses a list with any row refused, and keeps nothing of it.
+    ``files``: lists, folders of lists with sheets, sheets, "-" for standard input, or by itself a folder that ``export`` wrote, which
+    brings the exported timeline back into a new file. With several lists each is loaded that can be; when any was refused, ListRefused is
+    raised at the end and its ``loaded`` holds what was loaded. A list none of whose rows can be read is refused; if it was not held before,
+    its refused rows are kept to be looked at. ``strict`` refuses a list with any row refused, and keeps nothing of it.
 
     Raises ListRefused, SheetRefused, TimelineRefused, WrongUse.
     """
@@ -150,20 +150,25 @@ def _load(ledger: Ledger, job: Job, *, strict: bool, stdin: BinaryIO | None, enc
             rejects = _rejects(ledger, rows, table)
             loaded = rows.count - len(rejects)
             if strict and rejects:
-                raise ListRefused(f"{job.label}: {_first(rejects, rows.count, table.unit)}; nothing of it was loaded, because --strict was given")
+                raise ListRefused(
+                    f"{job.label}: {_first(rejects, rows.count, table.unit)}; nothing of it was loaded, because --strict was given"
+                )
             if not loaded and before is not None and before.counts["rows_loaded"]:
                 raise ListRefused(f"{job.label}: {_first(rejects, rows.count, table.unit)}; the list {job.sheet.name!r} stays as it was")
             notes = [*job.notes, *table.notes, *remarks_of(ledger, rows, table, columns, len(rejects)), *dates.notes()]
             tell("entering", 0.8)
             change = enter(ledger, job, staged, table, rows, rejects, notes, before)
         finally:
-            for statement in ("VIEW IF EXISTS dated", "TABLE IF EXISTS list_rows", "TABLE IF EXISTS list_texts", "TABLE IF EXISTS list_readings"):
+            for statement in (
+                "VIEW IF EXISTS dated",
+                "TABLE IF EXISTS list_rows",
+                "TABLE IF EXISTS list_texts",
+                "TABLE IF EXISTS list_readings",
+            ):
                 ledger.run(f"DROP {statement}")
         tell("entered", 1.0)
     if not loaded:
-        raise ListRefused(
-            f"{job.label}: {_first(rejects, rows.count, table.unit)}; the refused rows are kept, see: chronos-acc rejects"
-        )
+        raise ListRefused(f"{job.label}: {_first(rejects, rows.count, table.unit)}; the refused rows are kept, see: chronos-acc rejects")
     return _loaded(job, rows.count, loaded, change, change.notes)
 
 
@@ -183,7 +188,9 @@ def _unchanged(counts: dict[str, int], job: Job, loaded_at: object) -> Loaded:
 
 def _rejects(ledger: Ledger, rows: Rows, table: Any) -> list[tuple[int, str, str]]:
     """Every refused row: number, raw text, reason; in the order of the file."""
-    found = [(int(row), str(reason)) for row, reason in ledger.rows("SELECT row, reason FROM dated WHERE reason IS NOT NULL ORDER BY place")]
+    found = [
+        (int(row), str(reason)) for row, reason in ledger.rows("SELECT row, reason FROM dated WHERE reason IS NOT NULL ORDER BY place")
+    ]
     raw = raw_of(ledger, rows, table, [row for row, _ in found])
     return sorted([*rows.refused, *((row, raw.get(row, ""), reason) for row, reason in found)], key=lambda reject: reject[0])
 
@@ -192,4 +199,8 @@ def _first(rejects: Sequence[tuple[int, str, str]], count: int, unit: str) -> st
     """How many rows were refused, and why the first of them was."""
     row, _, reason = rejects[0]
     many = "none of its" if len(rejects) == count else f"{len(rejects):,} of its"
-    return f"{many} {count:,} rows can be read; {unit} {row}: {reason}" if len(rejects) == count else f"{many} {count:,} rows cannot be read; {unit} {row}: {reason}"
+    return (
+        f"{many} {count:,} rows can be read; {unit} {row}: {reason}"
+        if len(rejects) == count
+        else f"{many} {count:,} rows cannot be read; {unit} {row}: {reason}"
+    )

@@ -20,7 +20,10 @@ _SPOILS = ("sigma", "plus_minus", "earliest", "latest")  # with one of these a r
 
 
 def plain_sql(ledger: Ledger, settings: Settings, keys: Sequence[str], source: str) -> str:
-    """SQL that adds ``p_best``, ``p_half`` (years) and ``p_kind`` (a key of NAMES) to the columns of ``source``; NULL where a row is no plain number."""
+    """SQL that adds ``p_best``, ``p_half`` (years) and ``p_kind`` (a key of NAMES) to the columns of ``source``.
+
+    ``p_kind`` is NULL where a row is no plain number; the others then mean nothing.
+    """
     none = f"SELECT *, CAST(NULL AS DOUBLE) AS p_best, CAST(NULL AS DOUBLE) AS p_half, CAST(NULL AS TINYINT) AS p_kind FROM {source}"
     if settings.decimal != ".":
         return none
@@ -47,7 +50,10 @@ def plain_sql(ledger: Ledger, settings: Settings, keys: Sequence[str], source: s
         cases.append(f"WHEN p_kind = 1 AND regexp_matches(date, '{PLAIN_YEAR}') THEN 0")
         cases.append(f"WHEN p_kind = 1 AND regexp_matches(date, '{PLAIN_DECIMAL_YEAR}') THEN length(date) - strpos(date, '.')")
     if kinds & {2, 3}:
-        cases.append(f"WHEN p_kind > 1 AND regexp_matches(date, '{PLAIN_AGE}') THEN CASE WHEN contains(date, '.') THEN length(date) - strpos(date, '.') ELSE 0 END")
+        cases.append(
+            f"WHEN p_kind > 1 AND regexp_matches(date, '{PLAIN_AGE}') THEN "
+            "CASE WHEN contains(date, '.') THEN length(date) - strpos(date, '.') ELSE 0 END"
+        )
     places = f"SELECT *, CASE WHEN NOT ({alone}) OR length(date) > 32 THEN NULL {' '.join(cases)} END AS p_places FROM ({known})"
     if settings.digits == "all":
         zeros = "0"
@@ -65,13 +71,13 @@ def plain_sql(ledger: Ledger, settings: Settings, keys: Sequence[str], source: s
         best.append("WHEN p_kind > 1 THEN p_zero - CAST(date || 'e' || p_power AS DOUBLE)")
         half.append(f"WHEN p_kind > 1 THEN CAST('5e' || (p_power - 1 + CASE WHEN p_places > 0 THEN -p_places ELSE {zeros} END) AS DOUBLE)")
     made = f"SELECT *, CASE {' '.join(best)} END AS p_best, CASE {' '.join(half)} END AS p_half FROM ({places})"
-    covered = "p_best IS NOT NULL AND NOT regexp_matches(date, '^-[0.]+$')" if 1 in kinds else "p_best IS NOT NULL"
-    covered += f" AND p_best - p_half >= {-FARTHEST}::DOUBLE AND p_best + p_half <= {FARTHEST}::DOUBLE"
-    if settings.compiled is not None:
-        covered += f" AND p_best + p_half <= {settings.compiled + 1}::DOUBLE"
+    end = FARTHEST if settings.compiled is None else float(settings.compiled + 1)
+    covered = f"p_best - p_half >= {-FARTHEST}::DOUBLE AND p_best + p_half <= {end}::DOUBLE"
+    if 1 in kinds:
+        covered += " AND NOT (date[1] = '-' AND CAST(date AS DOUBLE) = 0)"  # a zero with a minus sign is refused
     return (
-        f"SELECT * EXCLUDE (p_best, p_half, p_kind, p_power, p_zero, p_places), CASE WHEN {covered} THEN p_best END AS p_best, "
-        f"CASE WHEN {covered} THEN p_half END AS p_half, CASE WHEN {covered} THEN p_kind END AS p_kind FROM ({made})"
+        "SELECT * EXCLUDE (p_kind, p_power, p_zero, p_places), "
+        f"CASE WHEN p_places IS NULL THEN NULL WHEN {covered} THEN p_kind END AS p_kind FROM ({made})"
     )
 
 
@@ -82,4 +88,3 @@ def _kind(unit: str | None, settings: Settings) -> tuple[int, int, float] | None
         return None if unit or settings.unit else (1, 0, 0.0)
     zero = zero_of(back, settings)
     return None if zero is None else (2 if back.zero == "compiled" else 3, back.power, zero)
-

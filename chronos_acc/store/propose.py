@@ -50,7 +50,18 @@ CHOICES: tuple[tuple[str, Mapping[str, Any]], ...] = (
     ("1500s is a century", {"hundreds": "century"}),
     ("1500s is a decade", {"hundreds": "decade"}),
 )
-_UNIT_HINTS = (("ma", "Ma"), ("mya", "Ma"), ("myr", "Ma"), ("ka", "ka"), ("kya", "ka"), ("kyr", "ka"), ("bp", "BP"), ("bce", "BCE"), ("bc", "BCE"), ("ga", "Ga"))
+_UNIT_HINTS = (
+    ("ma", "Ma"),
+    ("mya", "Ma"),
+    ("myr", "Ma"),
+    ("ka", "ka"),
+    ("kya", "ka"),
+    ("kyr", "ka"),
+    ("bp", "BP"),
+    ("bce", "BCE"),
+    ("bc", "BCE"),
+    ("ga", "Ga"),
+)
 
 
 @dataclass(frozen=True)
@@ -140,7 +151,7 @@ def _choices(cells: Sequence[Sequence[str | None]], columns: Mapping[str, int], 
     if "date" not in columns:
         return []
     extra = {key: columns[key] for key in ("unit", "sigma", "plus_minus", "earliest", "latest") if key in columns}
-    made = []
+    made: list[_Choice] = []
     for words, more in CHOICES:
         keys = {**base, **more} if "counted" not in more and "unit" not in more else more
         if made and keys == base:
@@ -196,7 +207,9 @@ def _text(
         f"name = {_toml(name)}",
         '# title = ""           # full title of the compilation',
         '# citation = ""        # how to cite it',
-        f"compiled = {compiled}" if compiled is not None else "# compiled = 2000      # year it was compiled: ages such as 12 ka or 66 Ma count back from it",
+        f"compiled = {compiled}"
+        if compiled is not None
+        else "# compiled = 2000      # year it was compiled: ages such as 12 ka or 66 Ma count back from it",
         '# criterion = ""       # what the compiler took in, and what not',
         '# derives_from = ""    # name of a list it was drawn from: such lists count once',
     ]

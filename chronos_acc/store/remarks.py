@@ -16,7 +16,9 @@ def remarks_of(ledger: Ledger, rows: Rows, table: Table, columns: Mapping[str, i
     """Sentences for ``notes``."""
     made = []
     if refused:
-        made.append(f"{'1 row was' if refused == 1 else f'{refused:,} rows were'} refused and kept with the reason; see: chronos-acc rejects")
+        made.append(
+            f"{'1 row was' if refused == 1 else f'{refused:,} rows were'} refused and kept with the reason; see: chronos-acc rejects"
+        )
     texts = [name for name in ("note", "category") if name in columns]
     if rows.has_rest:
         texts.append("rest")
@@ -25,7 +27,7 @@ def remarks_of(ledger: Ledger, rows: Rows, table: Table, columns: Mapping[str, i
         count = int(ledger.value(f"SELECT count(*) FROM list_rows WHERE {said}"))
         if count:
             made.append(
-                f"{'1 row speaks' if count == 1 else f'{count:,} rows speak'} of radiocarbon (14C) in another column: make sure that the dates are "
-                "calibrated; uncalibrated radiocarbon years are no calendar years"
+                f"{'1 row speaks' if count == 1 else f'{count:,} rows speak'} of radiocarbon (14C) in another column: "
+                "make sure that the dates are calibrated; uncalibrated radiocarbon years are no calendar years"
             )
     return made

@@ -2,8 +2,8 @@
 """The rows of a list as a temporary table of texts, by whichever of two ways of reading the file allows.
 
 Table ``list_rows`` holds one text column for each contract column the list has, trimmed, empty cells NULL, and ``rest``. Read line by line
-it also has ``row`` and ``raw``; read by the database the row number follows from the position, and raw text is fetched for refused rows only,
-because to carry it for each row doubles the time of a load.
+it also has ``row`` and ``raw``; read by the database the row number follows from the position, and raw text is fetched for refused rows
+only, because to carry it for each row doubles the time of a load.
 """
 
 from __future__ import annotations
@@ -23,12 +23,15 @@ from .table import quoted as literal
 
 BATCH = 20_000
 HELD = ("title", "date", "category", "importance", "level", "parent", "note")  # contract columns that an entry holds; others stand in rest
-SPACES = "".join(chr(c) for c in (*range(9, 14), *range(28, 33), 0x85, 0xA0, 0x1680, *range(0x2000, 0x200B), 0x2028, 0x2029, 0x202F, 0x205F, 0x3000, 0xFEFF))
+SPACES = "".join(
+    chr(c)
+    for c in (*range(9, 14), *range(28, 33), 0x85, 0xA0, 0x1680, *range(0x2000, 0x200B), 0x2028, 0x2029, 0x202F, 0x205F, 0x3000, 0xFEFF)
+)
 
 
 @dataclass
 class Rows:
-    """What stands in ``list_rows``: its contract columns, the SQL of a row's number, whether ``rest`` and ``raw`` are there, rows refused so far."""
+    """What stands in ``list_rows``: contract columns, SQL of a row's number, whether ``rest`` and ``raw`` are there, rows refused so far."""
 
     columns: tuple[str, ...]
     row: str
@@ -50,7 +53,7 @@ def fill(ledger: Ledger, table: Table, columns: Mapping[str, int], settings: Set
 
 
 def _trimmed(column: str) -> str:
-    """SQL of a cell without the spaces around it, NULL where nothing is left; cells that begin and end in plain letters are not searched."""
+    """SQL of a cell without spaces around it, NULL where nothing is left; cells that begin and end in plain letters are not searched."""
     odd = " OR ".join(f"NOT ({column}[{end}] BETWEEN '!' AND '~')" for end in (1, -1))
     return f"CASE WHEN {odd} THEN nullif(trim({column}, {literal(SPACES)}), '') ELSE {column} END"
 
@@ -101,7 +104,9 @@ def _line_by_line(ledger: Ledger, table: Table, columns: Mapping[str, int], kept
         for key, place in columns.items():
             data[key] = [_bare(cells[place]) for _, cells in good]
         data["rest"] = [line.rest if line.rest is not None else rest_of(cells, named) for line, cells in good]
-        ledger.insert("list_cells", pd.DataFrame({key: pd.Series(values, dtype="int64" if key == "row" else object) for key, values in data.items()}))
+        ledger.insert(
+            "list_cells", pd.DataFrame({key: pd.Series(values, dtype="int64" if key == "row" else object) for key, values in data.items()})
+        )
     ledger.run(f"CREATE TEMP TABLE list_rows AS {plain_sql(ledger, settings, tuple(columns), 'list_cells')}")
     ledger.run("DROP TABLE list_cells")
     return rows

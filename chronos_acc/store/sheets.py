@@ -1,8 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """The sheet of a list: a small TOML file beside it that says who compiled it, which column is which, and how its dates are meant.
 
-The sheet of ``list.csv`` is ``list.csv.toml`` or ``list.toml`` in the same folder, or any ``*.toml`` there whose ``[compilation] file`` names
-it. Everything in it is checked, key by key: a wrong key or value is one line that names the file, the key, what is allowed, and
+The sheet of ``list.csv`` is ``list.csv.toml`` or ``list.toml`` in the same folder, or any ``*.toml`` there whose ``[compilation] file``
+names it. Everything in it is checked, key by key: a wrong key or value is one line that names the file, the key, what is allowed, and
 the nearest right one.
 """
 
@@ -287,7 +287,7 @@ def match_columns(header: Sequence[str], columns: Mapping[str, str]) -> dict[str
 
 
 def columns_of(header: Sequence[str], sheet: Sheet, name: str) -> dict[str, int]:
-    """The positions of the contract columns in a header. Raises ListRefused, or SheetRefused where the sheet names a column that is not there."""
+    """The positions of the contract columns in a header. Raises ListRefused; SheetRefused where the sheet names one that is not there."""
     found = match_columns(header, sheet.columns)
     shown = ", ".join(repr(column) for column in header[:20]) + (", …" if len(header) > 20 else "")
     for key, wanted in sheet.columns.items():
@@ -304,7 +304,9 @@ def columns_of(header: Sequence[str], sheet: Sheet, name: str) -> dict[str, int]
             )
     for key, places in found.items():
         if isinstance(places, list):
-            raise ListRefused(f"{name}: {len(places)} columns have the header {header[places[0]]!r}, so {key} is not clear; rename one of them")
+            raise ListRefused(
+                f"{name}: {len(places)} columns have the header {header[places[0]]!r}, so {key} is not clear; rename one of them"
+            )
     return {key: place for key, place in found.items() if isinstance(place, int)}
 
 

@@ -105,7 +105,8 @@ def _folder(folder: Path, compiled: int | None, chosen: Format | None) -> list[J
     left = [path.name for path in lists if path not in sheets]
     if not sheets:
         raise ListRefused(
-            f"{folder}: the folder holds no list with a sheet; name the files one by one, or write sheets (chronos-acc sheet FILE > FILE.toml)"
+            f"{folder}: the folder holds no list with a sheet; name the files one by one, "
+            "or write sheets (chronos-acc sheet FILE > FILE.toml)"
         )
     notes = (f"left out of {folder}, having no sheet: {', '.join(left)}",) if left else ()
     ordered = sorted(sheets)
@@ -132,7 +133,7 @@ def _list_of(sheet: Path) -> Path:
     if len(found) == 1:
         return found[0]
     said = "there are " + " and ".join(path.name for path in found) if found else "there is no list of that name beside it"
-    raise SheetRefused(f"{sheet}: which list does it describe? {said}; write file = \"…\" under [compilation]")
+    raise SheetRefused(f'{sheet}: which list does it describe? {said}; write file = "…" under [compilation]')
 
 
 def _nearest_file(path: Path) -> str:

@@ -44,8 +44,9 @@ class Fast:
 class Table:
     """A list as its format gives it.
 
-    ``lines(used, kept)`` reads row by row: ``used`` are the positions of the columns that are understood, ``kept`` those that go to ``rest``. ``raw(rows)`` gives the raw text of
-    rows (sorted numbers) that the fast way has read. ``unit`` is what a row number counts, for messages.
+    ``lines(used, kept)`` reads row by row: ``used`` are the positions of the columns that are understood, ``kept``
+    those that go to ``rest``. ``raw(rows)`` gives the raw text of rows (sorted numbers) that the fast way has read. ``unit`` is what a row
+    number counts, for messages.
     """
 
     header: tuple[str, ...]

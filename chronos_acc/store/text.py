@@ -15,7 +15,13 @@ from .table import Asked, clip
 
 BLOCK = 1 << 23
 BINARY_SHARE = 0.05  # of the first 64 KiB that may be control characters
-_MARKS = ((codecs.BOM_UTF32_LE, "utf-32"), (codecs.BOM_UTF32_BE, "utf-32"), (codecs.BOM_UTF8, "utf-8"), (codecs.BOM_UTF16_LE, "utf-16"), (codecs.BOM_UTF16_BE, "utf-16"))
+_MARKS = (
+    (codecs.BOM_UTF32_LE, "utf-32"),
+    (codecs.BOM_UTF32_BE, "utf-32"),
+    (codecs.BOM_UTF8, "utf-8"),
+    (codecs.BOM_UTF16_LE, "utf-16"),
+    (codecs.BOM_UTF16_BE, "utf-16"),
+)
 _KINDS = (
     (b"PK\x03\x04", "a zip archive or an Excel workbook"),
     (b"PAR1", "a Parquet file"),
@@ -78,7 +84,7 @@ class Text:
         if stray is None:
             return ""
         byte = ord(stray[0]) - 0xDC00
-        return f"byte 0x{byte:02X} is not {self.encoding}; name the file's encoding in its sheet, for example encoding = \"cp1252\""
+        return f'byte 0x{byte:02X} is not {self.encoding}; name the file\'s encoding in its sheet, for example encoding = "cp1252"'
 
     def raw_lines(self, rows: Sequence[int]) -> dict[int, str]:
         """The text of lines by number (sorted, from 1), in one pass over the file."""

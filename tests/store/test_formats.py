@@ -54,7 +54,9 @@ def test_a_format_is_told_by_the_ending_or_the_name() -> None:
 
 def test_json_keeps_numbers_as_written(tmp_path: Path) -> None:
     file = tmp_path / "x.json"
-    file.write_text('[{"Title": "a", "date": 1850.0, "tags": [1, 2.50], "n": 1e3, "none": null}, {"Title": "b", "date": "44 BCE", "ok": true}]')
+    file.write_text(
+        '[{"Title": "a", "date": 1850.0, "tags": [1, 2.50], "n": 1e3, "none": null}, {"Title": "b", "date": "44 BCE", "ok": true}]'
+    )
     assert entries(tmp_path, file) == [
         (1, "a", "1850.0", '{"tags": [1, 2.50], "n": 1e3}'),
         (2, "b", "44 BCE", '{"ok": true}'),
@@ -79,7 +81,9 @@ def test_json_rows_that_are_no_rows_are_refused_one_by_one(tmp_path: Path) -> No
     ]
 
 
-@pytest.mark.parametrize("text", ["[" * 100_000, '[{"title": 1' + "0" * 5000 + "}", "nul", '{"a": [{"x": 1}], "b": [{"x": 1}]}', "[1, 2]", "[]", "\ufeff  "])
+@pytest.mark.parametrize(
+    "text", ["[" * 100_000, '[{"title": 1' + "0" * 5000 + "}", "nul", '{"a": [{"x": 1}], "b": [{"x": 1}]}', "[1, 2]", "[]", "\ufeff  "]
+)
 def test_odd_json_is_one_line(tmp_path: Path, text: str) -> None:
     file = tmp_path / "x.json"
     file.write_text(text, encoding="utf-8")
@@ -90,19 +94,23 @@ def test_odd_json_is_one_line(tmp_path: Path, text: str) -> None:
 
 def test_ndjson_accounts_for_each_line(tmp_path: Path) -> None:
     file = tmp_path / "x.jsonl"
-    file.write_bytes(b'{"title": "a", "date": 1}\n\n{"title": "b", "da\n"x"\n{"title": "c\xe9", "date": 2}\n{"title": "d", "date": NaN}\n{"date": 3, "title": "e"}')
+    file.write_bytes(
+        b'{"title": "a", "date": 1}\n\n{"title": "b", "da\n"x"\n{"title": "c\xe9", "date": 2}\n'
+        b'{"title": "d", "date": NaN}\n{"date": 3, "title": "e"}'
+    )
     assert [row[:2] for row in entries(tmp_path, file)] == [(1, "a"), (7, "e")]
     assert [(row, reason.partition(":")[0]) for row, _, reason in rejects(tmp_path)][:3] == [
         (3, "no sound JSON"),
         (4, "a row must be an object with a key for each column"),
-        (5, "byte 0xE9 is not utf-8; name the file's encoding in its sheet, for example encoding = \"cp1252\""),
+        (5, 'byte 0xE9 is not utf-8; name the file\'s encoding in its sheet, for example encoding = "cp1252"'),
     ]
 
 
 def test_parquet_types_become_what_people_write(tmp_path: Path) -> None:
     file = tmp_path / "x[1].parquet"  # a name the database would take for a pattern
     duckdb.execute(
-        "COPY (SELECT * FROM (VALUES ('a', 1850.0::DOUBLE, 1::INT, DATE '1850-05-06', [1]), ('b', 1850.25, NULL, DATE '0044-03-15 (BC)', NULL), "
+        "COPY (SELECT * FROM (VALUES ('a', 1850.0::DOUBLE, 1::INT, DATE '1850-05-06', [1]), "
+        "('b', 1850.25, NULL, DATE '0044-03-15 (BC)', NULL), "
         "('c', 'nan'::DOUBLE, 2, NULL, NULL)) t(title, date, n, d, l)) TO '" + str(tmp_path / "y.parquet") + "' (FORMAT parquet)"
     ).fetchall()
     (tmp_path / "y.parquet").rename(file)
@@ -116,8 +124,8 @@ def test_parquet_types_become_what_people_write(tmp_path: Path) -> None:
 def test_parquet_dates_and_times(tmp_path: Path) -> None:
     file = tmp_path / "x.parquet"
     duckdb.execute(
-        "COPY (SELECT 'day' AS title, TIMESTAMP '1969-07-20 00:00:00' AS date UNION ALL SELECT 'time', TIMESTAMP '1969-07-20 20:17:40') TO '"
-        + str(file) + "' (FORMAT parquet)"
+        "COPY (SELECT 'day' AS title, TIMESTAMP '1969-07-20 00:00:00' AS date "
+        "UNION ALL SELECT 'time', TIMESTAMP '1969-07-20 20:17:40') TO '" + str(file) + "' (FORMAT parquet)"
     ).fetchall()
     assert sorted(row[2] for row in entries(tmp_path, file)) == ["1969-07-20", "1969-07-20T20:17:40"]
 
@@ -134,10 +142,25 @@ def workbook(rows: list[list[Any]], *more: str) -> openpyxl.Workbook:
 
 def test_excel_reads_the_first_sheet_with_cells(tmp_path: Path) -> None:
     file = tmp_path / "x.xlsx"
-    rows = [["Title", "Date", "More"], ["a", 1850, 2.0], [], ["b", dt.datetime(1850, 5, 6), None], ["c", 1850.25, True], ["d", None, "x"], ["e", 1, 2, 3]]
+    rows = [
+        ["Title", "Date", "More"],
+        ["a", 1850, 2.0],
+        [],
+        ["b", dt.datetime(1850, 5, 6), None],
+        ["c", 1850.25, True],
+        ["d", None, "x"],
+        ["e", 1, 2, 3],
+    ]
     workbook(rows, "second").save(file)
-    assert entries(tmp_path, file) == [(2, "a", "1850", '{"More":"2"}'), (4, "b", "1850-05-06", None), (5, "c", "1850.25", '{"More":"true"}')]
-    assert [(row, reason) for row, _, reason in rejects(tmp_path)] == [(6, "the row has no date"), (7, "the row has cells beyond the 3 columns of the header")]
+    assert entries(tmp_path, file) == [
+        (2, "a", "1850", '{"More":"2"}'),
+        (4, "b", "1850-05-06", None),
+        (5, "c", "1850.25", '{"More":"true"}'),
+    ]
+    assert [(row, reason) for row, _, reason in rejects(tmp_path)] == [
+        (6, "the row has no date"),
+        (7, "the row has cells beyond the 3 columns of the header"),
+    ]
     with open_for_reading(tmp_path / "t.duckdb") as ledger:
         assert "worksheet 'Sheet' was read; not read: 'second'" in ledger.value("SELECT notes FROM sources")
 
@@ -164,7 +187,11 @@ def test_one_list_in_every_format_is_one_list(tmp_path: Path, ending: str) -> No
     file = tmp_path / f"list.{ending}"
     if ending in ("csv", "tsv"):
         mark = "," if ending == "csv" else "\t"
-        file.write_text(mark.join(["title", "date", "kind"]) + "\n" + "".join(mark.join([f'"{r["title"]}"', r["date"], r["kind"] or ""]) + "\n" for r in rows))
+        file.write_text(
+            mark.join(["title", "date", "kind"])
+            + "\n"
+            + "".join(mark.join([f'"{r["title"]}"', r["date"], r["kind"] or ""]) + "\n" for r in rows)
+        )
     elif ending == "json":
         file.write_text(json.dumps(rows))
     elif ending == "ndjson":

@@ -44,7 +44,10 @@ def test_every_row_is_loaded_or_refused(db: Path, tmp_path: Path) -> None:
     ]
     with open_for_reading(db) as ledger:
         assert ledger.rows("SELECT source, row, raw, reason FROM rejects") == [("kilns", 5, "Third,,south", "the row has no date")]
-        assert ledger.rows("SELECT nth, duplicate, rest FROM entries WHERE title = 'First kiln' ORDER BY row") == [(1, False, '{"Region":"north"}'), (2, True, None)]
+        assert ledger.rows("SELECT nth, duplicate, rest FROM entries WHERE title = 'First kiln' ORDER BY row") == [
+            (1, False, '{"Region":"north"}'),
+            (2, True, None),
+        ]
 
 
 def test_the_same_again_changes_nothing(db: Path, tmp_path: Path) -> None:
@@ -244,7 +247,10 @@ def test_source_holds_where_the_list_came_from(db: Path, tmp_path: Path) -> None
     write(tmp_path / "x.toml", sheet)
     load(db, [file], link=False)
     with open_for_reading(db) as ledger:
-        row = ledger.rows("SELECT name, title, citation, compiled, criterion, file, encoding, derives_from, precedes, sheet, settings, length(digest) FROM ledger.source")
+        row = ledger.rows(
+            "SELECT name, title, citation, compiled, criterion, file, encoding, derives_from, precedes, sheet, settings, length(digest) "
+            "FROM ledger.source"
+        )
     assert row == [
         ("ex", "All ex", "C", 1999, "k", str(file), "cp1252", ["other"], '[["a", "b"]]', sheet, '{"compiled": 1999, "unit": "ka"}', 64)
     ]
@@ -267,7 +273,7 @@ def test_progress_is_told(db: Path, tmp_path: Path) -> None:
 
 
 def test_titles_stay_as_they_are_written(db: Path, tmp_path: Path) -> None:
-    titles = ["=SUM(A1)", "\x1b[31mred\x1b[0m", "[bold]x[/bold]", "Ünï  ço\u0301de", "<b>t</b>", "it's \"so\""]
+    titles = ["=SUM(A1)", "\x1b[31mred\x1b[0m", "[bold]x[/bold]", "Ünï  ço\u0301de", "<b>t</b>", 'it\'s "so"']
     import csv
 
     with (tmp_path / "x.csv").open("w", newline="", encoding="utf-8") as out:

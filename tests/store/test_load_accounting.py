@@ -21,8 +21,8 @@ from chronos_acc.store.rows import SPACES, fill
 from chronos_acc.store.sheets import bare_sheet, columns_of, match_columns
 from chronos_acc.store.table import Asked, Table
 
-OFTEN = settings(max_examples=120, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
-CELL = st.text(alphabet=st.sampled_from(list('ab1 ,;"|\t\n\r\'é\\x')), max_size=8)
+OFTEN = settings(max_examples=60, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+CELL = st.text(alphabet=st.sampled_from(list("ab1 ,;\"|\t\n\r'é\\x")), max_size=8)
 
 
 @pytest.fixture(scope="module")
@@ -36,7 +36,9 @@ def table_of(content: bytes, folder: Path, encoding: str | None = None) -> Table
     """The list in some bytes."""
     file = folder / "list.csv"
     file.write_bytes(content)
-    return delimited.read(file, Asked("list.csv", lambda header: sum(key in match_columns(header, {}) for key in ("title", "date")), folder, encoding))
+    return delimited.read(
+        file, Asked("list.csv", lambda header: sum(key in match_columns(header, {}) for key in ("title", "date")), folder, encoding)
+    )
 
 
 def both(ledger: Ledger, table: Table) -> tuple[list[tuple[object, ...]], list[tuple[object, ...]] | None]:
@@ -57,7 +59,9 @@ def both(ledger: Ledger, table: Table) -> tuple[list[tuple[object, ...]], list[t
 
 
 @OFTEN
-@given(st.lists(st.tuples(CELL, CELL, CELL), min_size=1, max_size=6), st.sampled_from(",;\t|"), st.sampled_from(["\n", "\r\n"]), st.booleans())
+@given(
+    st.lists(st.tuples(CELL, CELL, CELL), min_size=1, max_size=6), st.sampled_from(",;\t|"), st.sampled_from(["\n", "\r\n"]), st.booleans()
+)
 @example([("a", "1", ""), ("b", '"', "x")], ",", "\n", False)
 def test_what_is_written_by_the_rules_comes_back(
     ledger: Ledger, tmp_path: Path, rows: list[tuple[str, str, str]], delimiter: str, end: str, marked: bool
@@ -82,7 +86,10 @@ def bare(cell: str) -> str | None:
 
 
 @OFTEN
-@given(st.text(alphabet=st.sampled_from(list('ab1 ,,,;""\n\n\né\r')), max_size=60), st.sampled_from(["title,date\n", 'date,"title"\n', "title,date,x\r\n"]))
+@given(
+    st.text(alphabet=st.sampled_from(list('ab1 ,,,;""\n\n\né\r')), max_size=60),
+    st.sampled_from(["title,date\n", 'date,"title"\n', "title,date,x\r\n"]),
+)
 @example(' "a"b,c\n"x\ny",1\n"z', "title,date\n")
 def test_every_line_is_accounted_for(ledger: Ledger, tmp_path: Path, text: str, header: str) -> None:
     table = table_of((header + text).encode(), tmp_path)
@@ -100,7 +107,7 @@ def test_every_line_is_accounted_for(ledger: Ledger, tmp_path: Path, text: str, 
         assert fast == careful
 
 
-@settings(max_examples=80, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+@settings(max_examples=40, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
 @given(st.binary(max_size=80), st.sampled_from([None, "cp1252", "utf-16", "shift_jis"]))
 def test_any_bytes_are_read_or_refused(ledger: Ledger, tmp_path: Path, content: bytes, encoding: str | None) -> None:
     head = "title,date\n".encode("utf-16" if encoding == "utf-16" else "ascii")

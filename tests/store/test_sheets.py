@@ -61,11 +61,17 @@ periods = "ages.csv"
 @pytest.mark.parametrize(
     ("text", "said"),
     [
-        ("[compilaton]\n", "unknown table or key [compilaton]; a sheet has the tables compilation, columns, dating; nearest is 'compilation'"),
+        (
+            "[compilaton]\n",
+            "unknown table or key [compilaton]; a sheet has the tables compilation, columns, dating; nearest is 'compilation'",
+        ),
         ('compilation = "x"\n', "compilation must be a table; write [compilation] on a line of its own"),
         ('[compilation]\nnmae = "x"\n', "unknown key [compilation] nmae; allowed are name, title,"),
         ('[compilation]\nnmae = "x"\n', "nearest is 'name'"),
-        ('[compilation]\ncompiled = "2000"\n', "[compilation] compiled is '2000'; it takes the year in which it was compiled, a whole number"),
+        (
+            '[compilation]\ncompiled = "2000"\n',
+            "[compilation] compiled is '2000'; it takes the year in which it was compiled, a whole number",
+        ),
         ("[compilation]\ncompiled = true\n", "[compilation] compiled is True"),
         ("[compilation]\ntitle = 5\n", "[compilation] title is 5; it takes"),
         ('[compilation]\nname = "a,b"\n', "[compilation] name is 'a,b'; a name has no comma"),
@@ -81,11 +87,14 @@ periods = "ages.csv"
         ('[columns]\ntitle = "A"\ndate = "a"\n', "[columns] date is 'a'; another key names that column already"),
         ('[dating]\ncounts = "ago"\n', "unknown key [dating] counts; allowed are unit,"),
         ('[dating]\ncounts = "ago"\n', "nearest is 'counted'"),
-        ('[dating]\ncounted = "agoo"\n', '[dating] counted is \'agoo\'; allowed: "calendar" or "ago"; correct the value; nearest is \'ago\''),
+        (
+            '[dating]\ncounted = "agoo"\n',
+            "[dating] counted is 'agoo'; allowed: \"calendar\" or \"ago\"; correct the value; nearest is 'ago'",
+        ),
         ("[dating]\ncompiled = 2000\n", "[dating] compiled; the compile year stands under [compilation]"),
         ("[dating]\nsigma = -1\n", "[dating] sigma is -1; allowed: a number above 0"),
         ('[dating]\nunit = "furlongs"\n', "[dating] unit is 'furlongs'; allowed: a unit or era"),
-        ('[dating]\nearliest_limit = 5\nlatest_limit = 1\n', "earliest_limit 5 does not come before latest_limit 1"),
+        ("[dating]\nearliest_limit = 5\nlatest_limit = 1\n", "earliest_limit 5 does not come before latest_limit 1"),
         ('[dating]\nperiods = "none.csv"\n', "[dating] periods:"),
         ("[dating]\nperiods = 5\n", "[dating] periods is 5; it takes the name of a CSV file"),
         ("[dating\n", "no sound TOML"),
@@ -169,7 +178,7 @@ def test_a_proposal_counts_what_each_choice_reads(tmp_path: Path) -> None:
     file.write_text("Was,Wann\na,03/04/1848\nb,13/04/1848\nc,1850\n")
     text = propose_sheet(file)
     assert 'title = "Was"' in text and 'date = "Wann"' in text
-    assert '#        2  (nothing set)' in text and '#        3  day_order = "dmy"' in text
+    assert "#        2  (nothing set)" in text and '#        3  day_order = "dmy"' in text
     assert '\nday_order = "dmy"' in text
 
 
@@ -180,5 +189,5 @@ def test_a_proposal_names_an_encoding_and_refuses_what_is_no_list(tmp_path: Path
     for bad in (tmp_path, tmp_path / "none.csv"):
         with pytest.raises(ListRefused):
             propose_sheet(bad)
-    (tmp_path / "odd \"\n.csv").write_text("a\nb\n")
-    assert "needed: no column" in propose_sheet(tmp_path / "odd \"\n.csv")
+    (tmp_path / 'odd "\n.csv').write_text("a\nb\n")
+    assert "needed: no column" in propose_sheet(tmp_path / 'odd "\n.csv')

@@ -28,7 +28,9 @@ def read(path: Path, asked: Asked) -> Table:
         raise ListRefused(f"{asked.name}: no sound JSON: {error}; for one object a line, name the format ndjson") from None
     items = _array(found)
     if items is None:
-        raise ListRefused(f"{asked.name}: a list in JSON is an array of objects with title and date, or one object that holds one such array")
+        raise ListRefused(
+            f"{asked.name}: a list in JSON is an array of objects with title and date, or one object that holds one such array"
+        )
     header = header_of(items)
     return Table(header, partial(lines_of, items, header), unit="record", encoding=text.encoding)
 

@@ -23,7 +23,8 @@ def text_sql(name: str, kind: str) -> str:
     column = quoted(name)
     if kind in ("FLOAT", "DOUBLE"):
         whole = f"{column} = trunc({column}) AND abs({column}) < 1e18"
-        return f"CASE WHEN isnan({column}) THEN NULL WHEN {whole} THEN CAST(CAST({column} AS BIGINT) AS VARCHAR) ELSE CAST({column} AS VARCHAR) END"
+        number = f"CAST(CAST({column} AS BIGINT) AS VARCHAR) ELSE CAST({column} AS VARCHAR)"
+        return f"CASE WHEN isnan({column}) THEN NULL WHEN {whole} THEN {number} END"
     if kind == "DATE":
         return f"CASE WHEN isfinite({column}) THEN {_DAY.format(column)} ELSE CAST({column} AS VARCHAR) END"
     if kind.startswith("TIMESTAMP"):
