@@ -84,6 +84,14 @@ def test_rates_are_those_of_the_window():
     assert n == closed.n and value[0] == pytest.approx(growth(closed).estimate, rel=1e-9)
 
 
+@pytest.mark.parametrize("n", [5, 40])
+def test_z_of_many_rows_is_that_of_each(n):
+    rows = np.sort(np.random.default_rng(n).random((400, n)) ** 1.3, axis=1)
+    frame = Frame(0.0, 1.0, 0, 0, 1e-9)
+    each = np.concatenate([growth_and_z(row[None], frame)[1] for row in rows])
+    assert growth_and_z(rows, frame)[1] == pytest.approx(each, abs=2e-3)
+
+
 def test_mid_rank_z():
     null = np.arange(1.0, 10.0)
     assert mid_rank_z(np.array([5.0]), null)[0] == pytest.approx(0.0, abs=1e-12)
