@@ -10,7 +10,7 @@ from .. import __version__
 from .output import Output
 
 NEEDED = ("numpy", "pandas", "duckdb", "scipy", "statsmodels", "rich")
-EXTRAS = {"charts": ("plotext",), "excel": ("openpyxl",), "figures": ("matplotlib",)}
+EXTRAS = {"excel": ("openpyxl",), "figures": ("matplotlib",)}
 
 
 def _version(name: str) -> str | None:

@@ -22,7 +22,6 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
 
 def _run(options: argparse.Namespace, out: Output) -> int:
     from ...report.charts import CHARTS, chart, to_figure, to_terminal
-    from ...report.formats import jsonable
     from ...report.pages import charts_page
 
     if options.kind is None:
@@ -36,19 +35,18 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         from ...store.timeline import entries
 
         rows, milestone = entries(timeline(options))
-        grid = run_grid(Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, tell=out.tell), joint=0, tell=out.tell)
+        grid = run_grid(Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, tell=out.tell), joint=199, tell=out.tell)
     data = chart(options.kind, record=record, grid=grid, seed=options.seed, draws=options.draws)
     if options.to:
         path = to_figure(data, options.to)
         out.remark(f"wrote {path}")
         return 0
     if options.format == "table":
-        out.text(to_terminal(data, width=out.width, height=options.height, colour=out.colour))
+        out.text(to_terminal(data, width=min(out.width, 140), height=options.height, colour=out.colour) + "\n")
     elif options.format == "json":
         import json
-        from dataclasses import asdict
 
-        out.text(json.dumps({**jsonable(asdict(data)), "made": command_line(f"chart {options.kind}", options)}, ensure_ascii=False, indent=1) + "\n")
+        out.text(json.dumps({**data.to_dict(), "made": command_line(f"chart {options.kind}", options)}, ensure_ascii=False, indent=1, allow_nan=False) + "\n")
     else:
         from ...report.pages import frame_page
 
