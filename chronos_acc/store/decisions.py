@@ -47,7 +47,7 @@ class Side:
 
 @dataclass(frozen=True)
 class Pair:
-    """A pair to look at: both entries, the score (probability) with its parts by name, and its state. Not compared: score and parts are None."""
+    """A pair to look at: both entries, the score (a probability) with its parts by name, its state. Not compared: no score."""
 
     a: Side
     b: Side
@@ -79,15 +79,15 @@ def pending(db: str | Path, state: str = "review") -> tuple[Pair, ...]:
 
 
 def pair(db: str | Path, a: int, b: int) -> Pair:
-    """Any two entries as a pair, compared or not; this is how a linked pair is looked at before it is taken apart. Raises WrongUse for unknown ids."""
+    """Any two entries as a pair, compared or not; so a linked pair is seen before it is taken apart. Raises WrongUse for unknown ids."""
     with open_for_reading(db) as ledger:
         return _pairs(ledger, [(min(a, b), max(a, b))])[0]
 
 
 def decide(db: str | Path, a: int, b: int, verdict: str, *, who: str, why: str | None = None) -> int:
-    """Settle that two entries (ids) mean the same event or different ones; what was settled about them before is withdrawn. Returns the decision's id.
+    """Settle that two entries (ids) mean the same event or different ones; what was settled before is withdrawn. Returns the decision's id.
 
-    "different" on a linked pair takes it apart. Raises WrongUse for unknown ids, the same id twice, a verdict that is none, or nobody in ``who``.
+    "different" on a linked pair takes it apart. Raises WrongUse for unknown ids, one id twice, another verdict, or nobody in ``who``.
     """
     return decide_many(db, [(a, b, verdict, why)], who=who)[0]
 
@@ -114,7 +114,9 @@ def withdraw(db: str | Path, decision: int) -> None:
 def undo(db: str | Path, decision: int) -> None:
     """Take back a decision of this sitting as if it had not been made; one that it replaced stands again."""
     with open_for_writing(db, create=False) as ledger, ledger.transaction():
-        row = ledger.row("SELECT source_a, title_a, nth_a, source_b, title_b, nth_b, decided_at FROM ledger.decision WHERE decision = ?", [decision])
+        row = ledger.row(
+            "SELECT source_a, title_a, nth_a, source_b, title_b, nth_b, decided_at FROM ledger.decision WHERE decision = ?", [decision]
+        )
         if row is None:
             raise WrongUse(f"there is no decision {decision} to undo; chronos-acc review --list shows them")
         ledger.run("DELETE FROM ledger.decision WHERE decision = ?", [decision])
@@ -135,10 +137,10 @@ def listing(db: str | Path) -> pd.DataFrame:
 
 
 def read_file(db: str | Path, file: str | Path, *, who: str) -> FileRead:
-    """Decisions from a CSV file such as ``links --state review --format csv`` writes, with a verdict in the column ``verdict`` or ``state``.
+    """Decisions from a CSV file such as ``links --state review --format csv`` writes, with the verdict in column ``verdict`` or ``state``.
 
-    Needed: source_a, title_a, source_b, title_b. Optional: nth_a, nth_b (needed where a list has a title twice), who, why. A row whose verdict is
-    neither same nor different is skipped. All or none. Raises ListRefused naming file and line.
+    Needed: source_a, title_a, source_b, title_b. Optional: nth_a, nth_b (needed where a list has a title twice), who, why. A row whose
+    verdict is neither same nor different is skipped. All or none. Raises ListRefused naming file and line.
     """
     path = Path(file)
     rows = _read_csv(path)
@@ -146,14 +148,18 @@ def read_file(db: str | Path, file: str | Path, *, who: str) -> FileRead:
     with open_for_writing(db, create=False) as ledger, ledger.transaction():
         standing = {
             (int(a), int(b)): str(v)
-            for a, b, v in ledger.rows(f"SELECT least(entry_a, entry_b), greatest(entry_a, entry_b), verdict FROM decisions WHERE {STANDING} ORDER BY decision")
+            for a, b, v in ledger.rows(
+                f"SELECT least(entry_a, entry_b), greatest(entry_a, entry_b), verdict FROM decisions WHERE {STANDING} ORDER BY decision"
+            )
         }
         seen: dict[tuple[int, int], tuple[str, int]] = {}
         for line, row in rows:
             verdict = (row.get("verdict") or "").strip().casefold() or (row.get("state") or "").strip().casefold()
             if verdict not in VERDICTS:
                 if (row.get("verdict") or "").strip():
-                    raise ListRefused(f"{path}, line {line}: verdict {row['verdict']!r} is not allowed; write same or different, or leave it empty")
+                    raise ListRefused(
+                        f"{path}, line {line}: verdict {row['verdict']!r} is not allowed; write same or different, or leave it empty"
+                    )
                 skipped += 1
                 continue
             a, b = (_find(ledger, row, side, path, line) for side in ("a", "b"))
@@ -161,7 +167,9 @@ def read_file(db: str | Path, file: str | Path, *, who: str) -> FileRead:
                 raise ListRefused(f"{path}, line {line}: both sides are the same entry, {row['title_a']!r} of {row['source_a']}")
             key = (min(a, b), max(a, b))
             if key in seen and seen[key][0] != verdict:
-                raise ListRefused(f"{path}, line {line}: says {verdict}, line {seen[key][1]} says {seen[key][0]} of the same two entries; keep one")
+                raise ListRefused(
+                    f"{path}, line {line}: says {verdict}, line {seen[key][1]} says {seen[key][0]} of the same two entries; keep one"
+                )
             seen[key] = (verdict, line)
             if standing.get(key) == verdict:
                 unchanged += 1
@@ -183,12 +191,14 @@ def _decide(ledger: Ledger, a: int, b: int, verdict: str, who: str, why: str | N
     moment = now()
     ledger.run(
         "UPDATE ledger.decision SET withdrawn_at = ? WHERE withdrawn_at IS NULL AND ("
-        "(source_a, title_a, nth_a, source_b, title_b, nth_b) = (?, ?, ?, ?, ?, ?) OR (source_b, title_b, nth_b, source_a, title_a, nth_a) = (?, ?, ?, ?, ?, ?))",
+        "(source_a, title_a, nth_a, source_b, title_b, nth_b) = (?, ?, ?, ?, ?, ?)"
+        " OR (source_b, title_b, nth_b, source_a, title_a, nth_a) = (?, ?, ?, ?, ?, ?))",
         [moment, *first[:3], *second[:3], *first[:3], *second[:3]],
     )
     number = ledger.new_ids("decision")
     ledger.run(
-        "INSERT INTO ledger.decision (decision, source_a, title_a, nth_a, source_b, title_b, nth_b, verdict, who, decided_at, why, date_a, date_b)"
+        "INSERT INTO ledger.decision (decision, source_a, title_a, nth_a, source_b, title_b, nth_b,"
+        " verdict, who, decided_at, why, date_a, date_b)"
         " VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)",
         [number, *first[:3], *second[:3], verdict, who.strip(), moment, why, first[3], second[3]],
     )
@@ -208,7 +218,8 @@ def _pairs(ledger: Ledger, wanted: Sequence[tuple[int, int]]) -> list[Pair]:
         return []
     ids = sorted({e for p in wanted for e in p})
     rows = ledger.rows(
-        "SELECT e.entry, e.source, e.title, e.nth, e.date_text, e.earliest, e.best, e.latest, e.shape, e.category, e.note, e.row, e.rest, m.milestone"
+        "SELECT e.entry, e.source, e.title, e.nth, e.date_text, e.earliest, e.best, e.latest, e.shape,"
+        " e.category, e.note, e.row, e.rest, m.milestone"
         " FROM entries AS e LEFT JOIN ledger.member AS m ON m.entry = e.entry WHERE e.entry IN (SELECT unnest(?::BIGINT[]))",
         [ids],
     )
@@ -244,7 +255,9 @@ def _find(ledger: Ledger, row: dict[str, str], side: str, path: Path, line: int)
             return int(found[0][0])
         if found:
             raise ListRefused(f"{path}, line {line}: {source} has {title!r} {len(found)} times; say which in the column nth_{side}")
-    raise ListRefused(f"{path}, line {line}: there is no entry {title!r} in a list {source!r}; write list and title as chronos-acc links shows them")
+    raise ListRefused(
+        f"{path}, line {line}: there is no entry {title!r} in a list {source!r}; write list and title as chronos-acc links shows them"
+    )
 
 
 def _read_csv(path: Path) -> list[tuple[int, dict[str, str]]]:

@@ -1,11 +1,11 @@
 # SPDX-License-Identifier: Apache-2.0
 """A whole timeline as a folder and back: Parquet tables, sheets, decisions, and a manifest with hashes. And taking a list out.
 
-    manifest.json           what is here: every file with its rows and SHA-256
-    ledger/*.parquet        the base tables; loading the folder reads these
-    entries.parquet, milestones.parquet, intervals.parquet      the views, for other programs
-    sheets/NAME.toml        the lists' sheets as they were
-    decisions.csv           decisions with their status
+manifest.json           what is here: every file with its rows and SHA-256
+ledger/*.parquet        the base tables; loading the folder reads these
+entries.parquet, milestones.parquet, intervals.parquet      the views, for other programs
+sheets/NAME.toml        the lists' sheets as they were
+decisions.csv           decisions with their status
 """
 
 from __future__ import annotations
@@ -15,8 +15,8 @@ import hashlib
 import json
 import shutil
 import tempfile
-from contextlib import contextmanager
 from collections.abc import Iterator
+from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -88,7 +88,7 @@ class Unloaded:
 
 
 def export(db: str | Path, folder: str | Path, *, tell: Tell = silent) -> Exported:
-    """Write the timeline into an empty or new folder. The same timeline gives the same bytes. Raises WrongUse for a folder that holds something."""
+    """Write the timeline into an empty or new folder; the same timeline gives the same bytes. WrongUse for a folder that is in use."""
     target = Path(folder)
     if target.exists() and (not target.is_dir() or any(target.iterdir())):
         raise WrongUse(f"{target} is {'not empty' if target.is_dir() else 'a file'}; export takes an empty or new folder")
@@ -155,7 +155,7 @@ def restore(db: str | Path, folder: str | Path, *, tell: Tell = silent) -> Resto
 
 
 def unload(db: str | Path, name: str, *, link: bool = True, tell: Tell = silent) -> Unloaded:
-    """Take a list out and link the rest again (unless ``link`` is False). Decisions about its entries stay and are adrift until it comes back.
+    """Take a list out and link the rest again (unless ``link`` is False). Decisions about its entries stay, adrift until it comes back.
 
     Raises WrongUse for a list that is not there.
     """
@@ -163,17 +163,22 @@ def unload(db: str | Path, name: str, *, link: bool = True, tell: Tell = silent)
         names = [str(n) for (n,) in ledger.rows("SELECT name FROM ledger.source ORDER BY source")]
         if name not in names:
             near = difflib.get_close_matches(name, names, n=1)
-            raise WrongUse(f"there is no list {name!r} in {db}; {f'did you mean {near[0]}? ' if near else ''}it has {', '.join(names) or 'none'}")
+            raise WrongUse(
+                f"there is no list {name!r} in {db}; {f'did you mean {near[0]}? ' if near else ''}it has {', '.join(names) or 'none'}"
+            )
         source, file = ledger.rows("SELECT source, file FROM ledger.source WHERE name = ?", [name])[0]
         entries = int(ledger.value("SELECT count(*) FROM ledger.entry WHERE source = ?", [source]))
         rejects = int(ledger.value("SELECT count(*) FROM ledger.reject WHERE source = ?", [source]))
-        decisions = int(ledger.value("SELECT count(*) FROM decisions WHERE status IN ('holds', 'date changed') AND ? IN (source_a, source_b)", [name]))
+        decisions = int(
+            ledger.value("SELECT count(*) FROM decisions WHERE status IN ('holds', 'date changed') AND ? IN (source_a, source_b)", [name])
+        )
         ledger.entries_changed()
         for table in ("entry", "reject", "source"):
             ledger.run(f"DELETE FROM ledger.{table} WHERE source = ?", [source])
         notes = [f"to get the former state back: chronos-acc load {file or 'FILE'}"]
         if decisions:
-            notes.append(f"{decisions} decision{'s' if decisions > 1 else ''} about its entries {'are' if decisions > 1 else 'is'} kept, adrift until the list comes back")
+            some = "decisions about its entries are" if decisions > 1 else "decision about its entries is"
+            notes.append(f"{decisions} {some} kept, adrift until the list comes back")
         if link:
             done = relink_open(ledger, tell=tell)
             notes += [n for n in done.notes if "adrift" not in n]

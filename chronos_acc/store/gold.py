@@ -1,9 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """Linking held against the truth: precision, recall and F1 over pairs inside milestones, and what other thresholds would give.
 
-A gold file is CSV. Either ``source,title,milestone`` (and ``nth`` where a list has a title twice): entries with the same word in ``milestone``
-mean one event. Or ``source_a,title_a,source_b,title_b`` (and ``nth_a,nth_b``): each row is a pair that means one event; an entry without a partner
-stands with an empty second side. Only entries that the gold file names are judged, and only pairs of different lists.
+A gold file is CSV. Either ``source,title,milestone`` (and ``nth`` where a list has a title twice): entries with the same word in
+``milestone`` mean one event. Or ``source_a,title_a,source_b,title_b`` (and ``nth_a,nth_b``): each row is a pair that means one event; an
+entry without a partner stands with an empty second side. Only entries that the gold file names are judged, only pairs of different lists.
 """
 
 from __future__ import annotations
@@ -34,8 +34,8 @@ PairSet = frozenset[tuple[int, int]]
 class GoldCheck:
     """Agreement with a gold file over pairs of entries: ``pairs`` inside milestones, ``gold_pairs`` in the file, ``right`` in both.
 
-    precision = right / pairs, recall = right / gold_pairs, f1 their harmonic mean; None where there is nothing to divide by. curve: one row a threshold
-    (threshold, precision, recall, f1, pairs, right), made anew from the stored scores and the decisions.
+    precision = right / pairs, recall = right / gold_pairs, f1 their harmonic mean; None where there is nothing to divide by. curve: one row
+    a threshold (threshold, precision, recall, f1, pairs, right), made anew from the stored scores and the decisions.
     """
 
     precision: float | None
@@ -56,14 +56,18 @@ class GoldCheck:
 
 
 def check_gold(db: str | Path, file: str | Path) -> GoldCheck:
-    """Compare the present milestones with a gold file. Changes nothing. Raises ListRefused for a file that is none, TimelineRefused when linking is due."""
+    """Compare the present milestones with a gold file; changes nothing.
+
+    Raises ListRefused for a file that is none, TimelineRefused when linking is due.
+    """
     import pandas as pd
 
     groups = read_gold(Path(file))
     with open_for_reading(db) as ledger:
         ledger.require_linked()
         rows = ledger.rows(
-            "SELECT e.entry, s.name, e.title, e.nth, e.source, m.milestone FROM ledger.entry AS e JOIN ledger.source AS s ON s.source = e.source"
+            "SELECT e.entry, s.name, e.title, e.nth, e.source, m.milestone"
+            " FROM ledger.entry AS e JOIN ledger.source AS s ON s.source = e.source"
             " JOIN ledger.member AS m ON m.entry = e.entry ORDER BY e.entry"
         )
         entry_of: dict[Key, int] = {(str(s), str(t), int(n)): int(e) for e, s, t, n, *_ in rows}
@@ -86,7 +90,9 @@ def check_gold(db: str | Path, file: str | Path) -> GoldCheck:
         )
     if not truth:
         notes.append("the gold file has no pair of entries of different lists that are in the timeline")
-    return GoldCheck(**_rates(found, truth), pairs=len(found), gold_pairs=len(truth), right=len(found & truth), curve=curve, notes=tuple(notes))
+    return GoldCheck(
+        **_rates(found, truth), pairs=len(found), gold_pairs=len(truth), right=len(found & truth), curve=curve, notes=tuple(notes)
+    )
 
 
 def read_gold(path: Path) -> dict[Key, int]:
@@ -141,7 +147,11 @@ def pairs_inside(groups: Iterable[tuple[int, int]], source: dict[int, int]) -> P
     for entry, group in groups:
         members.setdefault(group, []).append(entry)
     return frozenset(
-        (min(a, b), max(a, b)) for inside in members.values() for i, a in enumerate(inside) for b in inside[i + 1 :] if source[a] != source[b]
+        (min(a, b), max(a, b))
+        for inside in members.values()
+        for i, a in enumerate(inside)
+        for b in inside[i + 1 :]
+        if source[a] != source[b]
     )
 
 
@@ -163,7 +173,10 @@ def _at(ledger: Ledger, threshold: float, rows: Sequence[tuple[object, ...]], so
     links = ledger.rows("SELECT a, b, score FROM ledger.link WHERE score IS NOT NULL ORDER BY a, b")
     a, b = (np.array([place[int(row[k])] for row in links], dtype=np.int64) for k in (0, 1))
     score = np.array([float(row[2]) for row in links], dtype=float)
-    settled = {(min(place[d.a], place[d.b]), max(place[d.a], place[d.b])): d.verdict for d in [*apart(statements(ledger)), *active_decisions(ledger)]}
+    settled = {
+        (min(place[d.a], place[d.b]), max(place[d.a], place[d.b])): d.verdict
+        for d in [*apart(statements(ledger)), *active_decisions(ledger)]
+    }
     same, different = ([p for p, v in settled.items() if v == verdict] for verdict in ("same", "different"))
     label = build(source, a, b, score, threshold, same, different)[0].labels()
     return pairs_inside(((int(e), int(label[place[int(e)]])) for e in ids if int(e) in judged), source_of)

@@ -132,7 +132,12 @@ def _nothing(ledger: Ledger, options: LinkOptions) -> LinkSummary:
 
 
 def _write_links(ledger: Ledger, entries: Entries, linked: Linked) -> None:
-    data: dict[str, Any] = {"a": entries.id[linked.a], "b": entries.id[linked.b], "score": linked.score, "state": linked.state.astype(object)}
+    data: dict[str, Any] = {
+        "a": entries.id[linked.a],
+        "b": entries.id[linked.b],
+        "score": linked.score,
+        "state": linked.state.astype(object),
+    }
     data.update({name: linked.parts[name] for name in PARTS if name in linked.parts})
     ledger.insert("ledger.link", data)
 
@@ -166,5 +171,7 @@ def _decision_notes(ledger: Ledger) -> list[str]:
         "adrift": "adrift: an entry they speak of is gone; they count again when it comes back",
         "date changed": "about entries whose date has changed since; they still count, look at them again (chronos-acc review --list)",
     }
-    counts = ledger.rows("SELECT status, count(*) FROM decisions WHERE status IN ('adrift', 'date changed') GROUP BY status ORDER BY status")
+    counts = ledger.rows(
+        "SELECT status, count(*) FROM decisions WHERE status IN ('adrift', 'date changed') GROUP BY status ORDER BY status"
+    )
     return [f"{n} {'decisions are' if n > 1 else 'decision is'} {words[status]}" for status, n in counts]

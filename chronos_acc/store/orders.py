@@ -24,7 +24,7 @@ class Orders:
 
 @dataclass(frozen=True)
 class Statement:
-    """"earlier precedes later", who states it, and the entries (ids) that have these titles: a list speaks of its own entries, a file of any list's."""
+    """What precedes what, who states it, and the entries (ids) that have these titles: a list speaks of its own entries, a file of any."""
 
     earlier: str
     later: str
@@ -43,12 +43,15 @@ def statements(ledger: Ledger) -> list[Statement]:
     if not stated:
         return []
     by_title: dict[tuple[str | None, str], list[int]] = {}
-    rows = ledger.rows("SELECT e.entry, s.name, e.title FROM ledger.entry AS e JOIN ledger.source AS s ON s.source = e.source ORDER BY e.entry")
+    rows = ledger.rows(
+        "SELECT e.entry, s.name, e.title FROM ledger.entry AS e JOIN ledger.source AS s ON s.source = e.source ORDER BY e.entry"
+    )
     for entry, name, title in rows:
         for scope in (str(name), None):
             by_title.setdefault((scope, _key(title)), []).append(int(entry))
     return [
-        Statement(a, b, who, tuple(by_title.get((scope, _key(a)), ())), tuple(by_title.get((scope, _key(b)), ()))) for a, b, who, scope in stated
+        Statement(a, b, who, tuple(by_title.get((scope, _key(a)), ())), tuple(by_title.get((scope, _key(b)), ())))
+        for a, b, who, scope in stated
     ]
 
 
@@ -71,24 +74,32 @@ def find(stated: Sequence[Statement], milestone: Mapping[int, int], titles: Mapp
         for title, entries in ((s.earlier, s.first), (s.later, s.second)):
             found = {milestone[e] for e in entries if e in milestone}
             if len(found) > 1:
-                notes.append(f"{s.who} states an order for {title!r}, which stands in {len(found)} milestones: left out; make the title unique")
+                notes.append(
+                    f"{s.who} states an order for {title!r}, which stands in {len(found)} milestones: left out; make the title unique"
+                )
             elif not found:
                 notes.append(f"{s.who} states an order for {title!r}, which is no entry's title: left out")
             else:
                 ends.append(found.pop())
         if len(ends) == 2:
             if ends[0] == ends[1]:
-                raise RecordRefused(f"{s.who} states that {s.earlier!r} precedes {s.later!r}, but both are one milestone; part them in review or withdraw the order")
+                raise RecordRefused(
+                    f"{s.who} states that {s.earlier!r} precedes {s.later!r}, but both are one milestone;"
+                    " part them in review or withdraw the order"
+                )
             pairs.setdefault((ends[0], ends[1]), s.who)
     circle = cycle([*pairs])
     if circle:
-        steps = [f"{titles.get(i, i)!r} before {titles.get(j, j)!r} ({pairs[i, j]})" for i, j in zip(circle, [*circle[1:], circle[0]], strict=True)]
+        steps = [
+            f"{titles.get(i, i)!r} before {titles.get(j, j)!r} ({pairs[i, j]})"
+            for i, j in zip(circle, [*circle[1:], circle[0]], strict=True)
+        ]
         raise RecordRefused(f"the known orders go in a circle: {'; '.join(steps)}; take one of them out")
     return Orders(tuple((i, j, who) for (i, j), who in pairs.items()), tuple(notes))
 
 
 def cycle(pairs: Sequence[tuple[int, int]]) -> list[int]:
-    """The nodes of one circle in order, or none. Depth first without recursion, in order of the ids, so that the answer is always the same."""
+    """The nodes of one circle in order, or none. Depth first without recursion, in order of the ids, so the answer is always the same."""
     after: dict[int, list[int]] = {}
     for i, j in sorted(pairs):
         after.setdefault(i, []).append(j)
@@ -133,7 +144,10 @@ def state_orders(db: str | Path, file: str | Path) -> int:
     with open_for_writing(db, create=False) as ledger, ledger.transaction():
         ledger.run("DELETE FROM ledger.stated_order WHERE origin = ?", [path.name])
         if pairs:
-            ledger.insert("ledger.stated_order", {"origin": [path.name] * len(pairs), "earlier": [a for a, _ in pairs], "later": [b for _, b in pairs]})
+            ledger.insert(
+                "ledger.stated_order",
+                {"origin": [path.name] * len(pairs), "earlier": [a for a, _ in pairs], "later": [b for _, b in pairs]},
+            )
         ledger.set_about("linked", "no")
     return len(pairs)
 

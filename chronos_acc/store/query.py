@@ -1,5 +1,5 @@
 # SPDX-License-Identifier: Apache-2.0
-"""A person's SQL over the timeline, and the named queries. One statement that reads, on a file that cannot be written, with nothing else in reach."""
+"""A person's SQL over the timeline, and the named queries: one statement that reads, no writing, nothing else in reach."""
 
 from __future__ import annotations
 

@@ -14,13 +14,21 @@ from .ledger import now, open_for_writing
 
 
 def record_run(
-    db: str | Path, *, command: str, seed: int | None = None, draws: int | None = None, record: str | None = None, result: Mapping[str, Any] | None = None
+    db: str | Path,
+    *,
+    command: str,
+    seed: int | None = None,
+    draws: int | None = None,
+    record: str | None = None,
+    result: Mapping[str, Any] | None = None,
 ) -> int:
     """Store a run: command line, seed, number of draws, hash of the record, main results. Returns its id."""
     text = None if result is None else json.dumps(_plain(result), ensure_ascii=False, allow_nan=False)
     with open_for_writing(db, create=False) as ledger, ledger.transaction():
         number = ledger.new_ids("run")
-        ledger.run("INSERT INTO ledger.run VALUES (?, ?, ?, ?, ?, ?, ?, ?)", [number, now(), command, __version__, seed, draws, record, text])
+        ledger.run(
+            "INSERT INTO ledger.run VALUES (?, ?, ?, ?, ?, ?, ?, ?)", [number, now(), command, __version__, seed, draws, record, text]
+        )
     return number
 
 

@@ -64,19 +64,21 @@ def table(db: str | Path, name: str, **filters: Any) -> pd.DataFrame:
 
 
 def milestone(db: str | Path, id: int) -> MilestoneDetail:
-    """One milestone with all its entries, their texts, and why they were joined. Raises RecordRefused when there is no such milestone."""
+    """One milestone with all its entries, their texts, and why they were joined. Raises RecordRefused when there is none of that id."""
     with open_for_reading(db) as ledger:
         ledger.require_linked()
         head = ledger.frame("FROM milestones WHERE milestone = ?", [id])
         if not len(head):
             raise RecordRefused(f"there is no milestone {id}; chronos-acc milestones lists them")
         entries = ledger.frame("SELECT * EXCLUDE (milestone, milestone_title) FROM members WHERE milestone = ? ORDER BY best, entry", [id])
-        links = ledger.frame("FROM links WHERE milestone_a = ? OR milestone_b = ? ORDER BY score DESC NULLS LAST, entry_a, entry_b", [id, id])
+        links = ledger.frame(
+            "FROM links WHERE milestone_a = ? OR milestone_b = ? ORDER BY score DESC NULLS LAST, entry_a, entry_b", [id, id]
+        )
     return MilestoneDetail(head, entries, links)
 
 
 def default_present(ledger: Ledger, sources: Sequence[str] | None = None) -> tuple[float, str]:
-    """The present and where it comes from: the end of the earliest compile year among the lists chosen, else of the year of the first load."""
+    """The present and its origin: the end of the earliest compile year among the lists chosen, else of the year of the first load."""
     found = ledger.rows("SELECT name, compiled FROM ledger.source WHERE compiled IS NOT NULL AND rows_loaded > 0 ORDER BY compiled, source")
     chosen = [(n, c) for n, c in found if sources is None or n in sources]
     if chosen:
@@ -127,7 +129,7 @@ def entries(db: str | Path) -> tuple[Entries, Ints]:
 
 
 def ancestry(ledger: Ledger) -> dict[str, str]:
-    """For each list (and each list named as an ancestor) with kin the list that stands for the kin: lists with a common ancestor count as one."""
+    """For each list with kin (lists named as ancestors too) the list that stands for the kin: those with a common ancestor count as one."""
     root: dict[str, str] = {}
 
     def top(name: str) -> str:
@@ -186,7 +188,8 @@ def _whole(ledger: Ledger) -> Record:
     place = {int(s): i for i, (s, *_) in enumerate(lists)}
     names = tuple(str(n) for _, n, _ in lists)
     head = ledger.columns(
-        "SELECT milestone, title, earliest, best, latest, unit, sd, category, importance, level, parent FROM ledger.milestone ORDER BY milestone"
+        "SELECT milestone, title, earliest, best, latest, unit, sd, category, importance, level, parent"
+        " FROM ledger.milestone ORDER BY milestone"
     )
     parts = ledger.columns(
         "SELECT m.milestone, e.source, m.weight, m.normal, m.low, m.mode, m.high FROM ledger.member AS m"

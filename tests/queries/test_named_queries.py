@@ -25,7 +25,8 @@ from tests.store.timelines import BRIDGE, KILN, MILL, put, two_lists
 
 QUERIES = Q.named()
 VALUES = {
-    "list": "alpha", "rows": 2, "present": 1900.0, "start": 1000.0, "min_support": 2, "category": "craft", "at_least": 1, "least_shared": 1, "status": "holds",
+    "list": "alpha", "rows": 2, "present": 1900.0, "start": 1000.0, "min_support": 2, "category": "craft", "at_least": 1,
+    "least_shared": 1, "status": "holds",
 }  # fmt: skip
 
 
@@ -34,8 +35,16 @@ def db(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Path]:
     """A timeline in which every named query finds something; held open as ``run`` opens it, which makes opening it again cheap."""
     path = two_lists(tmp_path_factory.mktemp("named") / "t.duckdb")
     with open_for_writing(path) as ledger, ledger.transaction():
-        put(ledger, "gamma", [("gate", 1500.5), {"title": "gate", "best": 1500.5, "duplicate": True}, (KILN, 1200.5), (MILL, 1650.5), (BRIDGE, 1890.5)], derives_from=["beta"])
-        ledger.run("INSERT INTO ledger.reject VALUES (1, 9, 'a;b', 'date ''12/03/04'' reads in two ways'), (1, 8, 'c;d', 'date ''01/02/03'' reads in two ways'), (2, 3, 'e', 'no date')")
+        put(
+            ledger,
+            "gamma",
+            [("gate", 1500.5), {"title": "gate", "best": 1500.5, "duplicate": True}, (KILN, 1200.5), (MILL, 1650.5), (BRIDGE, 1890.5)],
+            derives_from=["beta"],
+        )
+        ledger.run(
+            "INSERT INTO ledger.reject VALUES (1, 9, 'a;b', 'date ''12/03/04'' reads in two ways'),"
+            " (1, 8, 'c;d', 'date ''01/02/03'' reads in two ways'), (2, 3, 'e', 'no date')"
+        )
         ledger.run("UPDATE ledger.source SET rows_read = rows_read + 2, rows_rejected = 2 WHERE source = 1")
     relink(path)
     entries = T.table(path, "entries", title=MILL)["entry"].tolist()
@@ -80,7 +89,9 @@ class TestEachQuery:
         assert client.execute(f"SELECT count(*) FROM (SELECT {plain} FROM ({body}) GROUP BY ALL HAVING count(*) > 1)").fetchall() == [(0,)]
 
     def test_its_parameters_are_used_and_documented(self, query: Q.NamedQuery) -> None:
-        assert set(re.findall(r"getvariable\('(\w+)'\)", query.sql)) == set(query.parameters) - {p for p in query.parameters if f"'{p}'" not in query.sql}
+        assert set(re.findall(r"getvariable\('(\w+)'\)", query.sql)) == set(query.parameters) - {
+            p for p in query.parameters if f"'{p}'" not in query.sql
+        }
         assert all(f"'{name}'" in query.sql or name in Q.VIEW_VARIABLES for name in query.parameters)  # the views follow these themselves
 
     def test_the_file_runs_unchanged_in_any_client(self, db: Path, client: duckdb.DuckDBPyConnection, query: Q.NamedQuery) -> None:
@@ -112,7 +123,10 @@ def test_values(db: Path, tmp_path: Path) -> None:
     assert Q.run(db, "duplicates")["title"].tolist() == ["gate"]
     assert Q.run(db, "decisions_to_look_at")["status"].tolist() == ["date changed"]
     support = Q.run(db, "support_by_epoch")
-    assert support["milestones"].sum() == len(T.record(shutil.copy(db, tmp_path)).window.times) and (support["single"] + support["shared"] == support["milestones"]).all()
+    assert (
+        support["milestones"].sum() == len(T.record(shutil.copy(db, tmp_path)).window.times)
+        and (support["single"] + support["shared"] == support["milestones"]).all()
+    )
     series = Q.run(db, "intervals")
     counts = Q.run(db, "counts_per_decade_of_age")
     assert counts["milestones"].sum() == len(series) and counts["cumulative"].iloc[-1] == len(series)
@@ -140,6 +154,8 @@ def test_a_query_file_needs_its_header(tmp_path: Path) -> None:
     (tmp_path / "bare.sql").write_text("SELECT 1\n")
     with pytest.raises(QueryRefused, match="bare.sql needs a question"):
         Q.named(tmp_path)
-    found = Q.parse("a", "-- question: What\n--   is it?\n-- parameters:\n--   x = 3: a: b\n-- columns:\n--   y: z\n\nSELECT 1 AS y\n-- after\n")
+    found = Q.parse(
+        "a", "-- question: What\n--   is it?\n-- parameters:\n--   x = 3: a: b\n-- columns:\n--   y: z\n\nSELECT 1 AS y\n-- after\n"
+    )
     assert found.question == "What is it?" and found.parameters == {"x": "a: b (default 3)"} and found.columns == {"y": "z"}
     assert found.sql == "SELECT 1 AS y\n-- after\n"

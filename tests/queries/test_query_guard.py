@@ -156,7 +156,20 @@ def test_settings_become_variables(db: Path) -> None:
 
 @pytest.mark.parametrize(
     ("text", "value"),
-    [("1850", 1850), ("-500", -500), ("0", 0), ("007", "007"), ("1.5", 1.5), ("1e3", 1000.0), (".5", ".5"), ("1_000", "1_000"), ("nan", "nan"), ("", ""), ("٣", "٣"), ("1" * 30, 1e30 / 9)],
+    [
+        ("1850", 1850),
+        ("-500", -500),
+        ("0", 0),
+        ("007", "007"),
+        ("1.5", 1.5),
+        ("1e3", 1000.0),
+        (".5", ".5"),
+        ("1_000", "1_000"),
+        ("nan", "nan"),
+        ("", ""),
+        ("٣", "٣"),
+        ("1" * 30, 1e30 / 9),
+    ],
 )
 def test_text_that_is_written_as_a_number_is_one(text: str, value: object) -> None:
     found = Q.as_value(text)

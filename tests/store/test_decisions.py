@@ -165,7 +165,10 @@ def test_a_guard_against_formulas_is_seen_through(db: Path, tmp_path: Path) -> N
         ("source_a,title_a,source_b,title_b,verdict\nalpha,{kiln},gamma,{kiln},same\n", "line 2: there is no entry .* in a list 'gamma'"),
         ("source_a,title_a,source_b,title_b,verdict\nalpha,{kiln},alpha,{kiln},same\n", "both sides are the same entry"),
         ("source_a,title_a,source_b,title_b,nth_a,verdict\nalpha,{kiln},beta,{kiln},x,same\n", "no whole number"),
-        ("source_a,title_a,source_b,title_b,verdict\nalpha,{kiln},beta,{kiln},same\nbeta,{kiln},alpha,{kiln},different\n", "line 2 says same"),
+        (
+            "source_a,title_a,source_b,title_b,verdict\nalpha,{kiln},beta,{kiln},same\nbeta,{kiln},alpha,{kiln},different\n",
+            "line 2 says same",
+        ),
         ("source_a,title_a,source_b,title_b,verdict\nalpha,{kiln},beta,{kiln},same\nalpha,{kiln},beta,x,same\n", "line 3"),
     ],
 )

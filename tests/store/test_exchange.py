@@ -27,7 +27,7 @@ def db(tmp_path: Path) -> Path:
         ledger.run("INSERT INTO ledger.reject VALUES (1, 7, 'a;b', 'no date')")
         ledger.run("UPDATE ledger.source SET rows_read = rows_read + 1, rows_rejected = 1, notes = ['one', 'two'] WHERE source = 1")
     pair = T.table(path, "links", title_a=KILN).iloc[0]
-    D.decide(path, int(pair["entry_a"]), int(pair["entry_b"]), "same", who="Ina", why="a, \"b\"\nc")
+    D.decide(path, int(pair["entry_a"]), int(pair["entry_b"]), "same", who="Ina", why='a, "b"\nc')
     relink(path)
     record_run(path, command="chronos-acc grid", seed=1, draws=10, record="abc", result={"share": 0.5, "bad": float("nan")})
     return path
@@ -40,11 +40,15 @@ def _all(db: Path) -> dict[str, list[tuple[object, ...]]]:
 
 def test_there_and_back_is_the_same_timeline(db: Path, tmp_path: Path) -> None:
     done = X.export(db, tmp_path / "out [1]")
-    assert {f["file"] for f in done.files} == {p.relative_to(done.folder).as_posix() for p in done.folder.rglob("*") if p.is_file()} - {"manifest.json"}
+    assert {f["file"] for f in done.files} == {p.relative_to(done.folder).as_posix() for p in done.folder.rglob("*") if p.is_file()} - {
+        "manifest.json"
+    }
     assert done.to_frame()["rows"].dtype == "Int64"
     back = tmp_path / "back.duckdb"
     restored = X.restore(back, done.folder)
-    assert restored.changed and [r[0] for r in restored.lists] == ["alpha", "beta"] and restored.milestones == len(T.table(db, "milestones"))
+    assert (
+        restored.changed and [r[0] for r in restored.lists] == ["alpha", "beta"] and restored.milestones == len(T.table(db, "milestones"))
+    )
     assert _all(back) == _all(db)
     assert T.record(back).hash == T.record(db).hash
     again = X.export(back, tmp_path / "again")
@@ -69,7 +73,10 @@ def test_loading_the_same_twice_changes_nothing_and_other_lists_are_refused(db: 
 def test_load_takes_an_exported_folder_by_itself(db: Path, tmp_path: Path) -> None:
     folder = X.export(db, tmp_path / "out").folder
     loaded = load(tmp_path / "back.duckdb", folder)
-    assert [(one.source, one.rows_read, one.rows_loaded, one.rows_rejected, one.added) for one in loaded] == [("alpha", 15, 14, 1, 14), ("beta", 15, 15, 0, 15)]
+    assert [(one.source, one.rows_read, one.rows_loaded, one.rows_rejected, one.added) for one in loaded] == [
+        ("alpha", 15, 14, 1, 14),
+        ("beta", 15, 15, 0, 15),
+    ]
     assert T.record(tmp_path / "back.duckdb").hash == T.record(db).hash
     assert load(db, [folder])[0].added == 0
     with pytest.raises(ListRefused, match="load it by itself"):
@@ -117,7 +124,9 @@ def test_export_takes_an_empty_or_new_folder(db: Path, tmp_path: Path) -> None:
 
 
 def test_names_of_lists_become_safe_and_distinct_file_names(tmp_path: Path) -> None:
-    db = make(tmp_path / "t.duckdb", {"../a": [("x", 1.5)], "..\\a": [("y", 2.5)]}, **{"../a": {"sheet": "# one"}, "..\\a": {"sheet": "# two"}})
+    db = make(
+        tmp_path / "t.duckdb", {"../a": [("x", 1.5)], "..\\a": [("y", 2.5)]}, **{"../a": {"sheet": "# one"}, "..\\a": {"sheet": "# two"}}
+    )
     folder = X.export(db, tmp_path / "out").folder
     sheets = sorted((folder / "sheets").iterdir())
     assert len(sheets) == 2 and all(p.parent == folder / "sheets" for p in sheets) and {p.read_text() for p in sheets} == {"# one", "# two"}

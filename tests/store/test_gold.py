@@ -9,8 +9,8 @@ import pytest
 
 from chronos_acc.errors import ListRefused, TimelineRefused
 from chronos_acc.store.gold import check_gold, pairs_inside, read_gold
-from chronos_acc.store.linking import stored_options
 from chronos_acc.store.ledger import open_for_reading, open_for_writing
+from chronos_acc.store.linking import stored_options
 from tests.store.timelines import ALPHA, BRIDGE, KILN, MILL, two_lists
 
 
@@ -33,7 +33,15 @@ def test_right_links_score_one(db: Path, tmp_path: Path) -> None:
 
 def test_wrong_and_missed_links_are_counted(db: Path, tmp_path: Path) -> None:
     """Two pairs found, one of them right; two in the file: precision and recall are both 1/2."""
-    file = _gold(tmp_path / "g.csv", f"alpha,{KILN},m1", f"beta,{KILN},m1", f"alpha,{MILL},m2", f"beta,{MILL},m3", f"alpha,{ALPHA[0]},m4", f"beta,{BRIDGE},m4")
+    file = _gold(
+        tmp_path / "g.csv",
+        f"alpha,{KILN},m1",
+        f"beta,{KILN},m1",
+        f"alpha,{MILL},m2",
+        f"beta,{MILL},m3",
+        f"alpha,{ALPHA[0]},m4",
+        f"beta,{BRIDGE},m4",
+    )
     check = check_gold(db, file)
     assert (check.precision, check.recall, check.f1) == (0.5, 0.5, 0.5)
     assert check.curve.loc[check.curve["threshold"] == 0.5, ["precision", "recall", "f1"]].to_numpy().tolist() == [[0.5, 0.5, 0.5]]

@@ -179,7 +179,10 @@ def test_ids_are_never_handed_out_twice(db: Path) -> None:
 
 def test_frames_are_matched_by_name(db: Path) -> None:
     with open_for_writing(db) as ledger:
-        ledger.insert("ledger.member", {"high": [4.0], "low": [1.0], "mode": [2.0], "weight": [1.0], "normal": [False], "milestone": [7], "entry": [9]})
+        ledger.insert(
+            "ledger.member",
+            {"high": [4.0], "low": [1.0], "mode": [2.0], "weight": [1.0], "normal": [False], "milestone": [7], "entry": [9]},
+        )
         assert ledger.rows("SELECT entry, milestone, low, mode, high FROM ledger.member") == [(9, 7, 1.0, 2.0, 4.0)]
         assert ledger.insert("ledger.member", {"entry": []}) == 0
 

@@ -30,7 +30,12 @@ def test_a_sheet_states_orders_and_the_draws_respect_them(tmp_path: Path) -> Non
 def test_a_circle_is_refused_and_named_and_nothing_is_changed(tmp_path: Path) -> None:
     db = make(tmp_path / "t.duckdb", {"a": ROWS}, a={"precedes": [["lower bed", "middle bed"]]})
     with open_for_writing(db) as ledger, ledger.transaction():
-        put(ledger, "a", ROWS, precedes=[["lower bed", "middle bed"], ["middle bed", "upper bed"], ["upper bed", "lower bed"], ["lower bed", "gate"]])
+        put(
+            ledger,
+            "a",
+            ROWS,
+            precedes=[["lower bed", "middle bed"], ["middle bed", "upper bed"], ["upper bed", "lower bed"], ["lower bed", "gate"]],
+        )
     with pytest.raises(RecordRefused) as caught:
         relink(db)
     said = str(caught.value)
@@ -77,7 +82,13 @@ def test_an_order_within_one_milestone_is_refused(tmp_path: Path) -> None:
 
 @pytest.mark.parametrize(
     ("pairs", "expected"),
-    [([], []), ([(1, 2), (2, 3), (1, 3)], []), ([(1, 1)], [1]), ([(5, 1), (1, 2), (2, 3), (3, 1)], [1, 2, 3]), ([(1, 2), (3, 4), (4, 3)], [3, 4])],
+    [
+        ([], []),
+        ([(1, 2), (2, 3), (1, 3)], []),
+        ([(1, 1)], [1]),
+        ([(5, 1), (1, 2), (2, 3), (3, 1)], [1, 2, 3]),
+        ([(1, 2), (3, 4), (4, 3)], [3, 4]),
+    ],
 )
 def test_circles(pairs: list[tuple[int, int]], expected: list[int]) -> None:
     assert cycle(pairs) == expected

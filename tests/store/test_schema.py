@@ -14,7 +14,22 @@ from chronos_acc import files
 from chronos_acc.store.ledger import STORAGE, open_for_reading, open_for_writing
 from tests.store.timelines import two_lists
 
-VIEWS = ["decisions", "disagreement", "entries", "epochs", "gaps", "intervals", "links", "members", "milestones", "orders", "overlap", "rejects", "runs", "sources"]
+VIEWS = [
+    "decisions",
+    "disagreement",
+    "entries",
+    "epochs",
+    "gaps",
+    "intervals",
+    "links",
+    "members",
+    "milestones",
+    "orders",
+    "overlap",
+    "rejects",
+    "runs",
+    "sources",
+]
 
 
 @pytest.fixture(scope="module")
@@ -51,12 +66,12 @@ def test_the_contract_of_the_entries_view(db: Path) -> None:
         assert [c for c, *_ in ledger.rows("DESCRIBE links")][:6] == ["source_a", "title_a", "source_b", "title_b", "score", "state"]
 
 
-@pytest.mark.parametrize(
-    "bounds", ["'nan', 1, 2", "1, 'nan', 2", "NULL, 1, 2", "2, 1, 3", "1, 3, 2", "'-inf', 1, 2", "1, 2, 'inf'"]
-)
+@pytest.mark.parametrize("bounds", ["'nan', 1, 2", "1, 'nan', 2", "NULL, 1, 2", "2, 1, 3", "1, 3, 2", "'-inf', 1, 2", "1, 2, 'inf'"])
 def test_bounds_are_finite_and_ordered(tmp_path: Path, bounds: str) -> None:
     with open_for_writing(tmp_path / "t.duckdb") as ledger, pytest.raises(duckdb.ConstraintException):
-        ledger.run(f"INSERT INTO ledger.entry (entry, source, row, title, notation, earliest, best, latest) VALUES (1, 1, 1, 'a', 1, {bounds})")
+        ledger.run(
+            f"INSERT INTO ledger.entry (entry, source, row, title, notation, earliest, best, latest) VALUES (1, 1, 1, 'a', 1, {bounds})"
+        )
 
 
 def test_rows_of_a_list_add_up(tmp_path: Path) -> None:

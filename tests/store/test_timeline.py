@@ -36,7 +36,9 @@ def test_the_record_says_what_the_milestones_say(db: Path) -> None:
     for j in range(len(record)):
         p = slice(*np.searchsorted(record.owner, [j, j + 1]))
         best, earliest, latest, unit, sd = summary_of_parts(record.weight[p], record.kind[p], record.low[p], record.mode[p], record.high[p])
-        np.testing.assert_allclose([record.best[j], record.earliest[j], record.latest[j], record.unit[j], record.sd[j]], [best, earliest, latest, unit, sd])
+        np.testing.assert_allclose(
+            [record.best[j], record.earliest[j], record.latest[j], record.unit[j], record.sd[j]], [best, earliest, latest, unit, sd]
+        )
 
 
 def test_a_shared_milestone_holds_both_lists(db: Path) -> None:
@@ -140,14 +142,15 @@ def _some_lists(seed: int) -> dict[str, list[Row]]:
     for name in ("a", "b"):
         years = np.round(2020 - 10 ** rng.uniform(0, 5, 40), int(rng.integers(0, 3)))
         lists[name] = [
-            {"title": f"{name}{i} event", "best": float(y), "half": 0.5, "category": ("c", "d", None)[i % 3]} for i, y in enumerate(np.concatenate([years, years[:5], [2020.0, 2021.0]]))
+            {"title": f"{name}{i} event", "best": float(y), "half": 0.5, "category": ("c", "d", None)[i % 3]}
+            for i, y in enumerate(np.concatenate([years, years[:5], [2020.0, 2021.0]]))
         ]
     return lists
 
 
 @pytest.mark.parametrize("seed", range(3))
 def test_sql_and_python_give_the_same_interval_series(tmp_path: Path, seed: int) -> None:
-    """Ties, milestones exactly at the start and at the present, and filters included. (Ages are drawn log-uniformly, so intervals shrink.)"""
+    """Ties, milestones exactly at the start and at the present, and filters included. (Ages are log-uniform, so intervals shrink.)"""
     db = make(tmp_path / "t.duckdb", _some_lists(seed))
     middle = float(T.record(db).window.times[20])
     choices: list[dict[str, float | str]] = [
@@ -171,7 +174,8 @@ def _same_series(sql: pd.DataFrame, python: pd.DataFrame, choice: str) -> None:
     np.testing.assert_array_equal(sql["open"].to_numpy(bool), python["open"].to_numpy(bool))
     assert sql["title"].tolist() == python["title"].tolist()
     assert [None if np.isnan(v) else int(v) for v in sql["next_milestone"].to_numpy(float)] == [
-        None if v is None or v != v else int(v) for v in python["next_milestone"].astype(object).where(python["next_milestone"].notna(), None)
+        None if v is None or v != v else int(v)
+        for v in python["next_milestone"].astype(object).where(python["next_milestone"].notna(), None)
     ]
 
 

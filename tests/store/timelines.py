@@ -21,17 +21,26 @@ Row = tuple[str, float] | tuple[str, float, float] | Mapping[str, Any]
 
 
 def put(ledger: Ledger, name: str, rows: Sequence[Row], **source: Any) -> int:
-    """Put a list in place of one of the same name; an entry is (title, year), (title, year, half-width), or a mapping. Returns the list's id."""
+    """Put a list in place of one of the same name; an entry is (title, year), (title, year, half-width), or a mapping. Returns its id."""
     found = ledger.value("SELECT source FROM ledger.source WHERE name = ?", [name])
     number = int(found) if found is not None else ledger.new_ids("source")
     ids = {(t, n): e for e, t, n in ledger.rows("SELECT entry, title, nth FROM ledger.entry WHERE source = ?", [number])}
     for table in ("entry", "reject", "source"):
         ledger.run(f"DELETE FROM ledger.{table} WHERE source = ?", [number])
-    values = {"compiled": 2020, "file": f"{name}.csv", "loaded_at": now(), "digest": name, "rows_read": len(rows), "rows_loaded": len(rows), **source}
+    values = {
+        "compiled": 2020,
+        "file": f"{name}.csv",
+        "loaded_at": now(),
+        "digest": name,
+        "rows_read": len(rows),
+        "rows_loaded": len(rows),
+        **source,
+    }
     if "precedes" in values:
         values["precedes"] = json.dumps(values["precedes"])
     ledger.run(
-        f"INSERT INTO ledger.source (source, name, {', '.join(values)}) VALUES (?, ?{', ?' * len(values)})", [number, name, *values.values()]
+        f"INSERT INTO ledger.source (source, name, {', '.join(values)}) VALUES (?, ?{', ?' * len(values)})",
+        [number, name, *values.values()],
     )
     counts: dict[str, int] = {}
     code = ledger.notation_codes(["year", "plus_minus"])
@@ -44,7 +53,8 @@ def put(ledger: Ledger, name: str, rows: Sequence[Row], **source: Any) -> int:
         entry = ids.get((title, counts[title]))
         full = {
             "entry": entry if entry is not None else ledger.new_ids("entry"), "source": number, "row": at + 1, "nth": counts[title],
-            "earliest": best - half, "latest": best + half, "normal": False, "date_text": f"{best:g}", "category": None, "importance": np.nan,
+            "earliest": best - half, "latest": best + half, "normal": False, "date_text": f"{best:g}",
+            "category": None, "importance": np.nan,
             "level": None, "parent": None, "note": None, "duplicate": False, **given,
         }  # fmt: skip
         full["notation"] = code["plus_minus" if full["normal"] else "year"]
@@ -81,8 +91,10 @@ def make(path: Path, lists: Mapping[str, Sequence[Row]], link: bool = True, **so
 
 KILN, MILL, BRIDGE = "First kiln of the valley", "Water mill at Harnoy", "Stone bridge over the Isven"
 ALPHA = (
-    "Copper found in the northern scarp", "Salt road opened", "Plague year at Tolm", "Guild of dyers chartered", "Cathedral roof burns", "Silver coin struck",
-    "Earthquake in autumn", "University statutes sealed", "Dyke along the marshes", "Printing house licensed", "Observatory dome built", "Vaccination made duty",
+    "Copper found in the northern scarp", "Salt road opened", "Plague year at Tolm", "Guild of dyers chartered", "Cathedral roof burns",
+    "Silver coin struck",
+    "Earthquake in autumn", "University statutes sealed", "Dyke along the marshes", "Printing house licensed", "Observatory dome built",
+    "Vaccination made duty",
 )  # fmt: skip
 BETA = (
     "Windmills reach Brayle", "Heresy trial of the weavers", "Long frost", "Glass blown at Orrin", "Census ordered", "Opera founded",
@@ -103,8 +115,17 @@ def _two_lists(path: Path) -> Path:
     return make(
         path,
         {
-            "alpha": [{"title": KILN, "best": 1200.5, "category": "craft", "importance": 2.0}, {"title": MILL, "best": 1650.5, "category": "water"}, *far],
-            "beta": [{"title": KILN, "best": 1203.5, "category": "craft", "importance": 4.0}, {"title": MILL, "best": 1650.5}, {"title": BRIDGE, "best": 1890.5}, *near],
+            "alpha": [
+                {"title": KILN, "best": 1200.5, "category": "craft", "importance": 2.0},
+                {"title": MILL, "best": 1650.5, "category": "water"},
+                *far,
+            ],
+            "beta": [
+                {"title": KILN, "best": 1203.5, "category": "craft", "importance": 4.0},
+                {"title": MILL, "best": 1650.5},
+                {"title": BRIDGE, "best": 1890.5},
+                *near,
+            ],
         },
         beta={"compiled": 2023},
     )
