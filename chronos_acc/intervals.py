@@ -1,8 +1,9 @@
 # SPDX-License-Identifier: Apache-2.0
 """The interval series: how long it was from each milestone to the next, on best dates and over draws from the datings.
 
-An interval belongs to the milestone that opens it. In each draw it runs to whatever comes next in that draw, so it is never negative; the chance that a
-milestone and its neighbour swap is shown apart. The last interval is open: it runs to the present and nothing has closed it yet.
+An interval belongs to the milestone that opens it. In each draw it runs to whatever comes next in that draw, so it is never negative; the
+chance that a milestone and its neighbour swap is shown apart. The last interval is open: it runs to the present and nothing has closed it
+yet.
 """
 
 from __future__ import annotations
@@ -32,11 +33,11 @@ LOW, HIGH = 0.025, 0.975
 class Intervals:
     """One row a milestone inside the window (w rows), by best date, ties by id; years throughout.
 
-    milestone (w,) ids; title; year (w,) best dates in decimal years; age (w,) present minus year; interval (w,) to the next best date, the last to the
-    present; interval_low, interval_median, interval_high (w,) 2.5, 50 and 97.5 % points over draws, NaN without draws; swap_chance (w,) share of
-    draws in which the milestone comes after its next, NaN for the last; next_milestone (w,) its id, -1 for the last; open (w,) True for the last;
-    support (w,) independent lists that name it. from_start: years from a given start to the first milestone, a residual life and no interval
-    of the series; None where the first milestone opens the window. draws: how many were made.
+    milestone (w,) ids; title; year (w,) best dates in decimal years; age (w,) present minus year; interval (w,) to the next best date, the
+    last to the present; interval_low, interval_median, interval_high (w,) 2.5, 50 and 97.5 % points over draws, NaN without draws;
+    swap_chance (w,) share of draws in which the milestone comes after its next, NaN for the last; next_milestone (w,) its id, -1 for the
+    last; open (w,) True for the last; support (w,) independent lists that name it. from_start: years from a given start to the first
+    milestone, a residual life and no interval of the series; None where the first milestone opens the window. draws: how many were made.
     """
 
     milestone: Ints
@@ -84,7 +85,8 @@ class Intervals:
 
 
 def interval_series(record: Record, *, seed: int = 1, draws: int = 2000, tell: Tell = silent) -> Intervals:
-    """The interval series of a record inside its window. An empty window gives no rows, one milestone its open interval; ``draws`` 0 leaves the points NaN.
+    """The interval series of a record inside its window. An empty window gives no rows, one milestone its open interval; ``draws`` 0
+    leaves the points NaN.
 
     Raises WrongUse for a negative number of draws.
     """
@@ -122,7 +124,8 @@ def interval_series(record: Record, *, seed: int = 1, draws: int = 2000, tell: T
 
 
 def intervals_of(dates: Floats, present: float) -> Floats:
-    """(n, w) interval that each of w milestones opens in each of n draws (n, w): to the next date in that draw, the last to the present; never negative."""
+    """(n, w) interval that each of w milestones opens in each of n draws (n, w): to the next date in that draw, the last to the present;
+    never negative."""
     order = np.argsort(dates, axis=1, kind="stable")
     ordered = np.take_along_axis(dates, order, axis=1)
     gaps = np.empty_like(ordered)
@@ -134,7 +137,8 @@ def intervals_of(dates: Floats, present: float) -> Floats:
 
 
 def _over_draws(record: Record, window: Window, draws: int, seed: int, tell: Tell) -> tuple[Floats, Floats, Floats, Floats]:
-    """Points of each interval over draws, and swap chances, (w,) each. All milestones are drawn, so that streams are shared; only the window's are used."""
+    """Points of each interval over draws, and swap chances, (w,) each. All milestones are drawn, so that streams are shared; only the
+    window's are used."""
     w = len(window.times)
     gaps = np.empty((draws, w))
     swaps = np.zeros(max(w - 1, 0))
@@ -149,8 +153,11 @@ def _over_draws(record: Record, window: Window, draws: int, seed: int, tell: Tel
     return low, median, high, np.append(swaps / draws, np.nan)
 
 
-def interval_sets(record: Record, by: Literal["list", "support", "category"], *, seed: int = 1, draws: int = 2000, tell: Tell = silent) -> dict[str, Intervals]:
-    """The series of each list alone, at each level of support, or of each category; keys are the list's name, "1", "2", … or the category."""
+def interval_sets(
+    record: Record, by: Literal["list", "support", "category"], *, seed: int = 1, draws: int = 2000, tell: Tell = silent
+) -> dict[str, Intervals]:
+    """The series of each list alone, at each level of support, or of each category; keys are the list's name, "1", "2", … or the
+    category."""
     if by == "list":
         parts = {name: record.only(sources=[name]) for name in record.lists}
     elif by == "support":
@@ -164,10 +171,11 @@ def interval_sets(record: Record, by: Literal["list", "support", "category"], *,
 
 @dataclass(frozen=True)
 class Epochs:
-    """Milestones that share their best date, joined (e epochs): for regressions on the logarithm of intervals, which a zero interval has none of.
+    """Milestones that share their best date, joined (e epochs): for regressions on the logarithm of intervals, which a zero interval has
+    none of.
 
-    year (e,) best dates, strictly increasing; count (e,) milestones joined; index (e,) position in the record of the first of each; interval (e - 1,) years
-    from each epoch to the next, all above zero; age (e,) present minus year.
+    year (e,) best dates, strictly increasing; count (e,) milestones joined; index (e,) position in the record of the first of each;
+    interval (e - 1,) years from each epoch to the next, all above zero; age (e,) present minus year.
     """
 
     year: Floats

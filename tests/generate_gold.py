@@ -1,9 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """Invented gold sets for linking: lists that name the same milestones in other words and at other dates, and the truth beside them.
 
-``spelling_gold`` misspells, reorders and rewords titles; ``synonym_gold`` swaps words for synonyms and drops words. Both mix deep time (ages of
-millions of years, dated to per cents) with recent time (dated to years), titles of one to six words, stated ranges and bare years. Milestones are
-combinations of everyday nouns with invented place names, so that many share words such as "first", "origin of" or a common noun.
+``spelling_gold`` misspells, reorders and rewords titles; ``synonym_gold`` swaps words for synonyms and drops words. Both mix deep time
+(ages of millions of years, dated to per cents) with recent time (dated to years), titles of one to six words, stated ranges and bare
+years. Milestones are combinations of everyday nouns with invented place names, so that many share words such as "first", "origin of" or a
+common noun.
 """
 
 from __future__ import annotations
@@ -15,41 +16,66 @@ import numpy as np
 from chronos_acc.merge.entries import Entries
 
 NOUNS = (
-    "glass", "plough", "wheel", "bridge", "harbour", "lighthouse", "canal", "aqueduct", "loom", "needle", "kiln", "furnace", "anvil", "hammer", "saw", "lathe",
-    "pump", "turbine", "boiler", "piston", "engine", "motor", "battery", "lamp", "lens", "telescope", "microscope", "mirror", "prism", "clock", "calendar",
-    "compass", "sextant", "map", "globe", "alphabet", "ink", "paper", "press", "library", "school", "hospital", "vaccine", "antiseptic", "scalpel", "thermometer",
-    "barometer", "balance", "coin", "bank", "market", "insurance", "parliament", "census", "granary", "irrigation", "barley", "rice", "maize", "potato", "olive",
-    "vine", "cattle", "sheep", "horse", "camel", "dog", "bee", "silk", "cotton", "wool", "linen", "dye", "leather", "rope", "sail", "rudder", "anchor", "keel",
-    "submarine", "balloon", "glider", "airship", "helicopter", "parachute", "rocket", "satellite", "probe", "antenna", "radar", "telegraph", "telephone", "radio",
-    "television", "camera", "film", "transistor", "laser", "computer", "network", "robot", "algorithm", "database", "compiler", "concrete", "brick", "steel",
-    "bronze", "iron", "copper", "tin", "aluminium", "plastic", "rubber", "nylon", "fertiliser", "pesticide", "refrigerator", "cannery", "bicycle", "tractor",
-    "tramway", "railway", "tunnel", "elevator", "skyscraper", "dam", "reactor", "windmill", "watermill", "flute", "drum", "organ", "violin", "theatre", "novel",
+    "glass", "plough", "wheel", "bridge", "harbour", "lighthouse", "canal", "aqueduct", "loom", "needle", "kiln", "furnace", "anvil",
+    "hammer", "saw", "lathe",
+    "pump", "turbine", "boiler", "piston", "engine", "motor", "battery", "lamp", "lens", "telescope", "microscope", "mirror", "prism",
+    "clock", "calendar",
+    "compass", "sextant", "map", "globe", "alphabet", "ink", "paper", "press", "library", "school", "hospital", "vaccine", "antiseptic",
+    "scalpel", "thermometer",
+    "barometer", "balance", "coin", "bank", "market", "insurance", "parliament", "census", "granary", "irrigation", "barley", "rice",
+    "maize", "potato", "olive",
+    "vine", "cattle", "sheep", "horse", "camel", "dog", "bee", "silk", "cotton", "wool", "linen", "dye", "leather", "rope", "sail",
+    "rudder", "anchor", "keel",
+    "submarine", "balloon", "glider", "airship", "helicopter", "parachute", "rocket", "satellite", "probe", "antenna", "radar",
+    "telegraph", "telephone", "radio",
+    "television", "camera", "film", "transistor", "laser", "computer", "network", "robot", "algorithm", "database", "compiler", "concrete",
+    "brick", "steel",
+    "bronze", "iron", "copper", "tin", "aluminium", "plastic", "rubber", "nylon", "fertiliser", "pesticide", "refrigerator", "cannery",
+    "bicycle", "tractor",
+    "tramway", "railway", "tunnel", "elevator", "skyscraper", "dam", "reactor", "windmill", "watermill", "flute", "drum", "organ",
+    "violin", "theatre", "novel",
 )  # fmt: skip
 LIFE = (
-    "algae", "sponges", "corals", "worms", "molluscs", "trilobites", "crabs", "insects", "spiders", "fishes", "sharks", "amphibians", "reptiles", "turtles",
-    "crocodiles", "birds", "mammals", "whales", "bats", "primates", "mosses", "ferns", "conifers", "grasses", "flowers", "fungi", "lichens", "forests",
-    "eukaryotes", "bacteria", "photosynthesis", "respiration", "multicellularity", "skeletons", "jaws", "limbs", "eggs", "feathers", "wings", "placenta",
-    "continents", "oceans", "atmosphere", "glaciation", "supercontinent", "mantle", "magnetic field", "mass extinction", "meteorite impact", "volcanism",
+    "algae", "sponges", "corals", "worms", "molluscs", "trilobites", "crabs", "insects", "spiders", "fishes", "sharks", "amphibians",
+    "reptiles", "turtles",
+    "crocodiles", "birds", "mammals", "whales", "bats", "primates", "mosses", "ferns", "conifers", "grasses", "flowers", "fungi",
+    "lichens", "forests",
+    "eukaryotes", "bacteria", "photosynthesis", "respiration", "multicellularity", "skeletons", "jaws", "limbs", "eggs", "feathers",
+    "wings", "placenta",
+    "continents", "oceans", "atmosphere", "glaciation", "supercontinent", "mantle", "magnetic field", "mass extinction",
+    "meteorite impact", "volcanism",
 )  # fmt: skip
 QUALITIES = (
-    "public", "portable", "electric", "magnetic", "steam", "hydraulic", "pneumatic", "optical", "digital", "mechanical", "automatic", "wooden", "stone", "painted",
-    "printed", "woven", "cast", "forged", "double", "floating", "underground", "coastal", "royal", "municipal", "private", "commercial", "industrial", "domestic",
-    "wild", "giant", "miniature", "synthetic", "artificial", "natural", "liquid", "solid", "rotary", "vertical", "horizontal", "suspended", "armoured", "early",
+    "public", "portable", "electric", "magnetic", "steam", "hydraulic", "pneumatic", "optical", "digital", "mechanical", "automatic",
+    "wooden", "stone", "painted",
+    "printed", "woven", "cast", "forged", "double", "floating", "underground", "coastal", "royal", "municipal", "private", "commercial",
+    "industrial", "domestic",
+    "wild", "giant", "miniature", "synthetic", "artificial", "natural", "liquid", "solid", "rotary", "vertical", "horizontal", "suspended",
+    "armoured", "early",
     "marine", "land", "freshwater", "jawless", "armoured", "flying", "burrowing", "colonial", "toothed", "feathered", "tropical", "polar",
 )  # fmt: skip
 TEMPLATES = (
-    "Invention of the {x}", "{x} invented", "First {x}", "Earliest {x}", "Origin of the {x}", "The first {x}", "{x}", "Introduction of {x}", "{x} introduced",
+    "Invention of the {x}", "{x} invented", "First {x}", "Earliest {x}", "Origin of the {x}", "The first {x}", "{x}",
+    "Introduction of {x}", "{x} introduced",
     "Beginning of {x}", "Development of the {x}", "Appearance of {x}", "{x} appears", "Emergence of {x}",
 )  # fmt: skip
 SYNONYMS = {
-    "engine": "motor", "telegraph": "telegraphy", "railway": "railroad", "lamp": "light", "tractor": "farm machine", "plough": "ard", "cattle": "cows", "film": "movie",
-    "aluminium": "light metal", "hospital": "infirmary", "bank": "lender", "theatre": "playhouse", "insects": "hexapods", "fishes": "fish", "sharks": "elasmobranchs",
-    "birds": "avians", "mammals": "mammalia", "eukaryotes": "nucleated cells", "fungi": "mushrooms", "forests": "woodland", "volcanism": "eruptions", "glaciation": "ice age",
-    "oceans": "seas", "atmosphere": "air", "electric": "electrical", "automatic": "self-acting", "underground": "subterranean", "giant": "huge", "miniature": "small",
-    "synthetic": "man-made", "wooden": "timber", "bicycle": "velocipede", "clock": "timepiece", "harbour": "port", "bridge": "span", "coin": "money", "dam": "barrage",
-    "computer": "calculating machine", "camera": "photographic apparatus", "vaccine": "inoculation", "furnace": "smelter", "boat": "vessel", "novel": "prose fiction",
-    "artificial": "manufactured", "royal": "crown", "public": "open", "marine": "sea", "flying": "aerial", "horse": "equine", "rocket": "missile", "elevator": "lift",
-    "refrigerator": "cooling cabinet", "skyscraper": "high-rise", "map": "chart", "alphabet": "letters", "market": "fair", "school": "academy", "dye": "pigment",
+    "engine": "motor", "telegraph": "telegraphy", "railway": "railroad", "lamp": "light", "tractor": "farm machine", "plough": "ard",
+    "cattle": "cows", "film": "movie",
+    "aluminium": "light metal", "hospital": "infirmary", "bank": "lender", "theatre": "playhouse", "insects": "hexapods", "fishes": "fish",
+    "sharks": "elasmobranchs",
+    "birds": "avians", "mammals": "mammalia", "eukaryotes": "nucleated cells", "fungi": "mushrooms", "forests": "woodland", "volcanism":
+    "eruptions", "glaciation": "ice age",
+    "oceans": "seas", "atmosphere": "air", "electric": "electrical", "automatic": "self-acting", "underground": "subterranean", "giant":
+    "huge", "miniature": "small",
+    "synthetic": "man-made", "wooden": "timber", "bicycle": "velocipede", "clock": "timepiece", "harbour": "port", "bridge": "span",
+    "coin": "money", "dam": "barrage",
+    "computer": "calculating machine", "camera": "photographic apparatus", "vaccine": "inoculation", "furnace": "smelter", "boat":
+    "vessel", "novel": "prose fiction",
+    "artificial": "manufactured", "royal": "crown", "public": "open", "marine": "sea", "flying": "aerial", "horse": "equine", "rocket":
+    "missile", "elevator": "lift",
+    "refrigerator": "cooling cabinet", "skyscraper": "high-rise", "map": "chart", "alphabet": "letters", "market": "fair", "school":
+    "academy", "dye": "pigment",
 }  # fmt: skip
 TYPING = "abcdefghijklmnopqrstuvwxyz"
 
@@ -84,7 +110,8 @@ def precision_recall(found: set[tuple[int, int]], true: set[tuple[int, int]]) ->
 
 def place_name(rng: np.random.Generator) -> str:
     """An invented name of two or three syllables."""
-    syllable = [rng.choice(list("bdfgklmnprstvz")) + rng.choice(list("aeiou")) + rng.choice(["", "", "n", "r", "l", "s"]) for _ in range(rng.integers(2, 4))]
+    syllable = [rng.choice(list("bdfgklmnprstvz")) + rng.choice(list("aeiou")) + rng.choice(["", "", "n", "r", "l", "s"]) for _ in
+    range(rng.integers(2, 4))]
     return "".join(syllable).capitalize()
 
 
@@ -215,7 +242,8 @@ def gold(
     off: float = 1.0,
     present: float = 2025.0,
 ) -> Gold:
-    """A gold set: ``share`` of the milestones in each list (one figure, or one a list), dates off by ``off`` times a few years or about 1 % of age."""
+    """A gold set: ``share`` of the milestones in each list (one figure, or one a list), dates off by ``off`` times a few years or about 1
+    % of age."""
     rng = np.random.default_rng([seed, 4711 + int(synonyms)])
     years, deep = dates(milestones, rng, deep_share, present)
     things = cores(milestones, rng, deep)
@@ -230,9 +258,9 @@ def gold(
     source, title, earliest, best, latest, normal, truth = zip(*rows, strict=True)
     k = len(rows)
     entries = Entries(
-        id=np.arange(1, k + 1, dtype=np.int64), source=np.array(source, dtype=np.int64), sources=tuple(f"list {s + 1}" for s in range(len(shares))),
-        title=tuple(title), earliest=np.array(earliest), best=np.array(best), latest=np.array(latest), normal=np.array(normal, dtype=bool),
-        category=(None,) * k, present=present,
+        id=np.arange(1, k + 1, dtype=np.int64), source=np.array(source, dtype=np.int64), sources=tuple(f"list {s + 1}" for s in
+        range(len(shares))), title=tuple(title), earliest=np.array(earliest), best=np.array(best), latest=np.array(latest),
+        normal=np.array(normal, dtype=bool), category=(None,) * k, present=present,
     )  # fmt: skip
     return Gold(entries, np.array(truth, dtype=np.int64))
 

@@ -14,7 +14,8 @@ from chronos_acc.intervals import interval_series, interval_sets, intervals_of, 
 from chronos_acc.record import Record
 
 COLUMNS = [
-    "milestone", "title", "year", "age", "interval", "interval_low", "interval_median", "interval_high", "swap_chance", "next_milestone", "open", "support",
+    "milestone", "title", "year", "age", "interval", "interval_low", "interval_median", "interval_high", "swap_chance", "next_milestone",
+    "open", "support",
 ]  # fmt: skip
 
 
@@ -120,7 +121,8 @@ def test_change_of_unit_and_shift_of_origin() -> None:
 
 def test_sets_by_list_support_and_category() -> None:
     mentions = np.array([[1, 0], [1, 1], [0, 1], [1, 1]], dtype=bool)
-    record = Record.from_dates([1.0, 2.0, 4.0, 8.0], present=10.0, mentions=mentions, lists=["north", "south"], category=["a", "b", "a", None])
+    record = Record.from_dates([1.0, 2.0, 4.0, 8.0], present=10.0, mentions=mentions, lists=["north", "south"], category=["a", "b", "a",
+    None])
     by_list = interval_sets(record, "list", draws=5)
     assert {k: v.year.tolist() for k, v in by_list.items()} == {"north": [1.0, 2.0, 8.0], "south": [2.0, 4.0, 8.0]}
     assert {k: len(v) for k, v in interval_sets(record, "support", draws=5).items()} == {"1": 4, "2": 2}

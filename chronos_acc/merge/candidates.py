@@ -24,8 +24,9 @@ BLOCK = 256
 class Candidates:
     """Pairs close in time whose titles have something in common, and the counts of all that are close in time.
 
-    a, b (q,) positions, a < b, similarity (q,) of their titles, met (q,) whether they share a distinctive word; within, within_met (r,) the same for pairs of
-    one list that are as close in time (they are different milestones, so they show how alike neighbours are by chance); near (k, lists) how many entries of each list are close to each entry.
+    a, b (q,) positions, a < b, similarity (q,) of their titles, met (q,) whether they share a distinctive word; within, within_met (r,)
+    the same for pairs of one list that are as close in time (they are different milestones, so they show how alike neighbours are by
+    chance); near (k, lists) how many entries of each list are close to each entry.
     """
 
     a: Ints
@@ -85,9 +86,14 @@ def find(entries: Entries, titles: Titles, tell: Tell = silent) -> Candidates:
         near[:, s] = np.searchsorted(np.sort(low[mine]), high, side="right") - np.searchsorted(np.sort(high[mine]), low, side="left")
     none, empty, neither = np.zeros(0, dtype=np.int64), np.zeros(0), np.zeros(0, dtype=bool)
     return Candidates(
-        np.concatenate([none, *left]), np.concatenate([none, *right]), np.concatenate([empty, *similarity]), np.concatenate([neither, *met]),
-        np.concatenate([empty, *within]), np.concatenate([neither, *within_met]), near,
-    )  # fmt: skip
+        np.concatenate([none, *left]),
+        np.concatenate([none, *right]),
+        np.concatenate([empty, *similarity]),
+        np.concatenate([neither, *met]),
+        np.concatenate([empty, *within]),
+        np.concatenate([neither, *within_met]),
+        near,
+    )
 
 
 def time_order(entries: Entries) -> Ints:

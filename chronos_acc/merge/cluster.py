@@ -37,7 +37,10 @@ class Clusters:
         return self.root(i) == self.root(j)
 
     def join(self, i: int, j: int, settled: bool = False) -> bool:
-        """Join the clusters of i and j; False where that is not allowed. ``settled``: a person said so, and one list may then give two entries."""
+        """Join the clusters of i and j; False where that is not allowed.
+
+        ``settled``: a person said so, and one list may then give two entries.
+        """
         i, j = self.root(i), self.root(j)
         if i == j:
             return True
@@ -59,9 +62,15 @@ class Clusters:
         return np.array([self.root(i) for i in range(len(self._root))], dtype=np.int64)
 
 
-def build(source: Ints, a: Ints, b: Ints, score: Floats, accept: float, same: Sequence[tuple[int, int]], different: Sequence[tuple[int, int]]) -> tuple[
-    Clusters, list[tuple[int, int]]
-]:
+def build(
+    source: Ints,
+    a: Ints,
+    b: Ints,
+    score: Floats,
+    accept: float,
+    same: Sequence[tuple[int, int]],
+    different: Sequence[tuple[int, int]],
+) -> tuple[Clusters, list[tuple[int, int]]]:
     """Clusters from pairs (positions) and decisions, and the decisions "same" that contradict others and were left out."""
     clusters = Clusters(source)
     for i, j in different:

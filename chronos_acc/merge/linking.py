@@ -21,11 +21,11 @@ LN2 = float(np.log(2.0))
 def link(entries: Entries, decisions: Sequence[Decision] = (), options: LinkOptions = LinkOptions(), *, tell: Tell = silent) -> Linked:
     """Which entries name one milestone.
 
-    Pairs of different lists whose widened datings overlap are scored by title, date and (where lists share a vocabulary) category; the best pairs join
-    first, one entry of a list in a milestone, never against a decision. In ``parts``: ``title`` similarity 0 to 1, ``gap`` years between the best
-    dates, and in bits ``title_evidence``, ``date_evidence``, ``category_evidence``, ``prior`` and ``rivals`` (what rivals take away), so that without
-    rivals the log odds are the sum of the first four. A list alone, or none, is no error: every entry is then its own milestone.
-    Raises WrongUse for thresholds out of order and for decisions about entries that are not there.
+    Pairs of different lists whose widened datings overlap are scored by title, date and (where lists share a vocabulary) category; the
+    best pairs join first, one entry of a list in a milestone, never against a decision. In ``parts``: ``title`` similarity 0 to 1, ``gap``
+    years between the best dates, and in bits ``title_evidence``, ``date_evidence``, ``category_evidence``, ``prior`` and ``rivals`` (what
+    rivals take away), so that without rivals the log odds are the sum of the first four. A list alone, or none, is no error: every entry
+    is then its own milestone. Raises WrongUse for thresholds out of order and for decisions about entries that are not there.
     """
     if not 0 <= options.review <= options.accept <= 1:
         raise WrongUse(f"thresholds must satisfy 0 <= review <= accept <= 1; given review {options.review:g}, accept {options.accept:g}")
@@ -48,7 +48,8 @@ def link(entries: Entries, decisions: Sequence[Decision] = (), options: LinkOpti
     np.minimum.at(smallest, label, ranked.id)
     notes = list(model.notes) if len(np.unique(entries.source)) > 1 else []
     for i, j in contradicted:
-        notes.append(f"{ranked.title[i]!r} and {ranked.title[j]!r} were decided to be the same, which contradicts other decisions: left apart")
+        pair = f"{ranked.title[i]!r} and {ranked.title[j]!r}"
+        notes.append(f"{pair} were decided to be the same, which contradicts other decisions: left apart")
     left, right = order[a], order[b]
     first, second = np.minimum(left, right), np.maximum(left, right)
     rows = np.lexsort((second, first))
@@ -88,7 +89,14 @@ def _settled(entries: Entries, place: Ints, decisions: Sequence[Decision]) -> tu
 
 
 def _states(
-    entries: Entries, a: Ints, b: Ints, score: Floats, clusters: Clusters, options: LinkOptions, same: list[tuple[int, int]], different: list[tuple[int, int]]
+    entries: Entries,
+    a: Ints,
+    b: Ints,
+    score: Floats,
+    clusters: Clusters,
+    options: LinkOptions,
+    same: list[tuple[int, int]],
+    different: list[tuple[int, int]],
 ) -> tuple[Ints, Ints, np.ndarray[tuple[int], np.dtype[np.str_]]]:
     """The pairs worth showing and the state of each; positions a < b, sorted."""
     label = clusters.labels()
@@ -115,7 +123,8 @@ def _states(
 def _score_pairs(
     entries: Entries, titles: Titles, model: Model, near: Ints, a: Ints, b: Ints, rival_a: Ints, rival_b: Ints, scores: Scores
 ) -> tuple[Floats, dict[str, Floats]]:
-    """Scores and parts of the pairs shown. Candidates keep theirs; others (joined through a third, or by a decision) are scored as if they stood alone."""
+    """Scores and parts of the pairs shown. Candidates keep theirs; others (joined through a third, or by a decision) are scored as if they
+    stood alone."""
     similarity, met = titles.compare(a, b)
     seen = features(entries, titles, a, b, similarity, met, near, model.comparable)
     alone = rate(model, seen, np.arange(len(a)), np.arange(len(a), 2 * len(a)), 2 * len(a) + 1)

@@ -1,10 +1,10 @@
 # SPDX-License-Identifier: Apache-2.0
 """One dating for each milestone from its entries' datings, and how well they agree.
 
-Rules: ``mixture`` (default: each dating a component, so two humps stay two humps), ``inverse_variance``, ``random_effects`` (DerSimonian and Laird 1986,
-Control. Clin. Trials 7:177-188), ``paule_mandel`` (Paule and Mandel 1982, J. Res. NBS 87:377-385), ``preferred`` (one list's dating where it has one, else
-the mixture). Agreement: Cochran's Q with its p, I-squared (Higgins and Thompson 2002, Stat. Med. 21:1539-1558) and the Birge ratio (Birge 1932, Phys. Rev.
-40:207-227).
+Rules: ``mixture`` (default: each dating a component, so two humps stay two humps), ``inverse_variance``, ``random_effects`` (DerSimonian
+and Laird 1986, Control. Clin. Trials 7:177-188), ``paule_mandel`` (Paule and Mandel 1982, J. Res. NBS 87:377-385), ``preferred`` (one
+list's dating where it has one, else the mixture). Agreement: Cochran's Q with its p, I-squared (Higgins and Thompson 2002, Stat. Med.
+21:1539-1558) and the Birge ratio (Birge 1932, Phys. Rev. 40:207-227).
 """
 
 from __future__ import annotations
@@ -60,7 +60,8 @@ class Combined:
 
 
 def combine(values: npt.ArrayLike, variances: npt.ArrayLike, rule: str = "inverse_variance") -> Combined:
-    """Combine n results with known variances by inverse_variance, random_effects or paule_mandel. Raises WrongUse for what is no such input."""
+    """Combine n results with known variances by inverse_variance, random_effects or paule_mandel. Raises WrongUse for what is no such
+    input."""
     y, v = np.asarray(values, dtype=float), np.asarray(variances, dtype=float)
     if y.ndim != 1 or y.shape != v.shape or not len(y) or not np.isfinite(y).all() or not (np.isfinite(v) & (v > 0)).all():
         raise WrongUse("combine needs as many finite values as variances above zero, one at least")
@@ -82,10 +83,11 @@ def combine(values: npt.ArrayLike, variances: npt.ArrayLike, rule: str = "invers
 class Pooled:
     """One row a milestone (m rows, by id) and the flat parts of its dating (p rows, by milestone, then list).
 
-    id (m,) the milestone's smallest entry id; title; earliest, best, latest (m,) decimal years, best the median; unit (m,) the width dated to;
-    sd (m,) of a normal dating, else 0; support (m,) independent lists that name it; entries (m,) how many; q, q_p, i2 (0 to 1), birge (m,), NaN with
-    one entry; disjoint (m,) True where some two datings have no moment in common. Parts: owner (p,) milestone row; source (p,) list; weight (p,) summing to 1;
-    kind (p,) 0 uniform, 1 normal; low, mode, high (p,); member (p,) position in Entries of the entry whose part it is.
+    id (m,) the milestone's smallest entry id; title; earliest, best, latest (m,) decimal years, best the median; unit (m,) the width dated
+    to; sd (m,) of a normal dating, else 0; support (m,) independent lists that name it; entries (m,) how many; q, q_p, i2 (0 to 1), birge
+    (m,), NaN with one entry; disjoint (m,) True where some two datings have no moment in common. Parts: owner (p,) milestone row; source
+    (p,) list; weight (p,) summing to 1; kind (p,) 0 uniform, 1 normal; low, mode, high (p,); member (p,) position in Entries of the entry
+    whose part it is.
     """
 
     id: Ints
@@ -121,7 +123,8 @@ class Pooled:
         import pandas as pd
 
         columns = ("id", "title", "earliest", "best", "latest", "unit", "sd", "support", "entries", "q", "q_p", "i2", "birge", "disjoint")
-        return pd.DataFrame({"milestone" if c == "id" else c: list(getattr(self, c)) if c == "title" else getattr(self, c) for c in columns})
+        values = {"milestone" if c == "id" else c: getattr(self, c) for c in columns}
+        return pd.DataFrame({**values, "title": list(self.title)})
 
 
 def pool(
@@ -129,8 +132,8 @@ def pool(
 ) -> Pooled:
     """Pool the datings of each milestone; ``milestone`` (k,) as in ``Linked``.
 
-    ``prefer`` names a list: its titles name the milestones, and with rule "preferred" its datings date them. ``derives`` maps a list to the list it
-    derives from: such lists count once in support. Raises WrongUse for an unknown rule or list.
+    ``prefer`` names a list: its titles name the milestones, and with rule "preferred" its datings date them. ``derives`` maps a list to
+    the list it derives from: such lists count once in support. Raises WrongUse for an unknown rule or list.
     """
     if rule not in RULES:
         raise WrongUse(f"pooling rule {rule!r} is unknown; use one of {', '.join(RULES)}")
@@ -171,10 +174,10 @@ def pool(
         weight = 1.0 / count[owner]
     best, earliest, latest, unit, sd = summaries(owner, weight, kind, low, mode, high, m)
     return Pooled(
-        id=ids.astype(np.int64), title=_titles(entries, member, first, count, chosen), earliest=earliest, best=best, latest=latest, unit=unit, sd=sd,
-        support=_support(owner, source, list_groups(entries.sources, derives or {}), m), entries=count, q=agreement.q, q_p=agreement.q_p,
-        i2=agreement.i2, birge=agreement.birge, disjoint=disjoint, owner=owner, source=source, weight=weight, kind=kind, low=low, mode=mode, high=high,
-        member=member, rule=rule,
+        id=ids.astype(np.int64), title=_titles(entries, member, first, count, chosen), earliest=earliest, best=best, latest=latest,
+        unit=unit, sd=sd, support=_support(owner, source, list_groups(entries.sources, derives or {}), m), entries=count, q=agreement.q,
+        q_p=agreement.q_p, i2=agreement.i2, birge=agreement.birge, disjoint=disjoint, owner=owner, source=source, weight=weight, kind=kind,
+        low=low, mode=mode, high=high, member=member, rule=rule,
     )  # fmt: skip
 
 
@@ -293,7 +296,14 @@ def summaries(
 
 
 def _quantiles(
-    owner: Ints, weight: Floats, kind: npt.NDArray[np.int8], low: Floats, mode: Floats, high: Floats, m: int, probabilities: tuple[float, ...]
+    owner: Ints,
+    weight: Floats,
+    kind: npt.NDArray[np.int8],
+    low: Floats,
+    mode: Floats,
+    high: Floats,
+    m: int,
+    probabilities: tuple[float, ...],
 ) -> list[Floats]:
     """Quantiles of m mixtures at once, by bisection as in ``record.mixture_points``."""
     wide = high - low

@@ -1,11 +1,11 @@
 # SPDX-License-Identifier: Apache-2.0
 """The probability that two entries name one milestone (Fellegi and Sunter 1969, JASA 64:1183-1210).
 
-Three parts of evidence, each a likelihood ratio "same milestone" against "chance": how alike the titles are, how far apart the dates, and the
-category where two lists share a vocabulary. The chance half of titles is measured: on pairs of different lists too far apart in time to be the same,
-then on neighbours within one list, which are different by being listed twice. The other half comes from EM, the ratio kept monotone (more alike is never
-evidence against). Counts are added to a prior model, written out below, that carries the score where a set is too small to estimate from. The odds of a
-pair stand beside those of its rivals: an entry has at most one partner in a list.
+Three parts of evidence, each a likelihood ratio "same milestone" against "chance": how alike the titles are, how far apart the dates, and
+the category where two lists share a vocabulary. The chance half of titles is measured: on pairs of different lists too far apart in time
+to be the same, then on neighbours within one list, which are different by being listed twice. The other half comes from EM, the ratio kept
+monotone (more alike is never evidence against). Counts are added to a prior model, written out below, that carries the score where a set
+is too small to estimate from. The odds of a pair stand beside those of its rivals: an entry has at most one partner in a list.
 """
 
 from __future__ import annotations
@@ -167,8 +167,9 @@ def fit(entries: Entries, titles: Titles, found: Candidates) -> tuple[Model, Boo
 def rate(model: Model, seen: Features, key_a: Ints, key_b: Ints, keys: int) -> Scores:
     """Probability of each pair: its odds against chance, divided among those that would take the same place in the other list.
 
-    key_a and key_b (q,) number the places: a's partner in b's list, and b's partner in a's list; below ``keys``. An entry has one partner in a list at
-    most, so that a rival with a better partner of its own takes little away: sum-product messages over the pairs (exact where rivals form no circle).
+    key_a and key_b (q,) number the places: a's partner in b's list, and b's partner in a's list; below ``keys``. An entry has one partner
+    in a list at most, so that a rival with a better partner of its own takes little away: sum-product messages over the pairs (exact where
+    rivals form no circle).
     """
     title, date, category, prior = log_odds_parts(model, seen)
     log_odds = np.clip(title + date + category + prior, -STRONGEST, STRONGEST)
@@ -201,15 +202,18 @@ def _title_bin(similarity: Floats) -> Ints:
 
 
 def _strata(titles: Titles, a: Ints, b: Ints) -> Ints:
-    """(q,) third of the titles' weights in which the lighter of two titles lies: "Drum" and "Drum" agree by chance more often than longer titles do."""
+    """(q,) third of the titles' weights in which the lighter of two titles lies: "Drum" and "Drum" agree by chance more often than longer
+    titles do."""
     edges = np.quantile(titles.mass, [1 / 3, 2 / 3]) if len(titles) else np.zeros(2)
     return np.asarray(np.searchsorted(edges, np.minimum(titles.mass[a], titles.mass[b]), side="left"), dtype=np.int64)
 
 
 def _title_ratio(seen: Features, title_bin: Ints, p: Floats, chance: Floats) -> Floats:
-    """(strata + 1, bins) log likelihood ratios of titles: the last row where no distinctive word is shared, the others by stratum where one is.
+    """(strata + 1, bins) log likelihood ratios of titles: the last row where no distinctive word is shared, the others by stratum where
+    one is.
 
-    Of same milestones without a shared distinctive word only the share is estimated, so that a handful of pairs cannot vouch for themselves.
+    Of same milestones without a shared distinctive word only the share is estimated, so that a handful of pairs cannot vouch for
+    themselves.
     """
     bins = chance.shape[1]
     alone, shared = _prior_same()
@@ -255,7 +259,8 @@ def _far_pairs(entries: Entries) -> tuple[Ints, Ints]:
 
 
 def _monotone_log_ratio(same: Floats, chance: Floats) -> Floats:
-    """Log of same/chance made non-decreasing: isotonic regression of the ratio with weights chance (the maximum-likelihood monotone ratio)."""
+    """Log of same/chance made non-decreasing: isotonic regression of the ratio with weights chance (the maximum-likelihood monotone
+    ratio)."""
     from scipy.optimize import isotonic_regression
 
     ratio = isotonic_regression(same / chance, weights=chance).x
@@ -320,7 +325,12 @@ def _shared_vocabulary(entries: Entries) -> Bools:
 def _remarks(far_pairs: int, matched: float) -> tuple[str, ...]:
     notes = []
     if far_pairs < CHANCE_COUNT:
-        notes.append(f"only {far_pairs} pairs are far enough apart in time to measure chance likeness of titles: the prior model carries part of the scores")
+        notes.append(
+            f"only {far_pairs} pairs lie far enough apart in time to show how alike titles are by chance: "
+            "a prior model carries part of the scores"
+        )
     if matched < 2 * SAME_COUNT:
-        notes.append("too few pairs look alike to estimate how titles and dates of one milestone differ: the prior model carries part of the scores")
+        notes.append(
+            "too few pairs look alike to estimate how titles and dates of one milestone differ: a prior model carries part of the scores"
+        )
     return tuple(notes)

@@ -1,10 +1,11 @@
 # SPDX-License-Identifier: Apache-2.0
 """How alike two titles are, word by word.
 
-Each word takes its best counterpart in the other title by the character 2- and 3-grams they share (Dice's coefficient, each gram weighted by its
-rarity among the words, so that endings such as "-ing" say little); spelling, inflection and the order of words do not matter. Words are weighted by
-rarity, counted over spellings alike, so that a misspelt common word stays common. Words with digits (and Roman numerals) agree exactly or not at all.
-Sources: Dice 1945 (Ecology 26:297-302) for the coefficient; Sparck Jones 1972 (J. Documentation 28:11-21) for weighting by rarity.
+Each word takes its best counterpart in the other title by the character 2- and 3-grams they share (Dice's coefficient, each gram weighted
+by its rarity among the words, so that endings such as "-ing" say little); spelling, inflection and the order of words do not matter. Words
+are weighted by rarity, counted over spellings alike, so that a misspelt common word stays common. Words with digits (and Roman numerals)
+agree exactly or not at all. Sources: Dice 1945 (Ecology 26:297-302) for the coefficient; Sparck Jones 1972 (J. Documentation 28:11-21) for
+weighting by rarity.
 """
 
 from __future__ import annotations
@@ -25,17 +26,21 @@ Complexes = npt.NDArray[np.complex128]
 
 DISTINCTIVE = 0.75
 ALIKE = 0.35  # words below this share of grams are no counterparts
-# Share of titles in which a word is expected before anything was counted, and how many titles that expectation is worth: grammatical words, the words
-# of events as such, and all others. It matters in small sets; with many titles the counted shares take over, in any language.
+# Share of titles in which a word is expected before anything was counted, and how many titles that expectation is worth: grammatical
+# words, the words of events as such, and all others. It matters in small sets; with many titles the counted shares take over, in any
+# language.
 FUNCTION_WORDS = frozenset("a an and as at by for from in into is its of on or that the this to was were with".split())
 EVENT_WORDS = frozenset(
-    "first earliest oldest early origin origins beginning beginnings begin begins began start starts invention invented invents discovery discovered "
-    "development developed develops introduction introduced appearance appear appears emergence emerges evolution evolves evolved rise creation created "
+    "first earliest oldest early origin origins beginning beginnings begin begins began start starts invention invented invents "
+    "discovery discovered "
+    "development developed develops introduction introduced appearance appear appears emergence emerges "
+    "evolution evolves evolved rise creation created "
     "foundation founded use used new known modern".split()
 )
 EXPECTED = {"other": (0.002, 10.0), "event": (0.3, 100.0), "function": (0.6, 100.0)}
 ROMAN = {
-    "i": "1", "ii": "2", "iii": "3", "iv": "4", "vi": "6", "vii": "7", "viii": "8", "ix": "9", "xi": "11", "xii": "12", "xiii": "13", "xiv": "14", "xv": "15",
+    "i": "1", "ii": "2", "iii": "3", "iv": "4", "vi": "6", "vii": "7", "viii": "8", "ix": "9", "xi": "11", "xii": "12", "xiii": "13",
+    "xiv": "14", "xv": "15",
     "xvi": "16", "xvii": "17", "xviii": "18", "xix": "19", "xx": "20",
 }  # fmt: skip
 _POSSESSIVE = re.compile(r"['’`]s\b")
@@ -54,7 +59,8 @@ def words_of(title: str) -> tuple[str, ...]:
 
 
 def grams_of(word: str) -> set[str]:
-    """Character 2- and 3-grams of a word, its ends marked; of a word with digits only the whole, so that it agrees exactly or not at all."""
+    """Character 2- and 3-grams of a word, its ends marked; of a word with digits only the whole, so that it agrees exactly or not at
+    all."""
     if any(c.isdigit() for c in word) or len(word) == 1:
         return {f"\x00{word}"}
     marked = f"\x02{word}\x03"
@@ -65,9 +71,10 @@ def grams_of(word: str) -> set[str]:
 class Titles:
     """Titles ready to be compared.
 
-    mass (k,) summed weight of a title's words; own (k, v) sparse, weight of each word in each title, with imaginary part 1 for its distinctive words (at
-    least ``DISTINCTIVE`` of the heaviest); cover (k, v) sparse, how well each word of the vocabulary is met by its best counterpart in each title
-    (0 to 1). The weight of a's words met in b is then one sparse product, own[a] · cover[b], and says too whether a distinctive word is met.
+    mass (k,) summed weight of a title's words; own (k, v) sparse, weight of each word in each title, with imaginary part 1 for its
+    distinctive words (at least ``DISTINCTIVE`` of the heaviest); cover (k, v) sparse, how well each word of the vocabulary is met by its
+    best counterpart in each title (0 to 1). The weight of a's words met in b is then one sparse product, own[a] · cover[b], and says too
+    whether a distinctive word is met.
     """
 
     mass: Floats
@@ -88,7 +95,8 @@ class Titles:
         np.maximum.at(heaviest, rows, weight[columns])
         marks = weight[columns] >= DISTINCTIVE * heaviest[rows]
         own = sparse.csr_array((weight[columns] + 1j * marks, (rows, columns)), shape=shape)
-        return cls(np.bincount(rows, weights=weight[columns], minlength=shape[0]).astype(np.float64), own, _cover(rows, columns, alike, shape))
+        mass = np.bincount(rows, weights=weight[columns], minlength=shape[0]).astype(np.float64)
+        return cls(mass, own, _cover(rows, columns, alike, shape))
 
     def __len__(self) -> int:
         return len(self.mass)
@@ -159,7 +167,8 @@ def _word_similarity(words: list[str]) -> sparse.csr_array:
 
 
 def _rarity(words: list[str], count: Floats, alike: sparse.csr_array, titles: int) -> Floats:
-    """(v,) weight of each word: log of the inverse share of titles that hold it or a spelling alike, shrunk to a prior share in small sets."""
+    """(v,) weight of each word: log of the inverse share of titles that hold it or a spelling alike, shrunk to a prior share in small
+    sets."""
     strong = alike.copy()
     strong.data = np.where(strong.data >= 0.6, strong.data, 0.0)
     seen = np.minimum(np.asarray(strong @ count).ravel(), titles)
@@ -176,11 +185,13 @@ def _rarity(words: list[str], count: Floats, alike: sparse.csr_array, titles: in
 def _cover(rows: Ints, columns: Ints, alike: sparse.csr_array, shape: tuple[int, int]) -> sparse.csr_array:
     """(k, v) best counterpart of every word in every title: the maximum over the title's words of their likeness to it."""
     reach = np.diff(alike.indptr)[columns]
-    starts = np.repeat(alike.indptr[columns] - np.concatenate([[0], np.cumsum(reach)[:-1]]), reach) if len(columns) else np.zeros(0, dtype=np.int64)
+    if not len(columns):
+        return sparse.csr_array(shape)
+    starts = np.repeat(alike.indptr[columns] - np.concatenate([[0], np.cumsum(reach)[:-1]]), reach)
     source = starts + np.arange(int(reach.sum()))
     row, column, value = np.repeat(rows, reach), alike.indices[source], alike.data[source]
     order = np.lexsort((column, row))
     row, column, value = row[order], column[order], value[order]
-    fresh = np.nonzero(np.concatenate([[True], (np.diff(row) != 0) | (np.diff(column) != 0)]))[0] if len(row) else np.zeros(0, dtype=np.int64)
-    best = np.maximum.reduceat(value, fresh) if len(fresh) else value
+    fresh = np.nonzero(np.concatenate([[True], (np.diff(row) != 0) | (np.diff(column) != 0)]))[0]
+    best = np.maximum.reduceat(value, fresh)
     return sparse.csr_array((best, (row[fresh], column[fresh])), shape=shape)

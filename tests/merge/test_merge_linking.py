@@ -21,8 +21,8 @@ def entries_of(rows: Sequence[Row], category: Sequence[str | None] | None = None
     year = np.array([r[2] for r in rows], dtype=float)
     k = len(rows)
     return Entries(
-        np.arange(1, k + 1, dtype=np.int64), np.array([names.index(r[0]) for r in rows], dtype=np.int64), tuple(names), tuple(r[1] for r in rows),
-        year, year + 0.5, year + 1, np.zeros(k, dtype=bool), tuple(category or [None] * k), 2025.0,
+        np.arange(1, k + 1, dtype=np.int64), np.array([names.index(r[0]) for r in rows], dtype=np.int64), tuple(names), tuple(r[1] for r in
+        rows), year, year + 0.5, year + 1, np.zeros(k, dtype=bool), tuple(category or [None] * k), 2025.0,
     )  # fmt: skip
 
 
@@ -30,8 +30,10 @@ def states(linked: Linked) -> dict[tuple[int, int], str]:
     return {(int(a) + 1, int(b) + 1): str(s) for a, b, s in zip(linked.a, linked.b, linked.state, strict=True)}
 
 
-NORTH: list[Row] = [("north", "Origin of glass", 1500), ("north", "Hydraulic furnace", 1520), ("north", "Silk loom of Denar", 1531), ("north", "Canal lock", 1560)]
-SOUTH: list[Row] = [("south", "Glass", 1501), ("south", "Furnace, hydraulic", 1520), ("south", "Slik loom of Denar", 1533), ("south", "Public census", 1558)]
+NORTH: list[Row] = [("north", "Origin of glass", 1500), ("north", "Hydraulic furnace", 1520), ("north", "Silk loom of Denar", 1531),
+("north", "Canal lock", 1560)]
+SOUTH: list[Row] = [("south", "Glass", 1501), ("south", "Furnace, hydraulic", 1520), ("south", "Slik loom of Denar", 1533), ("south",
+"Public census", 1558)]
 
 
 def test_known_pairs_of_two_small_lists() -> None:
@@ -45,7 +47,8 @@ def test_known_pairs_of_two_small_lists() -> None:
 
 @pytest.mark.parametrize(
     "one, other",
-    [("Origin of birds", "Origin of mammals"), ("First printed book", "First printed map"), ("Great flood I", "Great flood II"), ("Probe 11", "Probe 12")],
+    [("Origin of birds", "Origin of mammals"), ("First printed book", "First printed map"), ("Great flood I", "Great flood II"),
+    ("Probe 11", "Probe 12")],
 )
 def test_a_shared_beginning_does_not_link(one: str, other: str) -> None:
     assert link(entries_of([("a", one, 1500), ("b", other, 1501)])).milestone.tolist() == [1, 2]
@@ -66,7 +69,8 @@ def test_one_list_alone_none_and_repeated_titles() -> None:
 
 
 def test_titles_without_words_and_other_scripts() -> None:
-    rows: list[Row] = [("a", "", 1500), ("b", "???", 1500), ("a", "Изобретение паровоза", 1800), ("b", "Паровоз", 1801), ("a", "望遠鏡", 1700), ("b", "顕微鏡", 1700)]
+    rows: list[Row] = [("a", "", 1500), ("b", "???", 1500), ("a", "Изобретение паровоза", 1800), ("b", "Паровоз", 1801), ("a", "望遠鏡",
+    1700), ("b", "顕微鏡", 1700)]
     assert link(entries_of(rows)).milestone.tolist() == [1, 2, 3, 3, 5, 6]
 
 
@@ -122,7 +126,8 @@ def test_category_counts_where_lists_share_a_vocabulary() -> None:
 
 
 @pytest.mark.parametrize(
-    "decision, words", [(Decision(1, 99, "same"), "ids of two entries"), (Decision(1, 2, "maybe"), "'same' or 'different'"), (Decision(1, 1, "same"), "two entries")]
+    "decision, words", [(Decision(1, 99, "same"), "ids of two entries"), (Decision(1, 2, "maybe"), "'same' or 'different'"), (Decision(1,
+    1, "same"), "two entries")]
 )
 def test_impossible_decisions_are_refused(decision: Decision, words: str) -> None:
     with pytest.raises(WrongUse, match=words):
@@ -143,8 +148,8 @@ def test_order_of_rows_ids_and_names_of_lists_do_not_matter() -> None:
     base = partition(link(e).milestone, range(len(e)))
     order = np.random.default_rng(1).permutation(len(e))
     shuffled = replace(
-        e, id=(e.id * 7 + 3)[order], source=3 - e.source[order], sources=("w", "x", "y", "z"), title=tuple(e.title[i] for i in order), earliest=e.earliest[order],
-        best=e.best[order], latest=e.latest[order], normal=e.normal[order],
+        e, id=(e.id * 7 + 3)[order], source=3 - e.source[order], sources=("w", "x", "y", "z"), title=tuple(e.title[i] for i in order),
+        earliest=e.earliest[order], best=e.best[order], latest=e.latest[order], normal=e.normal[order],
     )  # fmt: skip
     assert partition(link(shuffled).milestone, order.tolist()) == base
 
@@ -158,7 +163,8 @@ def test_same_input_same_numbers() -> None:
 def test_every_pair_inside_a_milestone_is_listed_and_the_counts_agree() -> None:
     e = synonym_gold(3).entries
     linked = link(e)
-    inside = {p for p, s in zip(zip(linked.a.tolist(), linked.b.tolist(), strict=True), linked.state, strict=True) if s in ("linked", "implied", "same")}
+    inside = {p for p, s in zip(zip(linked.a.tolist(), linked.b.tolist(), strict=True), linked.state, strict=True) if s in ("linked",
+    "implied", "same")}
     assert inside == pairs_inside(linked.milestone, e.source)
     for m in np.unique(linked.milestone):
         lists = e.source[linked.milestone == m]

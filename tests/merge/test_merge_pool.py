@@ -17,8 +17,9 @@ NINE_VARIANCES = np.array([0.2025, 1.21, 0.09, 0.2025, 0.3844, 0.5625, 0.0676, 0
 # Thirteen trials: diseased and not in the treated group, diseased and not in the control group. Colditz et al. 1994 (JAMA 271:698-702).
 TRIALS = np.array(
     [
-        (4, 119, 11, 128), (6, 300, 29, 274), (3, 228, 11, 209), (62, 13536, 248, 12619), (33, 5036, 47, 5761), (180, 1361, 372, 1079), (8, 2537, 10, 619),
-        (505, 87886, 499, 87892), (29, 7470, 45, 7232), (17, 1699, 65, 1600), (186, 50448, 141, 27197), (5, 2493, 3, 2338), (27, 16886, 29, 17825),
+        (4, 119, 11, 128), (6, 300, 29, 274), (3, 228, 11, 209), (62, 13536, 248, 12619), (33, 5036, 47, 5761), (180, 1361, 372, 1079), (8,
+        2537, 10, 619), (505, 87886, 499, 87892), (29, 7470, 45, 7232), (17, 1699, 65, 1600), (186, 50448, 141, 27197), (5, 2493, 3, 2338),
+        (27, 16886, 29, 17825),
     ],
     dtype=float,
 )  # fmt: skip
@@ -77,7 +78,8 @@ def test_combine_refuses_what_is_no_result(values: list[float], variances: list[
         combine(values, variances)
 
 
-def entries_of(bounds: list[tuple[float, float, float]], source: list[int], normal: list[bool] | None = None, title: list[str] | None = None) -> Entries:
+def entries_of(bounds: list[tuple[float, float, float]], source: list[int], normal: list[bool] | None = None, title: list[str] | None =
+None) -> Entries:
     k = len(bounds)
     low, mode, high = np.array(bounds, dtype=float).reshape(-1, 3).T
     names = tuple(f"list {i}" for i in range(max(source, default=0) + 1))
@@ -107,7 +109,8 @@ def test_mixture_summary_is_that_of_the_record() -> None:
     for j in range(len(found)):
         p = found.owner == j
         best, earliest, latest, unit, sd = summary_of_parts(found.weight[p], found.kind[p], found.low[p], found.mode[p], found.high[p])
-        assert np.allclose([found.best[j], found.earliest[j], found.latest[j], found.unit[j], found.sd[j]], [best, earliest, latest, unit, sd], rtol=0, atol=1e-8)
+        assert np.allclose([found.best[j], found.earliest[j], found.latest[j], found.unit[j], found.sd[j]], [best, earliest, latest, unit,
+        sd], rtol=0, atol=1e-8)
         assert found.weight[p].sum() == pytest.approx(1)
 
 
@@ -135,7 +138,8 @@ def test_other_rules_agree_with_combine_one_milestone_at_a_time(rule: str) -> No
             assert found.best[j] == e.best[group][0]
             continue
         one = combine(e.best[group], np.where(e.normal[group], (width / (2 * 1.959963984540054)) ** 2, width**2 / 12), rule)
-        assert (found.best[j], found.earliest[j], found.latest[j]) == (pytest.approx(one.mean), pytest.approx(one.low), pytest.approx(one.high))
+        assert (found.best[j], found.earliest[j], found.latest[j]) == (pytest.approx(one.mean), pytest.approx(one.low),
+        pytest.approx(one.high))
         assert found.sd[j] == pytest.approx(one.std_error) and found.q[j] == pytest.approx(one.q)
         assert set(found.kind[found.owner == j]) == {NORMAL}
 
@@ -160,8 +164,8 @@ def test_order_of_rows_does_not_matter() -> None:
     e, milestone = random_entries(3)
     order = np.random.default_rng(4).permutation(len(e))
     moved = Entries(
-        e.id[order], e.source[order], e.sources, tuple(e.title[i] for i in order), e.earliest[order], e.best[order], e.latest[order], e.normal[order],
-        e.category, e.present,
+        e.id[order], e.source[order], e.sources, tuple(e.title[i] for i in order), e.earliest[order], e.best[order], e.latest[order],
+        e.normal[order], e.category, e.present,
     )  # fmt: skip
     one, two = pool(e, milestone), pool(moved, milestone[order])
     assert np.array_equal(one.best, two.best) and np.array_equal(one.weight, two.weight) and np.array_equal(one.member, order[two.member])

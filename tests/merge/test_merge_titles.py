@@ -9,7 +9,8 @@ from hypothesis import strategies as st
 
 from chronos_acc.merge.titles import Titles, grams_of, words_of
 
-FILLER = ["First lighthouse", "Silk loom", "Origin of maize", "Copper smelting", "Invention of the kiln", "Earliest canal", "Theatre of Denar", "Salt trade"]
+FILLER = ["First lighthouse", "Silk loom", "Origin of maize", "Copper smelting", "Invention of the kiln", "Earliest canal",
+"Theatre of Denar", "Salt trade"]
 
 
 def likeness(a: str, b: str, among: list[str] = FILLER) -> float:
@@ -35,7 +36,8 @@ def test_spelling_order_and_inflection_matter_little() -> None:
 
 def test_a_shared_beginning_is_not_likeness() -> None:
     assert likeness("Origin of writing", "Origin of farming") < 0.35
-    similarity, met = Titles.of(["Origin of writing", "Origin of farming", "writing originates"]).compare(np.array([0, 0]), np.array([1, 2]))
+    similarity, met = Titles.of(["Origin of writing", "Origin of farming", "writing originates"]).compare(np.array([0, 0]), np.array([1,
+    2]))
     assert similarity[0] < 0.35 < similarity[1] and met.tolist() == [False, True]
 
 
@@ -46,7 +48,8 @@ def test_digits_agree_exactly_or_not_at_all() -> None:
 
 
 def test_a_misspelt_common_word_stays_common() -> None:
-    titles = Titles.of([*(f"Forging of {x}" for x in ("amber", "bells", "coins", "doors", "edges", "flints")), "Fogring of gates", "Rare gates"])
+    titles = Titles.of([*(f"Forging of {x}" for x in ("amber", "bells", "coins", "doors", "edges", "flints")), "Fogring of gates",
+    "Rare gates"])
     weights = titles.own[6].toarray().real.ravel()
     assert sorted(weights[weights > 0])[0] < 0.8 * sorted(weights[weights > 0])[1]
 
@@ -87,6 +90,7 @@ def test_against_a_plain_second_implementation() -> None:
     for a in range(len(texts)):
         for b in range(len(texts)):
             mine, other = words_of(texts[a]), words_of(texts[b])
-            met = sum(weight[w] * max(alike(w, v) for v in other) for w in mine) + sum(weight[v] * max(alike(w, v) for w in mine) for v in other)
+            met = sum(weight[w] * max(alike(w, v) for v in other) for w in mine) + sum(weight[v] * max(alike(w, v) for w in mine) for v in
+            other)
             expected = met / (sum(weight[w] for w in mine) + sum(weight[v] for v in other))
             assert abs(float(titles.compare(np.array([a]), np.array([b]))[0][0]) - expected) < 1e-6

@@ -1,5 +1,6 @@
 # SPDX-License-Identifier: Apache-2.0
-"""Precision and recall of linking over many gold sets, default settings, before any review: ``python -m tests.simulate.linking [SEEDS]``."""
+"""Precision and recall of linking over many gold sets, default settings, before any review: ``python -m tests.simulate.linking
+[SEEDS]``."""
 
 from __future__ import annotations
 
@@ -34,7 +35,8 @@ def main(seeds: int = 20) -> None:
                 rows.append(precision_recall(pairs_inside(link(g.entries).milestone, g.entries.source), g.pairs()))
             p, r = np.array(rows).T
             kind = "synonyms, dropped words" if synonyms else "misspelt, reordered, reworded"
-            print(f"| {kind} | {name} | {p.mean():.3f} | {p.min():.3f} | {r.mean():.3f} | {r.min():.3f} | {(time.perf_counter() - began) / seeds:.2f} |", flush=True)
+            seconds = (time.perf_counter() - began) / seeds
+            print(f"| {kind} | {name} | {p.mean():.3f} | {p.min():.3f} | {r.mean():.3f} | {r.min():.3f} | {seconds:.2f} |", flush=True)
 
 
 if __name__ == "__main__":
