@@ -13,7 +13,7 @@ from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, BinaryIO
 
-from ..errors import ListRefused, Refused
+from ..errors import ListRefused, Refused, SheetRefused
 from ..progress import Tell, silent
 from .dates import date_rows
 from .enter import Change, enter, former
@@ -90,7 +90,7 @@ def load(
             share = _Share(tell, job.sheet.name, place, len(jobs))
             try:
                 done.append(_load(ledger, job, strict=strict, stdin=stdin, encoding=encoding, tell=share))
-            except ListRefused as refused:
+            except (ListRefused, SheetRefused) as refused:
                 if len(jobs) == 1:
                     raise
                 refusals.append(refused)

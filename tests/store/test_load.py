@@ -123,6 +123,14 @@ def test_one_bad_list_among_several_does_not_stop_the_others(db: Path, tmp_path:
         assert ledger.about("linked") == "yes"
 
 
+def test_a_sheet_that_names_a_missing_column_does_not_stop_the_others(db: Path, tmp_path: Path) -> None:
+    good, bad = write(tmp_path / "good.csv", LIST), write(tmp_path / "bad.csv", "title,date\nx,1\n")
+    write(tmp_path / "bad.toml", '[columns]\ndate = "When"\n')
+    with pytest.raises(ListRefused, match=r"1 of 2 lists were loaded; refused: .*date is 'When'"):
+        load(db, [bad, good], link=False)
+    assert len(held(db)) == 4
+
+
 def test_linking_follows_unless_it_is_put_off(db: Path, tmp_path: Path) -> None:
     a = write(tmp_path / "a.csv", "title,date\nFirst kiln at Ommer,1850\nOld mill,1700\n")
     b = write(tmp_path / "b.csv", "title,date\nThe first kiln at Ommer,1850\nLoom,1600\n")
