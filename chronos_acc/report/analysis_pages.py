@@ -144,7 +144,7 @@ def bias_tables(bias: Any, full: bool) -> tuple[Table, ...]:
         if name == "summary":
             columns: tuple[Column, ...] | None = (
                 C("check", "check"), C("question", "question", "text", 4), C("published", "as published", "number", 2), C("estimate", "under the check", "number", 1),
-                C("stands", "stands"), C("report", "what to report", "text", 0),
+                C("stands", "stands"), C("finding", "what was found"), C("report", "what to report", "text", 6),
             )  # fmt: skip
         else:
             columns = (*ROW, *(C(str(k), str(k).replace("_", " "), _kind(frame, str(k)), 7) for k in frame.columns if str(k) not in {c.key for c in ROW} | {"check"}))
