@@ -9,7 +9,7 @@ import numpy as np
 
 from ..errors import WrongUse
 from ..progress import Tell, silent
-from .candidates import find, slack, time_order
+from .candidates import find, time_order
 from .cluster import Clusters, build
 from .entries import Decision, Entries, Floats, Ints, Linked, LinkOptions
 from .score import Model, Scores, features, fit, rate

@@ -55,7 +55,7 @@ def test_a_shared_beginning_does_not_link(one: str, other: str) -> None:
 
 
 def test_many_shared_beginnings_do_not_link() -> None:
-    things = "glass paper silk ink wool tin iron rope maps coins".split()
+    things = ["glass", "paper", "silk", "ink", "wool", "tin", "iron", "rope", "maps", "coins"]
     rows: list[Row] = [("a" if i < 5 else "b", f"Origin of {x}", 1500.0 + i % 5) for i, x in enumerate(things)]
     assert len(set(link(entries_of(rows)).milestone)) == 10
 
