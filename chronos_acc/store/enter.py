@@ -98,7 +98,8 @@ def enter(
             frame["reason"] = pd.Series([r[2] for r in rejects], dtype=object)
             frame["source"] = source
             ledger.insert("ledger.reject", frame)
-        ledger.entries_changed()
+        if loaded or gone:  # a list that brings nothing but refused rows leaves the milestones as they are
+            ledger.entries_changed()
     ledger.run("DROP TABLE IF EXISTS list_nth")
     return Change(added, changed, gone, duplicates, tuple(said))
 

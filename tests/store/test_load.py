@@ -131,6 +131,15 @@ def test_a_sheet_that_names_a_missing_column_does_not_stop_the_others(db: Path, 
     assert len(held(db)) == 4
 
 
+def test_a_list_of_refused_rows_leaves_the_milestones_alone(db: Path, tmp_path: Path) -> None:
+    load(db, [write(tmp_path / "good.csv", LIST)])
+    with pytest.raises(ListRefused):
+        load(db, [write(tmp_path / "bad.csv", "title,date\nx,who knows\n")])
+    with open_for_reading(db) as ledger:
+        assert ledger.about("linked") == "yes" and ledger.value("SELECT count(*) FROM ledger.milestone") == 4
+        assert ledger.value("SELECT count(*) FROM rejects") == 2
+
+
 def test_linking_follows_unless_it_is_put_off(db: Path, tmp_path: Path) -> None:
     a = write(tmp_path / "a.csv", "title,date\nFirst kiln at Ommer,1850\nOld mill,1700\n")
     b = write(tmp_path / "b.csv", "title,date\nThe first kiln at Ommer,1850\nLoom,1600\n")
