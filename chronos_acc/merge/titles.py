@@ -29,9 +29,17 @@ ALIKE = 0.35  # words below this share of grams are no counterparts
 # Share of titles in which a word is expected before anything was counted, and how many titles that expectation is worth: grammatical
 # words, the words of events as such, and all others. It matters in small sets; with many titles the counted shares take over, in any
 # language.
-FUNCTION_WORDS = frozenset(["a", "an", "and", "as", "at", "by", "for", "from", "in", "into", "is", "its", "of", "on", "or", "that", "the", "this", "to", "was", "were", "with"])
+FUNCTION_WORDS = frozenset([
+    "a", "an", "and", "as", "at", "by", "for", "from", "in", "into", "is", "its", "of", "on", "or", "that", "the", "this", "to",
+    "was", "were", "with",
+])  # fmt: skip
 EVENT_WORDS = frozenset(
-    ["first", "earliest", "oldest", "early", "origin", "origins", "beginning", "beginnings", "begin", "begins", "began", "start", "starts", "invention", "invented", "invents", "discovery", "discovered", "development", "developed", "develops", "introduction", "introduced", "appearance", "appear", "appears", "emergence", "emerges", "evolution", "evolves", "evolved", "rise", "creation", "created", "foundation", "founded", "use", "used", "new", "known", "modern"]
+    [
+    "first", "earliest", "oldest", "early", "origin", "origins", "beginning", "beginnings", "begin", "begins", "began", "start",
+    "starts", "invention", "invented", "invents", "discovery", "discovered", "development", "developed", "develops",
+    "introduction", "introduced", "appearance", "appear", "appears", "emergence", "emerges", "evolution", "evolves", "evolved",
+    "rise", "creation", "created", "foundation", "founded", "use", "used", "new", "known", "modern",
+]  # fmt: skip
 )
 EXPECTED = {"other": (0.002, 10.0), "event": (0.3, 100.0), "function": (0.6, 100.0)}
 ROMAN = {
