@@ -88,6 +88,8 @@ def run_grid(
             *notes,
             f"interrupted: {len(lines)} of {len(every)} combinations were run; shares, variance and joint test are of these alone",
         )
+    if not any(c.own for c in every):
+        notes = (*notes, "your own combination is not among those that the record allows; no place is given for it")
     order = sorted(range(len(lines)), key=lambda i: lines[i].number)
     z_joint = np.column_stack([columns[i] for i in order]) if redrawn is not None and lines else None
     return Grid(
