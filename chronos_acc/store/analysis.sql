@@ -1,5 +1,6 @@
 -- SPDX-License-Identifier: Apache-2.0
 -- The analyst's questions, one line each. Like the views they follow the variable present.
+-- Each window has a name of its own: DuckDB 1.4 takes two of one name in a script for one defined twice.
 
 CREATE VIEW epochs AS
 WITH aged AS (
@@ -99,31 +100,31 @@ COMMENT ON MACRO present_of IS 'The present of one list: variable present, else 
 
 CREATE MACRO intervals_of(list_name) AS TABLE
 SELECT
-    entry, title, best AS year, present_of(list_name) - best AS age, lead(best, 1, present_of(list_name)) OVER w - best AS interval,
-    lead(entry) OVER w AS next_entry, lead(entry) OVER w IS NULL AS open
+    entry, title, best AS year, present_of(list_name) - best AS age, lead(best, 1, present_of(list_name)) OVER by_list - best AS interval,
+    lead(entry) OVER by_list AS next_entry, lead(entry) OVER by_list IS NULL AS open
 FROM entries
 WHERE source = list_name AND best <= present_of(list_name) AND (getvariable('start') IS NULL OR best >= getvariable('start')::DOUBLE)
-WINDOW w AS (ORDER BY best, entry)
+WINDOW by_list AS (ORDER BY best, entry)
 ORDER BY year, entry;
 COMMENT ON MACRO TABLE intervals_of IS 'Interval series of one list on its own dates: FROM intervals_of(''name'')';
 
 CREATE MACRO intervals_at_support(least_support) AS TABLE
 SELECT
-    milestone, title, best AS year, present_year() - best AS age, lead(best, 1, present_year()) OVER w - best AS interval,
-    lead(milestone) OVER w AS next_milestone, lead(milestone) OVER w IS NULL AS open, support
+    milestone, title, best AS year, present_year() - best AS age, lead(best, 1, present_year()) OVER by_support - best AS interval,
+    lead(milestone) OVER by_support AS next_milestone, lead(milestone) OVER by_support IS NULL AS open, support
 FROM ledger.milestone
 WHERE support >= least_support AND best <= present_year() AND (getvariable('start') IS NULL OR best >= getvariable('start')::DOUBLE)
-WINDOW w AS (ORDER BY best, milestone)
+WINDOW by_support AS (ORDER BY best, milestone)
 ORDER BY year, milestone;
 COMMENT ON MACRO TABLE intervals_at_support IS 'Interval series of milestones that so many independent lists name: FROM intervals_at_support(2)';
 
 CREATE MACRO intervals_in(wanted) AS TABLE
 SELECT
-    milestone, title, best AS year, present_year() - best AS age, lead(best, 1, present_year()) OVER w - best AS interval,
-    lead(milestone) OVER w AS next_milestone, lead(milestone) OVER w IS NULL AS open, support
+    milestone, title, best AS year, present_year() - best AS age, lead(best, 1, present_year()) OVER by_category - best AS interval,
+    lead(milestone) OVER by_category AS next_milestone, lead(milestone) OVER by_category IS NULL AS open, support
 FROM ledger.milestone
 WHERE category = wanted AND best <= present_year() AND (getvariable('start') IS NULL OR best >= getvariable('start')::DOUBLE)
-WINDOW w AS (ORDER BY best, milestone)
+WINDOW by_category AS (ORDER BY best, milestone)
 ORDER BY year, milestone;
 COMMENT ON MACRO TABLE intervals_in IS 'Interval series of one category: FROM intervals_in(''name'')';
 

@@ -21,6 +21,8 @@ if TYPE_CHECKING:
     import pandas as pd
 
 Value = str | int | float | bool | None
+_PRAGMA = re.compile(r"(\s|--[^\n]*(\n|$)|/\*.*?\*/)*pragma\b", re.IGNORECASE | re.DOTALL)
+_SWITCH = re.compile(r"\b((enable|disable)_(logging|profiling)|truncate_duckdb_logs|write_log|(force_)?checkpoint)\s*\(", re.IGNORECASE)
 VIEW_VARIABLES = ("present", "start", "min_support", "category")  # what the views themselves follow
 
 
@@ -157,6 +159,8 @@ def _guarded(ledger: Ledger, text: str) -> pd.DataFrame:
     if statement.type != duckdb.StatementType.SELECT:
         kind = str(statement.type).rpartition(".")[2]
         raise QueryRefused(f"only a statement that reads is allowed here (SELECT, WITH, FROM, VALUES, SHOW, DESCRIBE), not {kind}")
+    if _PRAGMA.match(text) or _SWITCH.search(text):  # some clients run these as a SELECT
+        raise QueryRefused("a statement here reads the timeline; settings, logs and checkpoints are out of its reach")
     if statement.named_parameters:
         first = sorted(statement.named_parameters)[0]
         raise QueryRefused(f"the statement has a placeholder ({first}); write getvariable('name') and give it with --set name=value")

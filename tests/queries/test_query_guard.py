@@ -49,6 +49,9 @@ FORBIDDEN = (
     "PRAGMA enable_profiling",
     "CALL enable_logging()",
     "SELECT * FROM enable_logging()",
+    "FROM truncate_duckdb_logs()",
+    "FROM checkpoint()",
+    "/* a */ -- b\nPRAGMA version",
     # changing the timeline
     "CREATE TABLE a (b INTEGER)",
     "CREATE TEMP TABLE a AS SELECT 1",
