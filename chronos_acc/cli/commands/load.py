@@ -7,6 +7,7 @@ import argparse
 import sys
 from typing import TYPE_CHECKING
 
+from ...errors import ListRefused
 from ..arguments import whole
 from ..common import timeline
 from ..registry import Command
@@ -28,8 +29,13 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     from ...report.pages import load_page
     from ...store.load import load
 
-    loaded = load(timeline(options), options.files, compiled=options.compiled, as_format=options.as_format, link=not options.no_link,
-                  strict=options.strict, stdin=sys.stdin.buffer if "-" in options.files else None, encoding=options.encoding, tell=out.tell)  # fmt: skip
+    try:
+        loaded = load(timeline(options), options.files, compiled=options.compiled, as_format=options.as_format, link=not options.no_link,
+                      strict=options.strict, stdin=sys.stdin.buffer if "-" in options.files else None, encoding=options.encoding, tell=out.tell)  # fmt: skip
+    except ListRefused as refused:
+        if refused.loaded:  # one list was refused; what came of the others is said before
+            out.page(load_page(refused.loaded))
+        raise
     out.page(load_page(loaded))
     if any(l.rows_loaded == 0 for l in loaded):
         return 1
