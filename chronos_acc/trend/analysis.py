@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from ..errors import RecordRefused
+from ..errors import RecordRefused, WrongUse
 from ..progress import Tell, silent
 from ..record import Record, Window
 from .age_exponent import ExponentRow, age_exponent
@@ -231,6 +231,10 @@ def analyse(
             f"{_milestones(len(window.times))} in the window{outside}; a trend needs at least 3. Choose more lists, an earlier --start "
             "or a later --present"
         )
+    if bootstrap < 19 or replicates < 19:
+        raise WrongUse(
+            f"{min(bootstrap, replicates)} simulated records cannot judge at 5 %; give at least 19 replicates and 19 bootstrap refits"
+        )
     if not window.span > 0:
         raise RecordRefused(f"all milestones stand at the present, {window.present:g}; choose a later --present")
     tell("tests", 0.0)
@@ -243,7 +247,9 @@ def analyse(
     regressions = regress(window, record=record, draws=draws, seed=seed)
     tell("null models", 0.4)
     family = (STEADY, SHUFFLED, *_given(half_life, scale), *tip.nulls(), LOG_UNIFORM)
-    beside = null_table(record, family, (*STATISTICS, *REGRESSION_STATISTICS), seed=seed, replicates=replicates)
+    beside = null_table(
+        record, family, (*STATISTICS, *REGRESSION_STATISTICS), seed=seed, replicates=replicates, tell=_part(tell, 0.4, 0.75)
+    )
     others = {s.name for s in REGRESSION_STATISTICS}
     nulls = replace(beside, rows=tuple(r for r in beside.rows if r.statistic not in others))
     regression_nulls = replace(beside, rows=tuple(r for r in beside.rows if r.statistic in others))
@@ -286,6 +292,10 @@ def analyse(
         next_event=following,
         notes=_notes(record, window, tests, laws, regressions, nulls, tip, capture, studies, following),
     )
+
+
+def _part(tell: Tell, first: float, last: float) -> Tell:
+    return lambda what, share: tell(what, first + share * (last - first))
 
 
 def _milestones(number: int) -> str:
@@ -367,9 +377,9 @@ def evidence_of(
 def _notes(record: Record, window: Window, *parts: Any) -> tuple[str, ...]:
     """What a reader should know, once each: the record's own remarks, the window's, then every part's."""
     notes = list(record.notes)
-    if window.after:
+    if window.after and not any("after the present" in n for n in notes):
         notes.append(f"{_milestones(window.after)} after the present {window.present:g} left out; --present takes them in")
-    if window.before:
+    if window.before and not any("before the start" in n for n in notes):
         notes.append(f"{_milestones(window.before)} before the start {window.start:g} left out; an earlier --start takes them in")
     if window.closing:
         notes.append("the milestone at the present closes the window and is not counted")

@@ -23,6 +23,8 @@ if TYPE_CHECKING:
 
 Floats = npt.NDArray[np.float64]
 
+MOST_CELLS = 10_000_000  # simulated dates a null: above it fewer null records are made, never under FEWEST_RECORDS
+FEWEST_RECORDS = 199
 PAIRS_LIMIT = 400  # reversals compare every pair of intervals in every null record
 FITTED_TO = ("laplace", "growth", "gain")
 JUDGED_WHEN_FITTED = ("slope", "r_squared")
@@ -165,6 +167,10 @@ def null_table(
         )
     if window.n < 1 or not window.span > 0 or len(window.times) < 3:
         return NullTable((), replicates, ("too few milestones inside the window for null models",))
+    fewer = min(replicates, max(FEWEST_RECORDS, MOST_CELLS // len(window.times)))
+    if fewer < replicates:
+        notes.append(f"{fewer} null records instead of {replicates:,}, for {len(window.times):,} milestones each")
+        replicates = fewer
     seen = {s.name: _observed(s, window) for s in chosen}
     rows: list[NullRow] = []
     for done, null in enumerate(nulls):

@@ -195,7 +195,7 @@ class _Problem:
         return value, gradient
 
     def climb(self, theta: Floats, growth: float | None = None, shape: Floats | None = None) -> tuple[Floats, float] | None:
-        """The maximum from a start, growth times window held at ``growth`` where given. ``shape``: a first guess of the inverse information."""
+        """The maximum from a start, growth times window held at ``growth`` where given; ``shape`` guesses the inverse information."""
         from scipy.optimize import minimize
 
         free = slice(0, len(theta)) if growth is None else slice(1, len(theta))

@@ -32,6 +32,7 @@ PREDICTORS = ("log10_age", "order", "log10_time")
 ESTIMATORS = ("ols_hc3", "ols_hac", "median", "theil_sen", "glm")
 HAC_FROM = 100  # below this many intervals its intervals cover 75 to 85 % of what they promise
 PAIRS_LIMIT = 3_000  # Theil–Sen looks at every pair of intervals
+MEDIAN_LIMIT = 5_000  # intervals up to which the linear programme of the median line is solved
 DRAW_CELLS = 250_000  # draws taken at a time: small enough to stay in the cache
 
 
@@ -152,6 +153,8 @@ def regress(
             rows.extend(_FITS[estimator](x, y, name))
     if "theil_sen" in estimators and len(y) > PAIRS_LIMIT:
         notes.append(f"theil_sen is left out above {PAIRS_LIMIT:,} intervals: it compares every pair")
+    if "median" in estimators and len(y) > MEDIAN_LIMIT:
+        notes.append(f"median is left out above {MEDIAN_LIMIT:,} intervals: its linear programme grows too large")
     leverage: tuple[LeverageRow, ...] = ()
     floored = 0
     if record is not None:
@@ -303,7 +306,7 @@ def _least_squares_row(fit: LeastSquares, error: float, predictor: str, estimato
 
 
 def _median(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
-    if np.ptp(x) == 0:
+    if np.ptp(x) == 0 or len(x) > MEDIAN_LIMIT:
         return []
     n = len(x)
     intercept, slope = median_line(x, y)

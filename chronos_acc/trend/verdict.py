@@ -184,17 +184,21 @@ def _forgetting(e: Evidence) -> str:
         f"The milestones crowd towards the present{_both(e)}, but a steady rate explains that as well, if it is {memory}{ends}: then "
         f"{words.percent(f.oldest_share)} of the events as old as the oldest ({words.years(f.oldest_age)}) are listed, and "
         f"{words.count(f.unlisted)} are unlisted "
-        f"(95 % {words.between(words.count(f.unlisted_low), high)}). One list cannot say which."
+        f"(95 % {words.between(words.count(f.unlisted_low), high)}). A list alone cannot say which."
     )
 
 
 def _log_uniform(e: Evidence) -> str:
-    estimate = "" if e.age_exponent is None else f" (age exponent {words.digits(e.age_exponent)}"
-    if estimate and e.age_exponent_low is not None and e.age_exponent_high is not None:
-        estimate += f", 95 % {words.digits(e.age_exponent_low)} to {words.digits(e.age_exponent_high)}"
-    estimate += ")" if estimate else ""
-    slope = "" if e.slope is None or e.slope_p is None else f"; slope {words.digits(e.slope)}, {words.p(e.slope_p)} beside that null"
-    return f"Picking evenly per decade of age explains it as well, or more than enough{estimate}{slope}."
+    exponent = "" if e.age_exponent is None else f"age exponent {words.digits(e.age_exponent)}"
+    if e.age_exponent_low is not None and e.age_exponent_high is not None:
+        exponent += f", 95 % {words.digits(e.age_exponent_low)} to {words.digits(e.age_exponent_high)}; 1 is even picking, less is partial"
+    said = f"Picking evenly per decade of age explains it as well, or more than enough{f' ({exponent})' if exponent else ''}"
+    if e.slope is None or e.slope_p is None:
+        return f"{said}."
+    slope = f"a slope of {words.digits(e.slope)}"
+    if e.slope_p >= LEVEL:
+        return f"{said}; it gives {slope} or more by itself ({words.p(e.slope_p)})."
+    return f"{said}, though {slope} is more than such picking by itself gives ({words.p(e.slope_p)})."
 
 
 def _shape(e: Evidence) -> str:
@@ -232,7 +236,7 @@ def _tail(e: Evidence) -> str:
     if e.power:
         sizes = words.listed([f"{d:g}" for d, _ in e.power])
         shares = words.listed([words.percent(s) for _, s in e.power])
-        parts.append(f"a list of this size shows {sizes} doublings in {shares} of cases")
+        parts.append(f"laplace shows {sizes} doublings in a list of this size in {shares} of cases")
     text = "; ".join(parts)
     return text[0].upper() + text[1:] + "." if not text.startswith("n =") else text + "."
 

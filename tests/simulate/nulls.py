@@ -1,5 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
-"""How often a true null is rejected, and how often the slope's interval holds one: `python -m tests.simulate.nulls [records]`. Nominal 5 %."""
+"""How often a true null is rejected, and how often the slope's interval holds one; nominal 5 %.
+
+python -m tests.simulate.nulls [records]
+"""
 
 from __future__ import annotations
 
@@ -88,7 +91,9 @@ def slope_coverage(n: int, count: int, rng: np.random.Generator) -> float:
     """Share of HC3 intervals of the slope that hold 1 on log-uniform records."""
     hits = 0
     for _ in range(count):
-        row = regress(Record.from_dates(-(10 ** rng.uniform(0, 9, n)), present=0).window, predictors=("log10_age",), estimators=("ols_hc3",)).rows[0]
+        row = regress(
+            Record.from_dates(-(10 ** rng.uniform(0, 9, n)), present=0).window, predictors=("log10_age",), estimators=("ols_hc3",)
+        ).rows[0]
         assert row.low is not None and row.high is not None
         hits += row.low <= 1 <= row.high
     return hits / count
@@ -101,12 +106,14 @@ def percent(value: float) -> str:
 
 def main(count: int) -> None:
     """All tables."""
-    print(f"Steady null on steady records, start given, {20 * count} each, % rejected\n\n| statistic | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|")
+    print(f"Steady null on steady records, start given, {20 * count} each, % rejected\n")
+    print("| statistic | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|")
     sizes = [steady(n, 20 * count, n) for n in SIZES]
     for name in sizes[0]:
         print(f"| {name} | " + " | ".join(percent(s[name]) for s in sizes) + " |")
     rng = np.random.default_rng(61)
-    print(f"\nA fresh null of 399 for each of {count} records, % rejected\n\n| null | records | statistic | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|---|")
+    print(f"\nA fresh null of 399 for each of {count} records, % rejected\n")
+    print("| null | records | statistic | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|---|")
     rows = [
         ("log_uniform", "log-uniform, exact", ("slope", "r_squared"), lambda n: log_uniform(n, count, rng)),
         ("log_uniform", "two significant digits", ("slope", "r_squared"), lambda n: log_uniform(n, count, rng, 2)),
@@ -121,7 +128,8 @@ def main(count: int) -> None:
         found = [rejected(make(n), names) for n in SIZES]
         for name in names:
             print(f"| {null} | {kind} | {name} | " + " | ".join(percent(f[name]) for f in found) + " |", flush=True)
-    print(f"\nHC3 interval of the slope holds 1, log-uniform records over nine decades, {2 * count} each, %\n\n| n = 10 | n = 30 | n = 100 |\n|---|---|---|")
+    print(f"\nHC3 interval of the slope holds 1, log-uniform records over nine decades, {2 * count} each, %\n")
+    print("| n = 10 | n = 30 | n = 100 |\n|---|---|---|")
     print("| " + " | ".join(percent(slope_coverage(n, 2 * count, rng)) for n in SIZES) + " |")
 
 

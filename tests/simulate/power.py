@@ -11,7 +11,8 @@ from chronos_acc.trend.power import power, smallest_shown
 def main(count: int) -> None:
     """Two tables."""
     sizes, doublings = (10, 30, 100), (0.0, 1.0, 2.0, 4.0, -2.0)
-    print(f"Shares of {count} records in which a test gives p < 0.05, %\n\n| test | doublings | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|")
+    print(f"Shares of {count} records in which a test gives p < 0.05, %\n")
+    print("| test | doublings | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|")
     results = [{(r.test, r.doublings): r.power for r in power(n, doublings=doublings, replicates=count).rows} for n in sizes]
     for test, d in results[0]:
         print(f"| {test} | {d:g} | " + " | ".join(f"{100 * r[test, d]:.1f}" for r in results) + " |")

@@ -1,5 +1,8 @@
 # SPDX-License-Identifier: Apache-2.0
-"""Does the tipping point's interval hold the truth? `python -m tests.simulate.tipping [records]`. Steady records that are forgotten; nominal 95 %."""
+"""Does the tipping point's interval hold the truth? Steady records that are forgotten; nominal 95 %.
+
+python -m tests.simulate.tipping [records]
+"""
 
 from __future__ import annotations
 
@@ -23,7 +26,7 @@ def forgotten(n: int, form: str, share: float, rng: np.random.Generator) -> Reco
 
 
 def coverage(n: int, form: str, share: float, count: int, rng: np.random.Generator) -> tuple[float, float, float]:
-    """Shares of intervals that hold the truth, of unbounded ends, and of intervals of the total that hold it; "not needed" counts as an unbounded end."""
+    """Shares of intervals that hold the truth, of unbounded ends ("not needed" among them), and of intervals of the total that hold it."""
     hits = unbounded = totals = 0
     truth = n / (-np.expm1(-np.log(2) / share) / (np.log(2) / share) if form == "exponential" else share * np.log1p(1 / share))
     for _ in range(count):
@@ -33,7 +36,11 @@ def coverage(n: int, form: str, share: float, count: int, rng: np.random.Generat
             # no forgetting needed: the interval is that of a growth at or below zero, from its upper end on
             row = fit_laws(window, seed=1, replicates=0).row("log_linear" if form == "exponential" else "hyperbolic")
             name = "growth" if form == "exponential" else "t_star"
-            ends = [v[name] for v in ((row.high, row.high_robust) if form == "exponential" else (row.low, row.low_robust)) if v.get(name) is not None]
+            ends = [
+                v[name]
+                for v in ((row.high, row.high_robust) if form == "exponential" else (row.low, row.low_robust))
+                if v.get(name) is not None
+            ]
             low = 0.0
             if ends:
                 low = np.log(2) / max(ends) if form == "exponential" and max(ends) > 0 else np.inf if form == "exponential" else min(ends)
@@ -61,12 +68,17 @@ def adequate(n: int, form: str, share: float, count: int, rng: np.random.Generat
 def main(count: int) -> None:
     """Both tables."""
     rng = np.random.default_rng(62)
-    print(f"Intervals that hold the truth, {count} records each, %: estimate (unbounded end) [total]\n\n| form | of the window | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|")
+    print(f"Intervals that hold the truth, {count} records each, %: estimate (unbounded end) [total]\n")
+    print("| form | of the window | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|")
     for form, share in (("exponential", 0.5), ("exponential", 0.2), ("exponential", 0.05), ("power", 0.2), ("power", 0.02)):
         cells = [coverage(n, form, share, count, rng) for n in SIZES]
-        print(f"| {form} | {share:g} | " + " | ".join(f"{100 * a:.1f} ({100 * b:.0f}) [{100 * c:.1f}]" for a, b, c in cells) + " |", flush=True)
+        print(
+            f"| {form} | {share:g} | " + " | ".join(f"{100 * a:.1f} ({100 * b:.0f}) [{100 * c:.1f}]" for a, b, c in cells) + " |",
+            flush=True,
+        )
     few = max(count // 5, 50)
-    print(f"\nForm suffices, {few} records each, %: the true form / the other one\n\n| true form | of the window | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|")
+    print(f"\nForm suffices, {few} records each, %: the true form / the other one\n")
+    print("| true form | of the window | n = 10 | n = 30 | n = 100 |\n|---|---|---|---|---|")
     for form, share in (("exponential", 0.2), ("power", 0.02)):
         cells2 = [adequate(n, form, share, few, rng) for n in SIZES]
         print(f"| {form} | {share:g} | " + " | ".join(f"{100 * a:.0f} / {100 * b:.0f}" for a, b in cells2) + " |", flush=True)

@@ -108,7 +108,12 @@ WORLDS: tuple[tuple[str, Maker], ...] = (
 
 def main(count: int) -> None:
     """One table: shares of each code, of the clause, and of the null named weakest."""
-    print(f"Verdicts, {count} records each, %, n = 30 / 100\n\n| records | " + " | ".join(CODES) + " | clause log_uniform |\n|---|" + "---|" * (len(CODES) + 1))
+    print(
+        f"Verdicts, {count} records each, %, n = 30 / 100\n\n| records | "
+        + " | ".join(CODES)
+        + " | clause log_uniform |\n|---|"
+        + "---|" * (len(CODES) + 1)
+    )
     rng = np.random.default_rng(64)
     for name, make in WORLDS:
         cells = []

@@ -47,7 +47,7 @@ def test_two_lists() -> None:
 
 
 def test_chao_on_cottontails() -> None:
-    # Edwards & Eberhardt 1967, Chao 1987 (from memory): 76 animals, 18 occasions, 135 in truth; variance and bias-corrected value recomputed
+    # Edwards & Eberhardt 1967, Chao 1987 (from memory): 76 animals, 18 occasions, 135 in truth; variance and last value recomputed
     plain = chao(76, 43, 16, bias_corrected=False)
     assert (plain.total, plain.variance) == pytest.approx((133.78, 577.02), abs=0.005)
     assert chao(76, 43, 16, 18, bias_corrected=False).total == pytest.approx(130.57, abs=0.005)
@@ -147,7 +147,7 @@ def test_headline_is_the_scale_of_lower_aic() -> None:
 def test_corrected_growth_covers_where_the_uncorrected_does_not() -> None:
     """Steady truth, lists that forget independently: small version of the study in tests/simulate."""
     good = plain = estimable = 0
-    for s in range(24):
+    for s in range(16):
         capture = corrected_growth(_lists(500 + s, beta=3.0, size=250, alpha=(1.5, 1.0, 0.5)))
         if not capture.estimable:
             continue
@@ -155,8 +155,8 @@ def test_corrected_growth_covers_where_the_uncorrected_does_not() -> None:
         good += (capture.low is None or capture.low <= 0) and (capture.high is None or capture.high >= 0)
         assert capture.uncorrected_low is not None
         plain += capture.uncorrected_low <= 0
-    assert estimable == 24
-    assert good >= 20 and plain <= 8
+    assert estimable == 16
+    assert good >= 13 and plain <= 6
 
 
 def test_lists_with_a_common_ancestor_count_as_one() -> None:

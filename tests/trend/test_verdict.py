@@ -142,7 +142,7 @@ def test_every_sentence_carries_n_growth_half_life_and_power(evidence: Evidence)
     assert f"n = {evidence.n}" in sentence
     assert "3.2 doublings over 1,000 years (95 % 1.4 to 5.1)" in sentence
     assert "half forgotten every 310 years (95 % 195 years upwards, unbounded)" in sentence
-    assert "shows 1, 2 and 4 doublings in 24 %, 70 % and over 99 % of cases" in sentence
+    assert "laplace shows 1, 2 and 4 doublings in a list of this size in 24 %, 70 % and over 99 % of cases" in sentence
     assert "None" not in sentence and "nan" not in sentence
 
 
