@@ -53,7 +53,7 @@ def run(context: Context) -> Answer:
     wanted = "estimated, extrapolated" if estimated is not None else "assumed, extrapolated"
     at = next((i for i, r in enumerate(rows) if r.more["kind"] == wanted and (estimated is not None or r.more["rate"] == ASSUMED[1])), None)
     rate_words = (
-        f"linking misses about {estimated:.1%} of true pairs"
+        f"linking misses about {estimated:.2%} of true pairs"
         if estimated is not None
         else "the rate of missed pairs is assumed, not estimated"
     )

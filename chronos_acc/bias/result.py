@@ -93,7 +93,7 @@ class Bias:
             "published": plain(self.published.estimate),
             "published_p_value": plain(self.published.p_value),
             "finding": finding,
-            "report": f"{answer.report}: {finding}" if answer.report else finding,
+            "report": answer.report,
         }
 
     @property
