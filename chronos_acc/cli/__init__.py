@@ -67,7 +67,7 @@ def _run(words: list[str], out: Output) -> int:
     except SystemExit as done:  # argparse printed help
         return int(done.code or 0)
     options = with_defaults(options, given)
-    out.format, out.table, out.quiet = options.format, options.table, options.quiet
+    out.format, out.table, out.quiet, out.for_spreadsheet = options.format, options.table, options.quiet, options.for_spreadsheet
     return command.run(options, out)
 
 

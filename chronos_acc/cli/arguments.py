@@ -15,7 +15,7 @@ from .registry import COMMANDS, GROUPS, Command, Entry
 FORMATS = ("table", "json", "csv", "markdown", "latex")
 DEFAULTS: dict[str, Any] = {
     "db": None, "format": "table", "seed": 1, "draws": 2000, "present": None, "start": None, "sources": None, "min_support": None,
-    "category": None, "table": None, "quiet": False,
+    "category": None, "table": None, "quiet": False, "for_spreadsheet": False,
 }  # fmt: skip
 
 
@@ -89,6 +89,7 @@ def shared_options(parser: argparse.ArgumentParser) -> None:
     group.add_argument("--db", metavar="PATH", default=none, help="the timeline file (else CHRONOS_ACC_DB, else timeline.duckdb here)")
     group.add_argument("--format", choices=FORMATS, default=none, help="how to print the result (table)")
     group.add_argument("--table", metavar="NAME", default=none, help="of several tables, print this one")
+    group.add_argument("--for-spreadsheet", action="store_true", default=none, help="in csv, put an apostrophe before cells that a spreadsheet would run as formulas")
     group.add_argument("--seed", type=whole(0, 2**63 - 1), metavar="N", default=none, help="seed of all randomness (1)")
     group.add_argument("--draws", type=whole(0, 10_000_000), metavar="N", default=none, help="draws from the datings (2000)")
     group.add_argument("--quiet", action="store_true", default=none, help="no remarks, no progress")

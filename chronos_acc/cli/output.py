@@ -21,6 +21,7 @@ class Output:
         self.format = "table"
         self.table: str | None = None
         self.quiet = quiet
+        self.for_spreadsheet = False
         self.stdout = stdout or sys.stdout
         self.stderr = stderr or sys.stderr
         self._begun = time.monotonic()
@@ -48,7 +49,7 @@ class Output:
         """Print a page in the chosen format."""
         from ..report.formats import write
 
-        self.text(write(page, form=self.format, only=self.table, width=self.width, colour=self.colour))
+        self.text(write(page, form=self.format, only=self.table, width=self.width, colour=self.colour, for_spreadsheet=self.for_spreadsheet))
 
     def text(self, text: str) -> None:
         """Payload as it is."""

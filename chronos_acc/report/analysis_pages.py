@@ -192,3 +192,23 @@ def grid_page(grid: Any) -> Page:
     """What the combinations say together."""
     document = grid.to_dict()
     return Page(document, grid_tables(grid), "combinations", close=(*(f"note: {n}" for n in document.get("notes", [])), "", grid.sentence))
+
+
+def counts_page(counts: Any) -> Page:
+    """The rate laws fitted to counts a bin."""
+    frame = counts.to_frame()
+    screen = frame.copy()
+    for key in ("estimate", *_ENDS):
+        write = [numbers.when if p in ("t_star", "year") else numbers.number for p in frame["parameter"]]
+        screen[key] = [w(v) for w, v in zip(write, frame[key], strict=True)]
+    columns = (
+        C("law", "law"), C("parameter", "parameter"), C("estimate", "estimate", "right"), C("low", "low", "right", 1), C("high", "high", "right", 1),
+        C("low_robust", "low robust", "right", 3), C("high_robust", "high robust", "right", 3), C("dispersion", "dispersion", "number", 2),
+        C("log_likelihood", "log L", "number", 4), C("aicc", "AICc", "number", 4), C("lr_p", "LR p", "p", 5), C("same_curve_as", "same curve as", "text", 7),
+    )  # fmt: skip
+    below = (
+        f"{counts.n:,} events in {counts.bins:,} bins; dispersion: Pearson's, 1 for independent events; robust intervals allow for it",
+        "counts alone have no nulls of the list's making: growth here may be forgetting, which is the same curve",
+        *counts.notes,
+    )
+    return Page({"rows": frame, "n": counts.n, "bins": counts.bins, "notes": list(counts.notes)}, (Table("counts", frame, "Which simple law of the rate fits the counts?", columns, below, screen=screen),), "counts")

@@ -17,10 +17,16 @@ if TYPE_CHECKING:
     import pandas as pd
 
 
-def write(page: Page, *, form: str, only: str | None, width: int, colour: bool) -> str:
-    """The page in one format. ``only`` names one table; raises WrongUse where the page has none of that name."""
+def write(page: Page, *, form: str, only: str | None, width: int, colour: bool, for_spreadsheet: bool = False) -> str:
+    """The page in one format. ``only`` names one table; raises WrongUse where the page has none of that name.
+
+    ``for_spreadsheet`` keeps a spreadsheet from running cells of a CSV as formulas; such a file does not load back unchanged.
+    """
     if only is not None and only not in [t.name for t in page.tables]:
         raise WrongUse(f"no table {only!r} here; --table takes {', '.join(t.name for t in page.tables) or 'nothing: this command has one table'}")
+    if form == "csv" and for_spreadsheet:
+        chosen = page.chosen(only)[0] if only else page.main_table()
+        return "" if chosen is None else csv_of(chosen.frame, for_spreadsheet=True)
     return FORMATS[form](page, only, width, colour)
 
 
@@ -92,7 +98,7 @@ def _records(frame: pd.DataFrame) -> list[dict[str, Any]]:
     return [dict(zip(columns, map(jsonable, row), strict=True)) for row in frame.itertuples(index=False, name=None)]
 
 
-def csv_of(frame: pd.DataFrame) -> str:
+def csv_of(frame: pd.DataFrame, for_spreadsheet: bool = False) -> str:
     """A frame as CSV, RFC 4180 quoting, LF line ends."""
     import csv
     import io
@@ -101,8 +107,14 @@ def csv_of(frame: pd.DataFrame) -> str:
     writer = csv.writer(buffer, lineterminator="\n")
     writer.writerow([str(c) for c in frame.columns])
     for row in frame.itertuples(index=False, name=None):
-        writer.writerow([_csv_cell(v) for v in row])
+        cells = [_csv_cell(v) for v in row]
+        writer.writerow([_no_formula(c, v) for c, v in zip(cells, row, strict=True)] if for_spreadsheet else cells)
     return buffer.getvalue()
+
+
+def _no_formula(cell: str, value: Any) -> str:
+    """An apostrophe before text that starts like a formula; numbers stay numbers."""
+    return f"'{cell}" if isinstance(value, str) and cell[:1] in ("=", "+", "-", "@", "\t", "\r") else cell
 
 
 def _csv_cell(value: Any) -> str:

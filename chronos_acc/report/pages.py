@@ -180,6 +180,19 @@ def intervals_page(frame: pd.DataFrame, record: Record) -> Page:
     return Page(frame, (table,), "intervals")
 
 
+def interval_sets_page(by: str, sets: dict[str, pd.DataFrame], record: Record) -> Page:
+    """One series after the other: each list's, each level of support's, or each category's."""
+    frames = [frame.assign(**{by: name}) for name, frame in sets.items()]
+    whole = pd.concat(frames, ignore_index=True) if frames else pd.DataFrame(columns=[by])
+    whole = whole[[by, *(c for c in whole.columns if c != by)]]
+    tables = []
+    for name, frame in sets.items():
+        (table,) = intervals_page(frame, record).tables
+        asked = {"list": f"in the list {name} alone", "support": f"among milestones that {name} lists or more name", "category": f"in the category {name}"}[by]
+        tables.append(Table(name, frame, f"How long from each milestone to the next {asked}?", table.columns, (), table.empty, table.screen))
+    return Page(whole, (Table("intervals", whole, "", None, aside=True), *tables), "intervals")
+
+
 def queries_page(queries: Sequence[Any]) -> Page:
     """The named queries."""
     rows = [{"name": q.name, "question": q.question, "parameters": q.parameters, "columns": q.columns} for q in queries]

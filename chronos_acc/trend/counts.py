@@ -8,15 +8,17 @@ than Poisson where events come in bunches: Pearson's dispersion says by how much
 
 from __future__ import annotations
 
+import csv
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 import numpy as np
 from scipy.optimize import brentq
 from scipy.special import gammaincc, stdtrit, xlogy
 
-from ..errors import RecordRefused, WrongUse
+from ..errors import ListRefused, RecordRefused, WrongUse
 from .curves import CURVES, Curve, Place, step
 from .positions import Floats
 from .rate_laws import CHI2_95
@@ -299,3 +301,30 @@ def _best_step(c: Floats, x: Floats, n: int) -> tuple[Floats, np.ndarray[tuple[i
     gain = np.where((before >= least) & (n - before >= least), gain, -np.inf)
     best = gain.argmax(axis=1)
     return np.take_along_axis(gain, best[:, None], axis=1)[:, 0], best + 1
+
+
+def read_counts(path: Path) -> tuple[list[float], list[float]]:
+    """Edges (q + 1,) and counts (q,) from a CSV file with columns from, to, count; bins in order, each starting where the last one ends.
+
+    Raises ListRefused, naming the line.
+    """
+    try:
+        with path.open(encoding="utf-8-sig", newline="") as file:
+            rows = list(csv.DictReader(file))
+    except (OSError, UnicodeDecodeError, csv.Error) as error:
+        raise ListRefused(f"{path}: not a readable CSV file; give one with columns from, to and count") from error
+    if not rows or not {"from", "to", "count"} <= set(rows[0]):
+        raise ListRefused(f"{path}: no columns from, to and count, or no rows; the first line must name them")
+    edges: list[float] = []
+    counts: list[float] = []
+    for line, row in enumerate(rows, start=2):
+        try:
+            low, high, count = float(row["from"]), float(row["to"]), float(row["count"])
+        except (TypeError, ValueError) as error:
+            raise ListRefused(f"{path}, line {line}: from {row['from']!r}, to {row['to']!r} and count {row['count']!r} must be numbers") from error
+        if edges and low != edges[-1]:
+            raise ListRefused(f"{path}, line {line}: the bin starts at {low:g}, the one before ends at {edges[-1]:g}; bins must join, empty ones with count 0")
+        edges = edges or [low]
+        edges.append(high)
+        counts.append(count)
+    return edges, counts

@@ -13,7 +13,7 @@ from ..registry import Command
 if TYPE_CHECKING:
     from ..output import Output
 
-POOLING = ("mixture", "inverse_variance", "random_effects", "preferred")
+POOLING = ("mixture", "inverse_variance", "random_effects", "paule_mandel", "preferred")
 
 
 def _arguments(parser: argparse.ArgumentParser) -> None:
@@ -21,6 +21,7 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--doubt", type=number(0, 1), metavar="P", default=None, help="between this probability and the other, ask for review (0.1)")
     parser.add_argument("--prefer", metavar="LIST", help="the list whose titles name the milestones")
     parser.add_argument("--pooling", choices=POOLING, default=None, help="how the datings of one milestone become one (mixture)")
+    parser.add_argument("--orders", metavar="FILE.csv", help="known orders (columns earlier,later: two titles a row); draws then respect them, a circle is refused")
     parser.add_argument("--check", metavar="GOLD.csv", help="compare with a gold file (source,title,milestone): precision, recall, and the threshold curve")
 
 
@@ -43,6 +44,12 @@ def _run(options: argparse.Namespace, out: Output) -> int:
 
         out.page(gold_page(check_gold(timeline(options), Path(options.check))))
         return 0
+    if options.orders:
+        from pathlib import Path
+
+        from ...store.orders import state_orders
+
+        out.remark(f"{state_orders(timeline(options), Path(options.orders))} known orders stated")
     done = relink(timeline(options), options=chosen, tell=out.tell)
     out.page(link_page(done))
     return 0

@@ -21,7 +21,7 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
 
 def _run(options: argparse.Namespace, out: Output) -> int:
     from ...report.pages import query_page, queries_page
-    from ...store.query import find, named, run
+    from ...store.query import find, named, remarks, run
 
     if options.query is None:
         out.page(queries_page(named()))
@@ -32,11 +32,16 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         if not sign or not name.isidentifier():
             raise WrongUse(f"--set {pair!r} is not allowed; give NAME=VALUE, as in --set epoch=100")
         settings[name] = value
-    for key in ("present", "start"):
-        if getattr(options, key) is not None:
-            settings.setdefault(key, repr(getattr(options, key)))
-    frame = run(timeline(options), options.query, settings)
     known = find(options.query)
+    for key in ("present", "start", "min_support", "category"):
+        value = getattr(options, key)
+        if value is not None and (known is None or key in known.parameters):
+            settings.setdefault(key, str(value))
+        elif value is not None:
+            raise WrongUse(f"the query {known.name} takes no {key.replace('_', '-')}; its parameters are {', '.join(known.parameters) or 'none'}")
+    frame = run(timeline(options), options.query, settings)
+    for note in remarks(timeline(options)):
+        out.remark(note)
     out.page(query_page(frame, known.question if known else ""))
     return 0
 

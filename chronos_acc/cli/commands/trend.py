@@ -16,6 +16,7 @@ if TYPE_CHECKING:
 def _arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--full", action="store_true", help="every table: all nulls and estimators, leverage, forgetting, completeness")
     parser.add_argument("--next", dest="next_event", action="store_true", help="the waiting time to the next milestone under each law, with its track record")
+    parser.add_argument("--counts", metavar="FILE.csv", help="fit the rate laws to counts a bin instead of a timeline (columns from,to,count: decimal years, bins that join)")
     parser.add_argument("--exposure", metavar="FILE.csv", help="year,exposure: count time in people, scholars or publications instead of years")
 
 
@@ -23,6 +24,14 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     from ...report.analysis_pages import trend_page
     from ...trend.analysis import analyse
 
+    if options.counts:
+        from pathlib import Path
+
+        from ...report.analysis_pages import counts_page
+        from ...trend.counts import fit_counts, read_counts
+
+        out.page(counts_page(fit_counts(*read_counts(Path(options.counts)), seed=options.seed)))
+        return 0
     record = chosen_record(options)
     exposure = None
     if options.exposure:
