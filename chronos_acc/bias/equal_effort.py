@@ -18,11 +18,12 @@ from ..trend.null_model import youngest_floor
 from .check import Answer, Check, Context, Row
 from .growth import Growth, growth, rank_p
 from .offset import Offset
-from .rows import count, number, stands, telling
+from .rows import count, number, stands
 
 Floats = npt.NDArray[np.float64]
 Ints = npt.NDArray[np.int64]
 BINS = 6
+ENOUGH_BINS = 3
 FEWEST_MENTIONS = 20
 FEWEST_SHARED = 5
 REPLICATES = 499
@@ -43,8 +44,8 @@ def run(context: Context) -> Answer:
         return Answer(
             notes=(f"equal_effort: fewer than two bins hold {FEWEST_MENTIONS} mentions and {FEWEST_SHARED} shared milestones each",)
         )
-    at = telling(rows, published)
-    shown = rows[at] if at is not None else rows[0]
+    at = 0 if rows[0].more["bins"] >= ENOUGH_BINS else len(rows) - 1  # calendar bins, unless most milestones crowd into one or two
+    shown = rows[at]
     summary = f"at equal coverage ({shown.more['coverage']:.2f}) growth is {number(shown.estimate)} a year; rows: {count(rows)}"
     return Answer(tuple(rows), summary, "growth of distinct milestones a year at equal coverage", (), at)
 

@@ -84,10 +84,11 @@ CASES: dict[str, Callable[[np.random.Generator, int], Record]] = {
 }
 # conclusions that are right for each truth; a check that is blind to it is not judged
 STANDS, FALLS = {"yes"}, {"too few", "weaker", "no"}
+UNHARMED = {"yes", "too few"}  # where a check keeps only a part of the milestones, and its power is that of the part
 RIGHT: dict[tuple[str, str], set[str]] = {}
 for grown in ("two doublings", "four doublings"):
     for check in ("completeness", "support", "importance", "leave_out", "recent_end", "dating", "equal_effort", "lists"):
-        RIGHT[grown, check] = STANDS
+        RIGHT[grown, check] = UNHARMED if check in ("support", "lists", "equal_effort") else STANDS
 for check in ("completeness", "support", "equal_effort", "recall_decay"):
     RIGHT["steady, forgotten every 300 years", check] = FALLS
 RIGHT["steady, threshold of notability", "importance"] = FALLS
