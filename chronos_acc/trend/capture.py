@@ -163,7 +163,7 @@ def corrected_growth(record: Record, window: Window | None = None, *, interval: 
     best = min(fits, key=lambda f: f.aic)
     rows = tuple(CaptureRow(f.scale, f.growth, f.low, f.high, f.beta, f.log_likelihood, f.aic, f is best) for f in fits)
     bins = coverage_bins(ages, named, FEWEST_SHARED)
-    ordered = np.sort(ages)[::-1]
+    ordered = window.ages  # the milestone that opens the window among them, as at the tipping point
     places = [("oldest", float(ordered[0]))]
     if len(ordered) >= 10:
         places.append(("tenth oldest", float(ordered[9])))

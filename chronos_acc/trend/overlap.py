@@ -118,10 +118,7 @@ def fit(sightings: Sightings, scale: str, *, growth: float | None = None, interv
     if not found:
         return None
     theta, top = max(found, key=lambda s: s[1])
-    information = problem.information(theta, fixed is not None)
-    covariance = None
-    if information is not None:
-        covariance = information
+    covariance = problem.covariance(theta, fixed is not None)
     low: float | None = None
     high: float | None = None
     if interval and fixed is None:
@@ -218,7 +215,7 @@ class _Problem:
         base[free] = result.x
         return base, -float(result.fun)
 
-    def information(self, theta: Floats, fixed: bool) -> Floats | None:
+    def covariance(self, theta: Floats, fixed: bool) -> Floats | None:
         """Inverse of minus the Hessian, by differences of the gradient; None where it is not positive."""
         k = len(theta)
         hessian = np.empty((k, k))

@@ -147,7 +147,7 @@ def test_headline_is_the_scale_of_lower_aic() -> None:
 def test_corrected_growth_covers_where_the_uncorrected_does_not() -> None:
     """Steady truth, lists that forget independently: small version of the study in tests/simulate."""
     good = plain = estimable = 0
-    for s in range(16):
+    for s in range(10):
         capture = corrected_growth(_lists(500 + s, beta=3.0, size=250, alpha=(1.5, 1.0, 0.5)))
         if not capture.estimable:
             continue
@@ -155,8 +155,8 @@ def test_corrected_growth_covers_where_the_uncorrected_does_not() -> None:
         good += (capture.low is None or capture.low <= 0) and (capture.high is None or capture.high >= 0)
         assert capture.uncorrected_low is not None
         plain += capture.uncorrected_low <= 0
-    assert estimable == 16
-    assert good >= 13 and plain <= 6
+    assert estimable == 10
+    assert good >= 8 and plain <= 4
 
 
 def test_lists_with_a_common_ancestor_count_as_one() -> None:

@@ -61,13 +61,13 @@ def test_total_finds_the_truth_where_summing_over_the_listed_does_not() -> None:
     """1,000 steady events in 2,000 years, half-life 100: the total is right on average; summing 1/r over the listed is far too low."""
     totals, sums = [], []
     rng = np.random.default_rng(3)
-    for _ in range(60):
+    for _ in range(25):
         age = rng.uniform(0, 2000, 1000)
         age = age[rng.random(1000) < 2 ** (-age / 100)]
         f = _tipping(Record.from_dates(2000 - age, present=2000, start=0), 0).form("exponential")
         totals.append(f.total)
         sums.append(float((1 / f.listed_share(age)).sum()))
-    assert np.mean(totals) == pytest.approx(1000, rel=0.1)
+    assert np.mean(totals) == pytest.approx(1000, rel=0.15)
     assert np.median(sums) < 800
 
 
@@ -110,11 +110,11 @@ def test_window_of_ten_billion_years_with_all_events_in_the_last_million() -> No
 def test_half_life_covers_at_small_size() -> None:
     """Unbounded ends count as ends."""
     hits = 0
-    for s in range(80):
+    for s in range(40):
         window = _forgotten(1000 + s, n=30, half_life=300).window
         e = tipping(window, laws=fit_laws(window, seed=1, replicates=0)).form("exponential")
         hits += e.estimate is not None and e.low is not None and e.low <= 300 and (e.high is None or 300 <= e.high)
-    assert 0.9 <= hits / 80 <= 1.0
+    assert 0.9 <= hits / 40 <= 1.0
 
 
 def test_frames_have_their_columns_without_rows() -> None:
