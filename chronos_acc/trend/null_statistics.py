@@ -34,6 +34,11 @@ def age_fractions(times: Floats, window: Window) -> Floats:
     return np.asarray(np.where(fraction <= 0, edge, np.where(fraction >= 1, 1.0 - edge, fraction)))
 
 
+def _closed(times: Floats, window: Window) -> Floats:
+    """(s, r) closed intervals, milestones in one instant with an end of the window standing for one."""
+    return np.diff(times[..., max(window.opening - 1, 0) : times.shape[-1] - max(window.closing - 1, 0)], axis=-1)
+
+
 def _slope(times: Floats, window: Window) -> Floats:
     return kernels.log_log(window.present - times[..., :-1], np.diff(times, axis=-1))[0]
 
@@ -74,7 +79,7 @@ def _anderson_darling(times: Floats, window: Window) -> Floats:
 
 def _reversals(times: Floats, window: Window) -> Floats:
     # on dense ranks in small integers, which compare faster and keep ties
-    intervals = np.diff(times, axis=-1)
+    intervals = _closed(times, window)
     order = np.argsort(intervals, axis=-1)
     ordered = np.take_along_axis(intervals, order, axis=-1)
     dense = np.zeros(intervals.shape, np.int16)
@@ -86,7 +91,7 @@ def _reversals(times: Floats, window: Window) -> Floats:
 
 def _lewis_robinson(times: Floats, window: Window) -> Floats:
     with np.errstate(divide="ignore", invalid="ignore"):
-        return np.asarray(_laplace(times, window) / kernels.variation(np.diff(times, axis=-1)))
+        return np.asarray(_laplace(times, window) / kernels.variation(_closed(times, window)))
 
 
 def growth_times_window(times: Floats, window: Window) -> Floats:

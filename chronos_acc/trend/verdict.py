@@ -204,7 +204,8 @@ def _log_uniform(e: Evidence) -> str:
 def _shape(e: Evidence) -> str:
     formula = {"exponential": "2^(−age/h)", "power": "1/(1 + age/s)"}
     tried = [f"{formula[f.form]} ({words.p(f.fit_p)})" for f in e.forms if f.fit_p is not None]
-    forms = f" The forms tried: a steady rate remembered as {words.listed(tried)}; neither suffices." if tried else ""
+    ending = "neither suffices" if len(tried) > 1 else "it does not suffice"
+    forms = f" Tried: a steady rate remembered as {words.listed(tried)}; {ending}." if tried else ""
     return f"Speeding up{_both(e)}, with a shape that simple forgetting does not give.{forms}"
 
 

@@ -110,6 +110,11 @@ def test_statistics_are_those_of_the_other_rooms() -> None:
     assert seen["growth"] == pytest.approx(growth_interval(window)[0])
     assert seen["age_exponent"] == pytest.approx(age_exponent(window)[0].estimate)
     laws = fit_laws(window, seed=1, replicates=0)
+    tied = Record.from_dates([1000.0, 1000, 1000, 1200, 1500, 1700, 2000, 2000], present=2000)
+    rows = {r.statistic: r.observed for r in null_table(tied, (STEADY,), seed=1, replicates=19).rows}
+    others = run_tests(tied.window, seed=1, replicates=99)
+    for test in ("laplace", "lewis_robinson", "reverse_arrangements"):
+        assert rows[test] == pytest.approx(others.row(test).statistic), test
     gain = laws.row("log_linear").log_likelihood - laws.row("steady").log_likelihood
     assert seen["gain"] == pytest.approx(gain, rel=1e-6)
     rows = regress(window)
