@@ -3,8 +3,8 @@
 speak, which is recently.
 
 The rate of missed pairs is estimated from the probabilities of the pairs that linking left apart. The record is then split
-further at that rate, at random, again and again; what one more dose of splits adds is taken off once, which extrapolates to a
-record without them (as in Cook & Stefanski 1994, to first order).
+further at that rate, at random, again and again; what one and two more doses of splits add is carried back by one dose, on a
+parabola, to a record without them (as in Cook & Stefanski 1994).
 """
 
 from __future__ import annotations
@@ -44,9 +44,10 @@ def run(context: Context) -> Answer:
         found = drawn_row("false_splits", f"{rate:.2%} of pairs split again", split, published, kind=kind, rate=rate)
         if found is None:
             continue
-        mean = 2.0 * float((window.present - window.counted).mean() / window.span) - float(np.median(split.mean))
-        # as many events fewer as the splits add
-        n = max(1, 2 * window.n - int(round(float(np.mean(split.n)))))
+        twice = _split(record, min(1.0, 2.0 * rate), rng)
+        first = float((window.present - window.counted).mean() / window.span)
+        mean = 3.0 * first - 3.0 * float(np.mean(split.mean)) + float(np.mean(twice.mean))
+        n = max(1, round(3 * window.n - 3 * float(np.mean(split.n)) + float(np.mean(twice.n))))
         back = growth_of_mean(min(max(mean, 1e-12), 1 - 1e-12), n, window.span)
         rows.append(found)
         rows.append(row("false_splits", f"{rate:.2%} of pairs, taken back", back, published, kind=f"{kind}, extrapolated", rate=rate))
