@@ -106,17 +106,16 @@ def test_head_ends_quietly(run, here):
 def test_odd_surroundings(here, env):
     (here / "a.csv").write_text("title,date\nΩ первая,1500\nb – c,44 BCE\nc,1700\nd,1800\n", encoding="utf-8")
     assert _spawn(here, "load", "a.csv", "--compiled", "2020", env=env).returncode == 0
-    done = _spawn(here, "intervals", "--draws", "20", env=env)
-    assert done.returncode == 0 and "Traceback" not in done.stderr
-    assert '"title": "Ω первая"' in _spawn(here, "intervals", "--draws", "20", "--format", "json").stdout
+    done = _spawn(here, "milestones", env=env)
+    assert done.returncode == 0 and "Traceback" not in done.stderr and "1500" in done.stdout
 
 
 def test_same_result_whatever_the_clock_and_zone(run, here):
     _list(here)
     (here / "b.csv").write_text((here / "a.csv").read_text())
     run("load", "a.csv")  # no compile year: the present is the year of loading, stored
-    first = _spawn(here, "trend", "--draws", "50", "--format", "json", env={"TZ": "UTC"}).stdout
-    second = _spawn(here, "trend", "--draws", "50", "--format", "json", env={"TZ": "America/Adak"}).stdout
+    first = _spawn(here, "intervals", "--draws", "50", "--format", "json", env={"TZ": "UTC"}).stdout
+    second = _spawn(here, "intervals", "--draws", "50", "--format", "json", env={"TZ": "America/Adak"}).stdout
     assert first == second and first
 
 

@@ -3,6 +3,7 @@
 
 from __future__ import annotations
 
+import io
 import re
 import shlex
 import shutil
@@ -27,7 +28,7 @@ def _blocks(language):
 def two_lists(tmp_path, monkeypatch):
     monkeypatch.chdir(tmp_path)
     monkeypatch.delenv("CHRONOS_ACC_DB", raising=False)
-    monkeypatch.setattr("sys.stdin", open("/dev/null"))
+    monkeypatch.setattr("sys.stdin", io.StringIO(""))
     works = ["Water wheel at the ford", "Bell tower of the hill town", "Salt road", "Stone bridge", "Glass works", "Canal lock", "Rope ferry", "Paper mill", "Lime kiln", "Sluice gate",
              "Harbour crane", "Tile factory", "Gas lamps", "Railway halt", "Telegraph line", "Power house"]  # fmt: skip
     years = [812, 1005, 1130, 1244, 1367, 1488, 1530, 1604, 1688, 1722, 1779, 1803, 1841, 1866, 1870, 1899]
@@ -69,7 +70,7 @@ def test_results_show_in_a_notebook():
 def test_each_example_in_the_help_runs(name, tmp_path, monkeypatch, capsys):
     monkeypatch.chdir(tmp_path)
     monkeypatch.delenv("CHRONOS_ACC_DB", raising=False)
-    monkeypatch.setattr("sys.stdin", open("/dev/null"))
+    monkeypatch.setattr("sys.stdin", io.StringIO(""))
     folder = files.datasets() / "ondrel"
     for short in ("museum", "survey", "school"):
         shutil.copy(folder / f"{short}.csv", tmp_path)

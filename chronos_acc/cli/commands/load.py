@@ -46,7 +46,7 @@ COMMAND = Command(
     name="load",
     about="Read compilers' lists into the timeline. Every row is loaded or refused with its reason; a list goes in whole or not at all.\n"
     "A sheet (FILE.toml beside FILE.csv) says which columns mean what and how dates are written; without one the columns are title and date.",
-    example="chronos-acc load museum.csv survey.csv --compiled 2019",
+    example="chronos-acc load museum.csv survey.csv",
     arguments=_arguments,
     run=_run,
 )
