@@ -6,9 +6,10 @@ from __future__ import annotations
 import argparse
 import os
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
+    from ..bias.check import Context
     from ..record import Record
     from .output import Output
 
@@ -28,6 +29,17 @@ def chosen_record(options: argparse.Namespace, out: Output | None = None) -> Rec
         for note in found.notes:
             out.remark(note)
     return found
+
+
+def chosen_context(options: argparse.Namespace, record: Record, out: Output, exposure: Any = None) -> Context:
+    """What the bias checks and the grid are given: the record, the entries behind it, and the decisions that hold."""
+    from ..bias.check import Context
+    from ..store.decisions import standing
+    from ..store.timeline import entries
+
+    rows, milestone = entries(timeline(options))
+    return Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, exposure=exposure, decisions=tuple(standing(timeline(options))),
+                   tell=out.tell)  # fmt: skip
 
 
 def command_line(name: str, options: argparse.Namespace) -> str:

@@ -49,9 +49,9 @@ TREND_COLUMNS: dict[str, tuple[Column, ...]] = {
         C("high", "null high", "number", 1), C("difference", "difference", "number", 5), C("p_value", "p", "p"),
     ),
     "lists": (
-        C("list", "list"), C("n", "n", "count"), C("slope", "slope", "number", 2), C("slope_low", "low", "number", 4), C("slope_high", "high", "number", 4),
-        C("age_exponent", "age exponent", "number", 3), C("age_exponent_low", "low", "number", 5), C("age_exponent_high", "high", "number", 5),
-        C("growth", "growth per yr", "number", 1), C("growth_low", "low", "number", 3), C("growth_high", "high", "number", 3), C("p_value", "p", "p", 1),
+        C("list", "list"), C("n", "n", "count"), C("slope", "slope", "number", 2), C("slope_low", "slope low", "number", 4), C("slope_high", "slope high", "number", 4),
+        C("age_exponent", "age exponent", "number", 3), C("age_exponent_low", "exponent low", "number", 5), C("age_exponent_high", "exponent high", "number", 5),
+        C("growth", "growth per yr", "number", 1), C("growth_low", "growth low", "number", 3), C("growth_high", "growth high", "number", 3), C("p_value", "p", "p", 1),
     ),
 }  # fmt: skip
 
@@ -88,6 +88,14 @@ def _law_rows(frame: pd.DataFrame) -> pd.DataFrame:
     return pd.DataFrame(rows)
 
 
+def _null_name(null: str, setting: str | None) -> str:
+    """recall_decay with its form and whether that was given or fitted, without the number: a row must say which it is on a narrow screen too."""
+    if not setting:
+        return null
+    form = "half-life" if "half-life" in setting else "1/(1 + age/s)"
+    return f"{null} ({form}, {'given' if 'given' in setting else 'fitted'})"
+
+
 _ENDS = ("low", "high", "low_robust", "high_robust")
 SHOWN = ("record", "tests", "rate_laws", "age_exponent", "regressions", "nulls", "lists", "next", "track_record")
 NULL_STATISTICS = ("slope", "r_squared", "age_exponent")
@@ -110,7 +118,7 @@ def trend_tables(trend: Any, full: bool) -> tuple[Table, ...]:
             screen = frame[frame["null_median"].notna()] if "null_median" in frame else frame
             below.append("the null is picking evenly per decade of age, where the slope is 1 by construction; more estimators: --table regressions")
         elif name == "nulls" and not frame.empty:
-            screen = frame[frame["statistic"].isin(NULL_STATISTICS)]
+            screen = frame[frame["statistic"].isin(NULL_STATISTICS)].assign(null=lambda f: [_null_name(n, w) for n, w in zip(f["null"], f["setting"], strict=True)])
             below.append("each null makes whole lists with the same datings; p: share of them at least as far out (upper tail for slope and R²)")
             below.append("every statistic: --table nulls")
         if full and name in ("regressions", "nulls"):

@@ -15,8 +15,9 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from ..errors import ListRefused, WrongUse
+from ..merge.entries import Decision
 from .ledger import Ledger, now, open_for_reading, open_for_writing
-from .linking import PARTS
+from .linking import PARTS, active_decisions
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -128,6 +129,12 @@ def undo(db: str | Path, decision: int) -> None:
         if before is not None:
             ledger.run("UPDATE ledger.decision SET withdrawn_at = NULL WHERE decision = ?", [before])
         ledger.set_about("linked", "no")
+
+
+def standing(db: str | Path) -> list[Decision]:
+    """The decisions that hold, as linking takes them."""
+    with open_for_reading(db) as ledger:
+        return active_decisions(ledger)
 
 
 def listing(db: str | Path) -> pd.DataFrame:

@@ -303,7 +303,7 @@ def _best_step(c: Floats, x: Floats, n: int) -> tuple[Floats, np.ndarray[tuple[i
     return np.take_along_axis(gain, best[:, None], axis=1)[:, 0], best + 1
 
 
-def read_counts(path: Path) -> tuple[list[float], list[float]]:
+def read_counts(path: Path) -> tuple[Floats, Floats]:
     """Edges (q + 1,) and counts (q,) from a CSV file with columns from, to, count; bins in order, each starting where the last one ends.
 
     Raises ListRefused, naming the line.
@@ -327,4 +327,4 @@ def read_counts(path: Path) -> tuple[list[float], list[float]]:
         edges = edges or [low]
         edges.append(high)
         counts.append(count)
-    return edges, counts
+    return np.array(edges), np.array(counts)

@@ -7,7 +7,7 @@ import argparse
 from typing import TYPE_CHECKING
 
 from ..arguments import names
-from ..common import chosen_record, timeline
+from ..common import chosen_context, chosen_record
 from ..registry import Command
 
 if TYPE_CHECKING:
@@ -22,9 +22,7 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
 
 def _run(options: argparse.Namespace, out: Output) -> int:
     from ...bias import run_checks
-    from ...bias.check import Context
     from ...report.analysis_pages import bias_page
-    from ...store.timeline import entries
 
     record = chosen_record(options)
     exposure = None
@@ -34,8 +32,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         from ...trend.exposure import read_exposure
 
         exposure = read_exposure(Path(options.exposure))
-    rows, milestone = entries(timeline(options))
-    context = Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, exposure=exposure, tell=out.tell)
+    context = chosen_context(options, record, out, exposure)
     bias = run_checks(context, names=options.checks)
     out.page(bias_page(bias, full=options.full or options.checks is not None))
     return 0

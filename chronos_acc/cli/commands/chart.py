@@ -7,7 +7,7 @@ import argparse
 from typing import TYPE_CHECKING
 
 from ..arguments import whole
-from ..common import chosen_record, command_line, timeline
+from ..common import chosen_context, chosen_record, command_line
 from ..registry import Command
 
 if TYPE_CHECKING:
@@ -30,12 +30,9 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     record = chosen_record(options, out)
     grid = None
     if options.kind == "grid":
-        from ...bias.check import Context
         from ...bias.grid import run_grid
-        from ...store.timeline import entries
 
-        rows, milestone = entries(timeline(options))
-        grid = run_grid(Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, tell=out.tell), joint=199, tell=out.tell)
+        grid = run_grid(chosen_context(options, record, out), joint=199, tell=out.tell)
     data = chart(options.kind, record=record, grid=grid, seed=options.seed, draws=options.draws)
     if options.to:
         path = to_figure(data, options.to)

@@ -8,9 +8,11 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from ..common import chosen_context
 from ..registry import Command
 
 if TYPE_CHECKING:
+    from ...record import Record
     from ...report.tables import Page, Table
     from ..output import Output
 
@@ -26,7 +28,6 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
 def _run(options: argparse.Namespace, out: Output) -> int:
     from ... import files
     from ...bias import run_checks
-    from ...bias.check import Context
     from ...errors import Refused
     from ...intervals import interval_series
     from ...report.analysis_pages import bias_page, trend_page
@@ -53,8 +54,9 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     whole = intervals_page(series.to_frame(), record)
     pages["intervals"] = _tail(whole, TAIL, f"the last {TAIL} of {len(record.window.times)}; all of them: chronos-acc intervals --db {db}")
     pages["overlap"] = query_page(query.run(db, "overlap", {}), "How much do the lists share? (a named query; chronos-acc query lists the others)")
-    rows, of = timeline.entries(db)
-    bias = run_checks(Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=of, tell=out.tell))
+    options.db = str(db)
+    bias = run_checks(chosen_context(options, record, out))
+    pages["lists"] = _alone(record, options.seed)
     pages["bias"] = bias_page(bias)
     trend = analyse(record, seed=options.seed, draws=options.draws, tell=out.tell)
     pages["trend"] = trend_page(trend)
@@ -63,11 +65,38 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     for name, page in pages.items():
         tables += [replace(t, name=t.name if t.name == name else f"{name}_{t.name}") for t in page.tables]
     lead = ("Ondrel is an invented region, and so are its four lists; how they were made is told in datasets/ondrel/story.md.", "")
-    close = (*pages["bias"].close, *pages["trend"].close, "", f"The timeline is {db}: any DuckDB client opens it. Your own lists: chronos-acc load FILE.csv")
+    said = {line.partition(": ")[2].partition(": ")[2] for line in pages["bias"].close}  # what a check said need not be said again
+    close = (*pages["bias"].close, *(line for line in pages["trend"].close if line.removeprefix("note: ") not in said), "", f"The timeline is {db}: any DuckDB client opens it. Your own lists: chronos-acc load FILE.csv")
     document: dict[str, Any] = {name: page.document for name, page in pages.items()}
     document["intervals"] = whole.document
     out.page(Page(document, tuple(tables), "trend_tests", lead, close))
     return 0
+
+
+def _alone(record: Record, seed: int) -> Page:
+    """What each list says alone, in short: fewer null records and draws than ``trend`` uses."""
+    import pandas as pd
+
+    from ...errors import RecordRefused
+    from ...report.tables import Column, Page, Table
+    from ...trend.analysis import analyse
+
+    rows = []
+    for name in record.lists:
+        try:
+            trend = analyse(record.only(sources=[name]), seed=seed, draws=0, replicates=199, bootstrap=99)
+        except RecordRefused:
+            continue
+        head = trend.to_dict()["headline"]
+        rows.append({"list": name, "n": trend.to_dict()["record"]["n"], "p_laplace": head["p_laplace"], "doublings": head["doublings"], "half_life": head["half_life"],
+                     "verdict_code": trend.verdict_code, "clauses": ", ".join(trend.verdict_clauses)})  # fmt: skip
+    frame = pd.DataFrame(rows)
+    columns = (
+        Column("list", "list"), Column("n", "n", "count"), Column("p_laplace", "p laplace", "p"), Column("doublings", "doublings", "number"),
+        Column("half_life", "same as half forgotten in", "span"), Column("verdict_code", "verdict"), Column("clauses", "and", "text", 1),
+    )  # fmt: skip
+    below = ("forgetting: a steady past, forgotten at that pace, gives the same curve; the story tells for which list that is the truth",)
+    return Page(frame, (Table("lists", frame, "What would each list say alone?", columns, below),), "lists")
 
 
 def _renamed(page: Page, question: str, below: str) -> Page:

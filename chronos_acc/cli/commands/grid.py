@@ -7,7 +7,7 @@ import argparse
 from typing import TYPE_CHECKING
 
 from ..arguments import whole
-from ..common import chosen_record, command_line, timeline
+from ..common import chosen_context, chosen_record, command_line, timeline
 from ..registry import Command
 
 if TYPE_CHECKING:
@@ -21,11 +21,9 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
 
 
 def _run(options: argparse.Namespace, out: Output) -> int:
-    from ...bias.check import Context
     from ...bias.grid import default_choices, read_choices, run_grid
     from ...report.analysis_pages import grid_page
     from ...store.runs import record_run
-    from ...store.timeline import entries
 
     if options.show_choices:
         out.text(default_choices().to_toml())
@@ -34,8 +32,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
 
     choices = read_choices(Path(options.choices)) if options.choices else None
     record = chosen_record(options)
-    rows, milestone = entries(timeline(options))
-    context = Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, tell=out.tell)
+    context = chosen_context(options, record, out)
     grid = run_grid(context, choices=choices, joint=options.joint, tell=out.tell)
     record_run(timeline(options), command=command_line("grid", options), seed=options.seed, draws=options.draws, record=record.hash, result=grid.to_dict())
     out.page(grid_page(grid))

@@ -35,9 +35,11 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     known = find(options.query)
     for key in ("present", "start", "min_support", "category"):
         value = getattr(options, key)
-        if value is not None and (known is None or key in known.parameters):
+        if value is None:
+            continue
+        if known is None or key in known.parameters:
             settings.setdefault(key, str(value))
-        elif value is not None:
+        else:
             raise WrongUse(f"the query {known.name} takes no {key.replace('_', '-')}; its parameters are {', '.join(known.parameters) or 'none'}")
     frame = run(timeline(options), options.query, settings)
     for note in remarks(timeline(options)):

@@ -8,7 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from ...errors import WrongUse
-from ..common import chosen_record, command_line, timeline
+from ..common import chosen_context, chosen_record, command_line, timeline
 from ..registry import Command
 
 if TYPE_CHECKING:
@@ -34,19 +34,17 @@ def _run(options: argparse.Namespace, out: Output) -> int:
 
     from ... import __version__
     from ...bias import run_checks
-    from ...bias.check import Context
     from ...bias.grid import run_grid
     from ...intervals import interval_series
     from ...report.document import write_document
     from ...report.whole import Material, build
     from ...store.runs import record_run
-    from ...store.timeline import entries, table
+    from ...store.timeline import table
     from ...trend.analysis import analyse
 
     db = timeline(options)
     record = chosen_record(options)
-    rows, milestone = entries(db)
-    context = Context(record=record, seed=options.seed, draws=options.draws, entries=rows, milestone=milestone, tell=out.tell)
+    context = chosen_context(options, record, out)
     command = command_line(f"report {path.name}", options)
     trend = analyse(record, seed=options.seed, draws=options.draws, command=command_line("trend", options), tell=out.tell)
     milestones = table(db, "milestones")
