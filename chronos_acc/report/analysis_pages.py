@@ -20,6 +20,7 @@ TREND_QUESTIONS: dict[str, str] = {
     "age_exponent": "How fast does the density of milestones fall with age? (0 steady, 1 picked evenly per decade of age)",
     "regressions": "How does the interval shrink on log axes? (read it only beside the next table)",
     "nulls": "What would the making of the list give by itself?",
+    "regression_nulls": "What do the other regressions give when the list is made by a null? (records: null records behind a row)",
     "lists": "Does each list say the same?",
     "next": "How long until the next milestone, and how good were such statements in the past?",
     "track_record": "How good were such statements in the past?",
@@ -43,6 +44,8 @@ TREND_COLUMNS: dict[str, tuple[Column, ...]] = {
         C("predictor", "on"), C("estimator", "estimator", "text", 4), C("slope", "slope", "number"), C("low", "low", "number", 3), C("high", "high", "number", 3),
         C("std_error", "std error", "number", 5), C("r_squared", "R²", "number", 1), C("n", "n", "count", 3), C("null", "null", "text", 4),
         C("null_low", "null low", "number", 1), C("null_median", "null median", "number", 1), C("null_high", "null high", "number", 1), C("p_value", "p (null)", "p"),
+        C("r_squared_null_median", "R² null median", "number", 6), C("r_squared_null_high", "R² null high", "number", 4), C("r_squared_p_value", "p (R² null)", "p", 3),
+        C("null_records", "null records", "count", 7),
     ),
     "nulls": (
         C("null", "null model"), C("setting", "with", "text", 4), C("statistic", "statistic"), C("observed", "observed", "number"), C("low", "null low", "number", 1), C("median", "null median", "number", 2),
@@ -115,8 +118,9 @@ def trend_tables(trend: Any, full: bool) -> tuple[Table, ...]:
         elif name == "tests":
             below.append("p exact: by simulation given n, two-sided except anderson_darling; p adjusted: step-down over the tests")
         elif name == "regressions" and not frame.empty:
-            screen = frame[frame["null_median"].notna()] if "null_median" in frame else frame
-            below.append("the null is picking evenly per decade of age, where the slope is 1 by construction; more estimators: --table regressions")
+            screen = frame[frame["estimator"] == "ols_hc3"]
+            below.append("the null is picking evenly per decade of age: on log10 age it gives a slope of 1, but for rounded dates; p: upper tail of the slope")
+            below.append("more estimators beside it: --table regressions; the other nulls: --table regression_nulls")
         elif name == "nulls" and not frame.empty:
             screen = frame[frame["statistic"].isin(NULL_STATISTICS)].assign(null=lambda f: [_null_name(n, w) for n, w in zip(f["null"], f["setting"], strict=True)])
             below.append("each null makes whole lists with the same datings; p: share of them at least as far out (upper tail for slope and R²)")

@@ -4,10 +4,8 @@ the verdict."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field, fields
 from typing import TYPE_CHECKING, Any
-
-import numpy as np
 
 from ..errors import RecordRefused, WrongUse
 from ..progress import Tell, silent
@@ -17,11 +15,11 @@ from .capture import Capture, corrected_growth
 from .forgetting import LN2, Tipping, tipping, wider
 from .frames import frame, plain
 from .null_model import Null
-from .null_statistics import REGRESSION_STATISTICS, STATISTICS
-from .null_table import NullRow, NullTable, null_table
+from .null_table import NullTable, null_table
 from .nulls import LOG_UNIFORM, SHUFFLED, STEADY
 from .power import DOUBLINGS, laplace_power, smallest_shown
 from .rate_laws import LawsResult, fit_laws
+from .regression_nulls import Beside, regression_nulls
 from .regressions import LeverageRow, Regressions, regress
 from .studies import Studies, lists_as_studies
 from .trend_tests import TestsResult, run_tests
@@ -74,6 +72,9 @@ class Trend:
         """The first null the record does not rule out."""
         return self.judged.weakest_null
 
+    def _beside(self) -> Beside:
+        return Beside(self.regressions.rows, self.nulls, self.regression_nulls)
+
     def facts(self) -> dict[str, Any]:
         """What was looked at: counts and the window, years decimal."""
         w = self.window
@@ -125,7 +126,7 @@ class Trend:
             "tests": self.tests.rows,
             "rate_laws": self.laws.rows,
             "age_exponent": self.exponents,
-            "regressions": self.regressions.rows,
+            "regressions": self._beside().rows(),
             "leverage": self.regressions.leverage[:SHOWN_LEVERAGE],
             "nulls": self.nulls.rows,
             "regression_nulls": self.regression_nulls.rows,
@@ -157,7 +158,7 @@ class Trend:
             "tests": self.tests.to_frame(),
             "rate_laws": frame(self.laws.rows, LawRow),
             "age_exponent": frame(self.exponents, ExponentRow),
-            "regressions": self._regressions_frame(),
+            "regressions": self._beside().to_frame(),
             "leverage": frame(self.regressions.leverage, LeverageRow),
             "nulls": self.nulls.to_frame(),
             "regression_nulls": self.regression_nulls.to_frame(),
@@ -178,25 +179,8 @@ class Trend:
         """One of the tables."""
         return self.tables()[table]
 
-    def _regressions_frame(self) -> pd.DataFrame:
-        """The regressions, the least-squares rows beside what log_uniform gives."""
-        rows = self.regressions.to_frame()
-        beside: dict[str, NullRow | None] = {
-            "log10_age": self.nulls.row("log_uniform", "slope"),
-            "order": self.regression_nulls.row("log_uniform", "slope on order"),
-            "log10_time": self.regression_nulls.row("log_uniform", "slope on log10_time"),
-        }
-        found = [beside.get(r.predictor) if r.estimator == "ols_hc3" else None for r in self.regressions.rows]
-        rows["null"] = [None if f is None else f.null for f in found]
-        for column, name in (("null_low", "low"), ("null_median", "median"), ("null_high", "high"), ("p_value", "p_value")):
-            values = [np.nan if f is None or getattr(f, name) is None else float(getattr(f, name)) for f in found]
-            rows[column] = np.array(values, dtype=float)
-        return rows
-
 
 def _without_fits(capture: Capture) -> dict[str, Any]:
-    from dataclasses import fields
-
     return {f.name: getattr(capture, f.name) for f in fields(capture) if f.name not in ("fit", "steady")}
 
 
@@ -247,12 +231,10 @@ def analyse(
     regressions = regress(window, record=record, draws=draws, seed=seed)
     tell("null models", 0.4)
     family = (STEADY, SHUFFLED, *_given(half_life, scale), *tip.nulls(), LOG_UNIFORM)
-    beside = null_table(
-        record, family, (*STATISTICS, *REGRESSION_STATISTICS), seed=seed, replicates=replicates, tell=_part(tell, 0.4, 0.75)
+    nulls = null_table(record, family, seed=seed, replicates=replicates, tell=_part(tell, 0.4, 0.6))
+    lines = regression_nulls(
+        record, family, seed=seed, replicates=replicates, drawn=regressions.row(estimator="draws"), tell=_part(tell, 0.6, 0.75)
     )
-    others = {s.name for s in REGRESSION_STATISTICS}
-    nulls = replace(beside, rows=tuple(r for r in beside.rows if r.statistic not in others))
-    regression_nulls = replace(beside, rows=tuple(r for r in beside.rows if r.statistic in others))
     tell("overlap of the lists", 0.75)
     capture = corrected_growth(record, window)
     studies = lists_as_studies(record, seed=seed)
@@ -282,7 +264,7 @@ def analyse(
         exponents=exponents,
         regressions=regressions,
         nulls=nulls,
-        regression_nulls=regression_nulls,
+        regression_nulls=lines,
         studies=studies,
         tipping=tip,
         capture=capture,
@@ -290,7 +272,7 @@ def analyse(
         judged=judge(evidence),
         made=made,
         next_event=following,
-        notes=_notes(record, window, tests, laws, regressions, nulls, tip, capture, studies, following),
+        notes=_notes(record, window, tests, laws, regressions, nulls, lines, tip, capture, studies, following),
     )
 
 

@@ -7,30 +7,16 @@ import numpy as np
 import numpy.typing as npt
 from scipy.special import ndtri
 
+from .line_batches import exponential_slopes, median_lines
+
 Floats = npt.NDArray[np.float64]
 
 
 def median_line(x: Floats, y: Floats) -> tuple[float, float]:
-    """Intercept and slope of least absolute deviations (quantile regression at one half; Koenker & Bassett 1978), by linear programming."""
-    from scipy import sparse
-    from scipy.optimize import linprog
-
-    n = len(x)
-    centre, scale = float(x.mean()), float(np.abs(x - x.mean()).max())
-    z = (x - centre) / scale
-    unit = sparse.identity(n, format="csc")
-    design = sparse.hstack([sparse.csc_matrix(np.column_stack([np.ones(n), z])), unit, -unit], format="csc")
-    cost = np.concatenate([[0.0, 0.0], np.ones(2 * n)])
-    found = linprog(cost, A_eq=design, b_eq=y, bounds=[(None, None)] * 2 + [(0, None)] * (2 * n), method="highs-ds")
-    intercept, slope = float(found.x[0]), float(found.x[1])
-    # the solution passes through two points: take them exactly
-    near = np.argsort(np.abs(y - intercept - slope * z), kind="stable")
-    apart = near[np.abs(z[near] - z[near[0]]) > 1e-9]
-    i, j = near[0], apart[0]
-    exact = float((y[j] - y[i]) / (z[j] - z[i]))
-    if np.abs(y - y[i] - exact * (z - z[i])).sum() <= np.abs(y - intercept - slope * z).sum() * (1 + 1e-9):
-        slope, intercept = exact, float(y[i] - exact * z[i])
-    return intercept - slope * centre / scale, slope / scale
+    """Intercept and slope of least absolute deviations (quantile regression at one half; Koenker & Bassett 1978); the middle slope where
+    several are best."""
+    slope, intercept, _ = median_lines(x[None], y[None])
+    return float(intercept[0]), float(slope[0])
 
 
 def theil_sen_line(x: Floats, y: Floats) -> tuple[float, float, float, float]:
@@ -53,26 +39,13 @@ def theil_sen_line(x: Floats, y: Floats) -> tuple[float, float, float, float]:
     return slope, float(np.median(y) - slope * np.median(x)), float(slopes[low]), float(slopes[high])
 
 
-def exponential_line(x: Floats, interval: Floats) -> tuple[Floats, Floats]:
-    """Coefficients (2,) and standard errors (2,) of ln mean interval on x, intervals exponential (a log-link GLM), by Newton steps."""
-    design = np.column_stack([np.ones(len(x)), x - x.mean()])
-    beta = np.linalg.lstsq(design, np.log(interval) + 0.5772156649015329, rcond=None)[0]
-
-    def value(b: Floats) -> float:
-        eta = design @ b
-        return float((eta + interval * np.exp(-eta)).sum())
-
-    here = value(beta)
-    for _ in range(100):
-        ratio = interval * np.exp(-(design @ beta))
-        step = np.linalg.solve((design * ratio[:, None]).T @ design, design.T @ (ratio - 1.0))
-        size = 1.0
-        while value(beta + size * step) > here and size > 1e-10:
-            size /= 2
-        beta = beta + size * step
-        here = value(beta)
-        if np.abs(step).max() < 1e-13 * (1 + np.abs(beta).max()):
-            break
-    covariance = np.linalg.inv(design.T @ design)
-    shift = np.array([[1.0, -float(x.mean())], [0.0, 1.0]])
-    return shift @ beta, np.sqrt(np.diag(shift @ covariance @ shift.T))
+def exponential_line(x: Floats, y: Floats) -> tuple[Floats, Floats]:
+    """Coefficients (2,) and standard errors (2,) of ln mean t on x, y = ln t, t exponential: a log-link model of waiting times."""
+    mean = float(x.mean())
+    slope = float(exponential_slopes(x[None], y[None])[0])
+    left = y - slope * (x - mean)
+    top = float(left.max())
+    centre = top + float(np.log(np.exp(left - top).mean()))
+    sxx = float(((x - mean) ** 2).sum())
+    errors = np.sqrt([1.0 / len(x) + mean**2 / sxx, 1.0 / sxx])
+    return np.array([centre - slope * mean, slope]), np.asarray(errors)

@@ -47,23 +47,6 @@ def _r_squared(times: Floats, window: Window) -> Floats:
     return kernels.log_log(window.present - times[..., :-1], np.diff(times, axis=-1))[2]
 
 
-def _on(times: Floats, window: Window, predictor: str) -> tuple[Floats, Floats]:
-    """Slope and R² of log10 interval on order or on time, as in the regressions."""
-    intervals = np.diff(times, axis=-1)
-    keep = intervals > 0
-    if predictor == "order":
-        x = np.cumsum(keep[..., ::-1], axis=-1)[..., ::-1].astype(float)
-    else:
-        x = -np.log10(np.where(keep, times[..., 1:] - window.start, 1.0))
-    y = np.log10(np.where(keep, intervals, 1.0))
-    with np.errstate(invalid="ignore", divide="ignore"):
-        count = keep.sum(axis=-1, keepdims=True)
-        dx = keep * (x - (keep * x).sum(axis=-1, keepdims=True) / count)
-        dy = keep * (y - (keep * y).sum(axis=-1, keepdims=True) / count)
-        sxx, sxy, syy = (dx * dx).sum(axis=-1), (dx * dy).sum(axis=-1), (dy * dy).sum(axis=-1)
-        return np.asarray(sxy / sxx), np.asarray(sxy * sxy / (sxx * syy))
-
-
 def _laplace(times: Floats, window: Window) -> Floats:
     return -kernels.laplace(age_fractions(times, window))
 
@@ -137,12 +120,4 @@ STATISTICS = (
     Statistic("growth", "two-sided", _growth),
     Statistic("gain", "upper", _gain),
     Statistic("age_exponent", "two-sided", _age_exponent),
-)
-
-# what the regressions on order and on time stand beside
-REGRESSION_STATISTICS = (
-    Statistic("slope on order", "upper", lambda t, w: _on(t, w, "order")[0]),
-    Statistic("r_squared on order", "upper", lambda t, w: _on(t, w, "order")[1]),
-    Statistic("slope on log10_time", "upper", lambda t, w: _on(t, w, "log10_time")[0]),
-    Statistic("r_squared on log10_time", "upper", lambda t, w: _on(t, w, "log10_time")[1]),
 )

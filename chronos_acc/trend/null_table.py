@@ -12,7 +12,7 @@ import numpy.typing as npt
 
 from ..errors import WrongUse
 from ..progress import Tell, silent
-from ..record import CHUNK_CELLS, NORMAL, UNIFORM, Record, Window
+from ..record import NORMAL, UNIFORM, Record, Window
 from .null_model import Null
 from .null_statistics import STATISTICS, Statistic
 from .nulls import NAMES, NULLS
@@ -23,8 +23,9 @@ if TYPE_CHECKING:
 
 Floats = npt.NDArray[np.float64]
 
-MOST_CELLS = 10_000_000  # simulated dates a null: above it fewer null records are made, never under FEWEST_RECORDS
+MOST_CELLS = 2_000_000  # simulated dates a null: above it fewer null records are made, never under FEWEST_RECORDS
 FEWEST_RECORDS = 199
+HELD_CELLS = 400_000  # simulated dates held at once: small enough to stay near the cache
 PAIRS_LIMIT = 400  # reversals compare every pair of intervals in every null record
 FITTED_TO = ("laplace", "growth", "gain")
 JUDGED_WHEN_FITTED = ("slope", "r_squared")
@@ -46,7 +47,7 @@ class NullRow:
     tail: str = ""
     setting: str = ""
     remark: str = ""
-
+    records: int | None = None  # null records behind the band
 
 @dataclass(frozen=True)
 class NullTable:
@@ -67,6 +68,11 @@ class NullTable:
         return frame(self.rows, NullRow)
 
 
+def records_for(window: Window, replicates: int) -> int:
+    """How many null records a window of this size is given, of ``replicates`` asked for."""
+    return min(replicates, max(FEWEST_RECORDS, MOST_CELLS // max(len(window.times), 1)))
+
+
 def p_value(null: Floats, observed: float, tail: str) -> float:
     """(1 + #{null at least as extreme})/(B + 1) for tail "upper", "lower", or "two-sided" (twice the smaller). Equal within rounding counts
     as equal."""
@@ -81,7 +87,7 @@ def null_times_in_chunks(record: Record, null: Null, *, seed: int, replicates: i
     window = record.window if window is None else window
     kernel = Kernel.of(record, window)
     rng = np.random.default_rng([seed, 6100 + NAMES.index(null.name)])
-    rows = max(1, CHUNK_CELLS // max(len(window.times), 1))
+    rows = max(1, HELD_CELLS // max(len(window.times), 1))
     for done in range(0, replicates, rows):
         yield null_times(record, window, null, rng, min(rows, replicates - done), kernel)
 
@@ -167,7 +173,7 @@ def null_table(
         )
     if window.n < 1 or not window.span > 0 or len(window.times) < 3:
         return NullTable((), replicates, ("too few milestones inside the window for null models",))
-    fewer = min(replicates, max(FEWEST_RECORDS, MOST_CELLS // len(window.times)))
+    fewer = records_for(window, replicates)
     if fewer < replicates:
         notes.append(f"{fewer} null records instead of {replicates:,}, for {len(window.times):,} milestones each")
         replicates = fewer
@@ -178,7 +184,9 @@ def null_table(
         for times in null_times_in_chunks(record, null, seed=seed, replicates=replicates, window=window):
             for s in chosen:
                 values[s.name].append(s.compute(times, window))
-        rows.extend(_row(null, s, seen[s.name], np.concatenate(values[s.name])) for s in chosen)
+        rows.extend(
+            null_row(null, s.name, s.tail, seen[s.name], np.concatenate(values[s.name]), judged=s.name in JUDGED_WHEN_FITTED) for s in chosen
+        )
         tell(f"null {null.name}", (done + 1) / len(nulls))
     return NullTable(tuple(rows), replicates, tuple(notes))
 
@@ -188,27 +196,28 @@ def _observed(statistic: Statistic, window: Window) -> float:
         return float(statistic.compute(window.times[None, :], window)[0])
 
 
-def _row(null: Null, statistic: Statistic, observed: float, values: Floats) -> NullRow:
+def null_row(null: Null, statistic: str, tail: str, observed: float, values: Floats, *, judged: bool) -> NullRow:
+    """A statistic, observed and in null records (B,), as a row; ``judged``: whether a fitted null judges it. No band where half of the null
+    records do not give it."""
     good = values[np.isfinite(values)]
     if not np.isfinite(observed) or len(good) < 0.5 * len(values):
-        remark = "not computed: the record is too small or too even for it"
         return NullRow(
             null.name,
-            statistic.name,
+            statistic,
             observed if np.isfinite(observed) else None,
             None,
             None,
             None,
             None,
             None,
-            statistic.tail,
+            tail,
             null.setting,
-            remark,
+            "not computed: the record is too small or too even for it",
         )
     low, median, high = (float(v) for v in np.quantile(good, [0.025, 0.5, 0.975]))
-    p: float | None = p_value(good, observed, statistic.tail)
+    p: float | None = p_value(good, observed, tail)
     remark = ""
-    if null.fitted and statistic.name not in JUDGED_WHEN_FITTED:
+    if null.fitted and not judged:
         p = None
-        remark = "fitted to this" if statistic.name in FITTED_TO else "under a fitted null only slope and R² are judged"
-    return NullRow(null.name, statistic.name, observed, low, median, high, p, observed - median, statistic.tail, null.setting, remark)
+        remark = "fitted to this" if statistic in FITTED_TO else "under a fitted null only slope and R² are judged"
+    return NullRow(null.name, statistic, observed, low, median, high, p, observed - median, tail, null.setting, remark, len(good))

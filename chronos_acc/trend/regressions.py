@@ -31,9 +31,11 @@ RESPONSE = "log10_interval"
 PREDICTORS = ("log10_age", "order", "log10_time")
 ESTIMATORS = ("ols_hc3", "ols_hac", "median", "theil_sen", "glm")
 HAC_FROM = 100  # below this many intervals its intervals cover 75 to 85 % of what they promise
-PAIRS_LIMIT = 3_000  # Theil–Sen looks at every pair of intervals
-MEDIAN_LIMIT = 5_000  # intervals up to which the linear programme of the median line is solved
+PAIRS_LIMIT = 600  # Theil–Sen looks at every pair of intervals, in every null record too
 DRAW_CELLS = 250_000  # draws taken at a time: small enough to stay in the cache
+DRAW_ROWS = 100  # but never fewer draws at a time, since every milestone costs a call
+MOST_DRAWN = 2_000_000  # drawn dates in all: above it fewer draws are made, never under FEWEST_DRAWS
+FEWEST_DRAWS = 199
 
 
 @dataclass(frozen=True)
@@ -152,16 +154,17 @@ def regress(
         for estimator in estimators:
             rows.extend(_FITS[estimator](x, y, name))
     if "theil_sen" in estimators and len(y) > PAIRS_LIMIT:
-        notes.append(f"theil_sen is left out above {PAIRS_LIMIT:,} intervals: it compares every pair")
-    if "median" in estimators and len(y) > MEDIAN_LIMIT:
-        notes.append(f"median is left out above {MEDIAN_LIMIT:,} intervals: its linear programme grows too large")
+        notes.append(f"theil_sen is left out above {PAIRS_LIMIT:,} intervals: it compares every pair, in every null record too")
     leverage: tuple[LeverageRow, ...] = ()
     floored = 0
     if record is not None:
         leverage = _leverage(line(pairs.predictor("log10_age"), y), pairs, window, record)
         if draws > 0 and "log10_age" in predictors:
-            drawn = drawn_slopes(record, draws=draws, seed=seed, tell=tell)
+            made = min(draws, max(FEWEST_DRAWS, MOST_DRAWN // len(record)))
+            drawn = drawn_slopes(record, draws=made, seed=seed, tell=tell)
             if drawn is not None:
+                if made < draws:
+                    notes.append(f"{made} draws instead of {draws:,} behind the row of draws, for {len(record):,} milestones")
                 floored = drawn.floored
                 rows.append(_draw_row(drawn, len(y)))
                 if floored:
@@ -205,7 +208,7 @@ def drawn_slopes(record: Record, *, draws: int, seed: int, tell: Tell = silent) 
     squares: list[Floats] = []
     floored = cells = done = 0
     for dates in _chunks(seen, draws, seed):
-        slope, square, raised, count = _drawn(dates, record.present, record.start, floor)
+        slope, square, raised, count = drawn_lines(dates, record.present, record.start, floor)
         slopes.append(slope)
         squares.append(square)
         floored += raised
@@ -216,10 +219,10 @@ def drawn_slopes(record: Record, *, draws: int, seed: int, tell: Tell = silent) 
 
 
 def _chunks(record: Record, draws: int, seed: int) -> Iterator[Floats]:
-    return record.draws(draws, seed, chunk=max(1, DRAW_CELLS // max(len(record), 1)))
+    return record.draws(draws, seed, chunk=max(DRAW_ROWS, DRAW_CELLS // max(len(record), 1)))
 
 
-def _drawn(dates: Floats, present: float, start: float | None, floor: float) -> tuple[Floats, Floats, int, int]:
+def drawn_lines(dates: Floats, present: float, start: float | None, floor: float) -> tuple[Floats, Floats, int, int]:
     """slope, R², floored, cells of drawn dates (rows, m). Logs are natural: both sides alike, so slope and R² are those of log10."""
     ages = present - dates
     ages.sort(axis=1)  # youngest first
@@ -306,7 +309,7 @@ def _least_squares_row(fit: LeastSquares, error: float, predictor: str, estimato
 
 
 def _median(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
-    if np.ptp(x) == 0 or len(x) > MEDIAN_LIMIT:
+    if np.ptp(x) == 0:
         return []
     n = len(x)
     intercept, slope = median_line(x, y)
@@ -349,10 +352,9 @@ def _theil_sen(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
 def _glm(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     if np.ptp(x) == 0:
         return []
-    with np.errstate(over="ignore"):
-        beta, errors = exponential_line(x, 10.0 ** (y - y.mean()))
+    beta, errors = exponential_line(x, y * np.log(10))
     slope, error, half = (float(v) / np.log(10) for v in (beta[1], errors[1], ndtri(0.975) * errors[1]))
-    intercept = float(beta[0]) / np.log(10) + float(y.mean())
+    intercept = float(beta[0]) / np.log(10)
     return [
         RegressionRow(
             RESPONSE,

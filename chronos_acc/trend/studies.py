@@ -212,7 +212,7 @@ def _equal(window: Window, mentions: Bools, seed: int, replicates: int) -> dict[
         return {}
     observed = _spread(times, named[None], window)
     rng = np.random.default_rng([seed, 6400])
-    replicates = min(replicates, max(99, 20_000_000 // named.size))
+    replicates = min(replicates, max(199, 4_000_000 // named.size))
     mixed = exchanged(named, rng, replicates)
     null = _spread(times, mixed, window)
     out = {}

@@ -135,7 +135,7 @@ def test_steady_list_dated_to_the_year_is_not_called_speeding() -> None:
     for s in range(14):
         rng = np.random.default_rng(100 + s)
         record = Record.from_dates(np.floor(rng.uniform(1900, 2000, 100)) + 0.5, present=2000, unit=1.0)
-        codes.append(analyse(record, draws=0, replicates=199, bootstrap=19).verdict_code)
+        codes.append(analyse(record, draws=0, replicates=99, bootstrap=19).verdict_code)
     assert sum(c in ("forgetting", "shape") for c in codes) <= 1
     assert codes.count("no_trend") >= 12
 
@@ -147,7 +147,7 @@ def test_clustered_but_steady_is_uneven() -> None:
         rng = np.random.default_rng(s)
         gaps = np.where(rng.random(60) < 0.85, rng.exponential(1, 60), rng.exponential(60, 60))
         times = np.cumsum(gaps)
-        found.append(analyse(Record.from_dates(times, present=times[-1] + 1), draws=0, replicates=199, bootstrap=19))
+        found.append(analyse(Record.from_dates(times, present=times[-1] + 1), draws=0, replicates=99, bootstrap=19))
     rejected = [t for t in found if (t.evidence.p1 or 1) < 0.05]
     assert len(rejected) >= 3
     assert sum(t.verdict_code == "uneven" for t in rejected) >= len(rejected) - 1

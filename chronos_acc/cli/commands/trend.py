@@ -42,7 +42,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         exposure = read_exposure(Path(options.exposure))
     trend = analyse(record, seed=options.seed, draws=options.draws, exposure=exposure, next_event=options.next_event, command=command_line("trend", options),
                     tell=out.tell)  # fmt: skip
-    out.page(trend_page(trend, full=options.full))
+    out.page(trend_page(trend, full=options.full or out.table is not None))  # a table asked for by name comes whole
     if trend.verdict_code == "too_few":
         out.error("too few milestones to tell; the verdict says what such a list could show")
         return 1
