@@ -25,7 +25,6 @@ from .text import Text, text_of
 DELIMITERS = ",\t;|"
 NAMES = {",": "comma", "\t": "tab", ";": "semicolon", "|": "bar"}
 ROW_LIMIT = 2_097_152  # bytes or characters of one row
-NEWLINES = {"\n": "\\n", "\r\n": "\\r\\n"}
 LINES_LIMIT = 10_000  # lines of one row
 
 
@@ -167,9 +166,9 @@ def _fast(text: Text, delimiter: str, width: int, after: int) -> Fast | None:
     if not text.plain or after != 1:
         return None
     columns = ", ".join(f"'c{i}': 'VARCHAR'" for i in range(width))
+    newline = "" if text.newline == "\r\n" else ", new_line = '\\n'"  # naming \r\n in strict mode makes DuckDB 2.0 find no row at all
     query = (
         f"SELECT * FROM read_csv(?, auto_detect = false, columns = {{{columns}}}, header = true, delim = '{delimiter}', quote = '\"', "
-        f"escape = '\"', strict_mode = true, null_padding = false, nullstr = '', max_line_size = {ROW_LIMIT}, "
-        f"new_line = '{NEWLINES[text.newline]}')"
+        f"escape = '\"', strict_mode = true, null_padding = false, nullstr = '', max_line_size = {ROW_LIMIT}{newline})"
     )
     return Fast(query, (str(text.path),), first=2, rows=text.count - 1)

@@ -153,3 +153,17 @@ def test_what_the_reader_refuses_the_database_does_not_take(ledger: Ledger) -> N
             read_row(date, settings=settings)
         except DateRefused:
             assert kind is None, date
+
+
+@pytest.mark.parametrize("end", ["\n", "\r\n"])
+def test_plain_files_are_read_by_the_database_whatever_their_line_ends(tmp_path, monkeypatch, end):
+    from chronos_acc.store import rows
+
+    def never(*args, **kwargs):
+        raise AssertionError("read line by line")
+
+    monkeypatch.setattr(rows, "_line_by_line", never)
+    path = tmp_path / "a.csv"
+    path.write_bytes(("title,date" + end + end.join(f"thing {i},{1000 + i}" for i in range(50)) + end).encode())
+    (done,) = load(tmp_path / "t.duckdb", [path], compiled=2020, link=False)
+    assert (done.rows_loaded, done.rows_rejected) == (50, 0)
