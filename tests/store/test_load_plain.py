@@ -158,6 +158,7 @@ def test_what_the_reader_refuses_the_database_does_not_take(ledger: Ledger) -> N
 @pytest.mark.parametrize("end", ["\n", "\r\n"])
 def test_plain_files_are_read_by_the_database_whatever_their_line_ends(tmp_path, monkeypatch, end):
     from chronos_acc.store import rows
+    from chronos_acc.store.load import load
 
     def never(*args, **kwargs):
         raise AssertionError("read line by line")
