@@ -12,7 +12,7 @@ from typing import Any
 
 from scipy.special import erfc
 
-from ..trend.capture import Capture, corrected_growth
+from ..trend.capture import Capture, against_forgetting, corrected_growth
 from ..trend.forgetting import tipping
 from ..trend.overlap import fit
 from .check import Answer, Check, Context, Row
@@ -66,9 +66,11 @@ def run(context: Context) -> Answer:
             )
         )
     shown = rows[at]
+    found = tipping(record.window, seed=context.seed, replicates=min(FITS, context.replicates))
+    against = against_forgetting(capture, found)
     summary = (
         f"after correction for what {len(capture.lists)} independent lists missed, growth is {number(shown.estimate)} a year "
-        f"({number(shown.more['low'])} to {number(shown.more['high'])}){_against_the_tipping_point(context, capture)}; "
+        f"({number(shown.more['low'])} to {number(shown.more['high'])}){'; ' + against if against else ''}; "
         "what all lists forgot together stays unseen"
     )
     return Answer(tuple(rows), summary, "corrected growth with its interval, and the share named at the oldest", notes, at)
@@ -113,16 +115,6 @@ def _scale(capture: Capture, i: int, published: Growth) -> Row:
         stands(found.growth, p, published.estimate),
         more,
     )
-
-
-def _against_the_tipping_point(context: Context, capture: Capture) -> str:
-    """What forgetting would need beside what overlap says of the oldest."""
-    found = tipping(context.record.window, seed=context.seed, replicates=min(FITS, context.replicates)).adequate
-    overlap = next((s for s in capture.shares if s.at == "oldest"), None)
-    needed = None if found is None else next((s for s in found.shares if s.at == "oldest"), None)
-    if overlap is None or needed is None:
-        return ""
-    return f"; forgetting alone would need {needed.share:.0%} of the oldest listed, overlap says {overlap.low:.0%} to {overlap.high:.0%}"
 
 
 CHECK = Check(

@@ -16,6 +16,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ..record import Window
+from ..trend.capture import against_forgetting, corrected_growth
 from ..trend.forgetting import Tipping, TippingForm, tipping
 from .check import Answer, Check, Context, Row
 from .growth import Growth, growth
@@ -53,10 +54,12 @@ def run(context: Context) -> Answer:
     if named is not None:
         rows.extend(_by_age(context, published, named))
     notes = tuple(f"recall_decay: {n}" for n in found.notes)
+    said = against_forgetting(corrected_growth(context.record, interval=False), found) if named is not None else ""
+    against = f"; {said}" if said else ""
     if found.adequate is None and refused:
         return Answer(
             tuple(rows),
-            _sentence(found),
+            _sentence(found) + against,
             "that no form of forgetting tried gives this shape, and which were tried",
             notes,
             _position(rows, "shape"),
@@ -64,7 +67,7 @@ def run(context: Context) -> Answer:
     at = next((i for i, r in enumerate(rows) if named is not None and r.more["kind"] == "fitted" and r.more["form"] == named.form), 0)
     return Answer(
         tuple(rows),
-        _sentence(found),
+        _sentence(found) + against,
         "the half-life of forgetting that would suffice, the listed share it implies, and the unlisted number",
         notes,
         at,

@@ -11,7 +11,7 @@ from ..errors import RecordRefused, WrongUse
 from ..progress import Tell, silent
 from ..record import Record, Window
 from .age_exponent import ExponentRow, age_exponent
-from .capture import Capture, corrected_growth
+from .capture import Capture, against_forgetting, corrected_growth
 from .forgetting import LN2, Tipping, tipping, wider
 from .frames import frame, plain
 from .null_model import Null
@@ -272,7 +272,7 @@ def analyse(
         judged=judge(evidence),
         made=made,
         next_event=following,
-        notes=_notes(record, window, tests, laws, regressions, nulls, lines, tip, capture, studies, following),
+        notes=_notes(record, window, tests, laws, regressions, nulls, lines, tip, capture, studies, following, told=against_forgetting(capture, tip)),
     )
 
 
@@ -356,7 +356,7 @@ def evidence_of(
     )
 
 
-def _notes(record: Record, window: Window, *parts: Any) -> tuple[str, ...]:
+def _notes(record: Record, window: Window, *parts: Any, told: str = "") -> tuple[str, ...]:
     """What a reader should know, once each: the record's own remarks, the window's, then every part's."""
     notes = list(record.notes)
     if window.after and not any("after the present" in n for n in notes):
@@ -373,4 +373,4 @@ def _notes(record: Record, window: Window, *parts: Any) -> tuple[str, ...]:
         )
     for part in parts:
         notes.extend(getattr(part, "notes", ()) if part is not None else ())
-    return tuple(dict.fromkeys(notes))
+    return tuple(dict.fromkeys([*notes, told] if told else notes))

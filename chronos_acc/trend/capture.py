@@ -10,6 +10,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ..record import Bools, Record, Window
+from . import words
 from .null_model import youngest_floor
 from .overlap import SCALES, CaptureFit, Sightings, fit
 from .overlap_bins import CoverageBin, chao, chapman, coverage_bins, log_linear_models, petersen
@@ -17,6 +18,8 @@ from .rate_laws import growth_interval
 
 if TYPE_CHECKING:
     import pandas as pd
+
+    from .forgetting import Tipping
 
 Floats = npt.NDArray[np.float64]
 
@@ -27,6 +30,7 @@ __all__ = [
     "CaptureRow",
     "CaptureShare",
     "CoverageBin",
+    "against_forgetting",
     "chao",
     "chapman",
     "corrected_growth",
@@ -189,4 +193,18 @@ def corrected_growth(record: Record, window: Window | None = None, *, interval: 
         fit=best,
         steady=fit(sightings, best.scale, growth=0.0, interval=False),
         notes=tuple(notes),
+    )
+
+
+def against_forgetting(capture: Capture, tipping: Tipping) -> str:
+    """The share of the oldest that forgetting alone would leave listed, set against what overlap says of the same age; empty where one of
+    them is not known."""
+    form = tipping.adequate or next((f for f in tipping.forms if f.needed), None)
+    needed = None if form is None else next((s for s in form.shares if s.at == "oldest"), None)
+    found = next((s for s in capture.shares if s.at == "oldest"), None)
+    if needed is None or found is None:
+        return ""
+    return (
+        f"forgetting alone would need {words.percent(needed.share)} of the oldest listed ({words.years(needed.age)}); "
+        f"overlap says {words.percent(found.low)} to {words.percent(found.high)}, of those that not all lists forgot alike"
     )

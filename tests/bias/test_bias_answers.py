@@ -16,6 +16,8 @@ from chronos_acc.bias.growth import growth, two_sided
 from chronos_acc.errors import WrongUse
 from chronos_acc.merge.entries import Entries
 from chronos_acc.record import Record
+from chronos_acc.trend import words
+from chronos_acc.trend.analysis import analyse
 
 
 def rows(record, name, **context):
@@ -120,6 +122,19 @@ def test_completeness_takes_forgetting_away_and_leaves_growth():
     forgotten = listed(np.random.default_rng(1), truth=300, half_life=250.0, chance=0.7)
     page = rows(forgotten, "completeness").rows("summary")[0]
     assert page["stands"] != "yes" and "overlap says" in page["finding"]
+    # the tipping point stands against the overlap in both findings, with the numbers of trend
+    trend = analyse(forgotten, draws=0, replicates=99, bootstrap=299)
+    told = next(n for n in trend.notes if "overlap says" in n)
+    document = trend.to_dict()
+    needed = next(s for s in document["forgetting"][0]["shares"] if s["at"] == "oldest")
+    overlap = next(s for s in document["completeness"]["shares"] if s["at"] == "oldest")
+    assert needed["age"] == overlap["age"]
+    for value in (needed["share"], overlap["low"], overlap["high"]):
+        assert words.percent(value) in told
+    decay = rows(forgotten, "recall_decay").rows("summary")[0]["finding"]
+    assert told in page["finding"] and told in decay
+    alone = rows(plain(np.random.default_rng(1), 60, 3.0), "recall_decay").rows("summary")[0]["finding"]
+    assert "overlap says" not in alone
     grown = listed(np.random.default_rng(1), truth=150, growth=3.0, chance=0.5)
     assert rows(grown, "completeness").rows("summary")[0]["stands"] == "yes"
 
