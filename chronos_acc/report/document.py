@@ -8,7 +8,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
 
-from .formats import _LATEX, _laid_out, latex_of, markdown_of, text_cell
+from .formats import _laid_out, latex_of, latex_text, markdown_of, text_cell
 from .plain import plain
 from .tables import Table
 
@@ -168,10 +168,10 @@ def html_of(table: Table) -> str:
 
 
 def _latex(document: Document, path: Path, written: list[Path]) -> str:
-    def safe(text: str) -> str:
-        return "".join(_LATEX.get(ch, ch) for ch in plain(text))
-
-    out = [r"\documentclass[11pt]{article}", r"\usepackage[utf8]{inputenc}", r"\usepackage[T1]{fontenc}", r"\usepackage{graphicx}",
+    safe = latex_text
+    # other scripts than Latin in titles: compile with LuaLaTeX, which reads them all
+    out = [r"\documentclass[11pt]{article}", r"\usepackage{iftex}",
+           r"\ifPDFTeX\usepackage[utf8]{inputenc}\usepackage[T1]{fontenc}\else\usepackage{fontspec}\fi", r"\usepackage{graphicx}",
            r"\usepackage[margin=22mm]{geometry}", rf"\title{{{safe(document.title)}}}", r"\date{}", r"\begin{document}", r"\maketitle"]  # fmt: skip
     for b in document.blocks:
         if isinstance(b, Heading):

@@ -5,6 +5,7 @@ from __future__ import annotations
 
 import json
 import math
+import re
 from collections.abc import Callable, Mapping
 from typing import TYPE_CHECKING, Any
 
@@ -175,19 +176,25 @@ def markdown_of(table: Table) -> str:
 
 
 _LATEX = {
-    "\\": r"\textbackslash{}", "&": r"\&", "%": r"\%", "$": r"\$", "#": r"\#", "_": r"\_", "{": r"\{", "}": r"\}",
-    "~": r"\textasciitilde{}", "^": r"\textasciicircum{}", "<": r"\textless{}", ">": r"\textgreater{}", "−": "$-$", "×": r"$\times$", "²": r"\textsuperscript{2}",
+    "\\": r"\textbackslash{}", "&": r"\&", "%": r"\%", "$": r"\$", "#": r"\#", "_": r"\_", "{": r"\{", "}": r"\}", "~": r"\textasciitilde{}",
+    "^": r"\textasciicircum{}", "<": r"\textless{}", ">": r"\textgreater{}", "−": "$-$", "×": r"$\times$", "±": r"$\pm$", "·": r"$\cdot$", "≥": r"$\geq$", "≤": r"$\leq$",
+    "→": r"$\to$", "∞": r"$\infty$", "τ": r"$\tau$", "λ": r"$\lambda$", "Λ": r"$\Lambda$", "σ": r"$\sigma$", "χ": r"$\chi$", "½": r"$\frac12$", "…": r"\dots{}", "▸": "",
 }  # fmt: skip
+_SUPERSCRIPTS = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁻", "0123456789-")
+
+
+def latex_text(text: str) -> str:
+    """Text with LaTeX's own characters escaped and superscripts set as such."""
+    out = "".join(_LATEX.get(ch, ch) for ch in plain(text))
+    return re.sub("[⁰¹²³⁴⁵⁶⁷⁸⁹⁻]+", lambda m: f"$^{{{m.group().translate(_SUPERSCRIPTS)}}}$", out)
 
 
 def latex_of(table: Table) -> str:
     """A table environment with tabular and caption; plain LaTeX, no packages needed."""
 
-    def safe(text: str) -> str:
-        return "".join(_LATEX.get(ch, ch) for ch in text)
-
+    safe = latex_text
     columns = _laid_out(table)
-    lines = [r"\begin{table}", rf"\caption{{{safe(plain(table.question or table.name))}}}"]
+    lines = [r"\begin{table}", rf"\caption{{{safe(table.question or table.name)}}}"]
     lines.append(r"\begin{tabular}{" + "".join("l" if c.kind == "text" else "r" for c in columns) + "}")
     lines += [r"\hline", " & ".join(safe(c.header) for c in columns) + r" \\", r"\hline"]
     for row in table.shown[[c.key for c in columns]].itertuples(index=False, name=None):
