@@ -216,6 +216,19 @@ class Record:
         return np.concatenate(list(self.draws(count, seed))) if count else np.empty((0, len(self)))
 
 
+AFTER = "after the present"
+
+
+def after_note(record: Record) -> str | None:
+    """What lies after the present, and the option that would take it in, in a sentence; None where nothing does."""
+    late = record.best[record.best > record.present]
+    if not len(late):
+        return None
+    lie, are, them = ("milestones lie", "are", "them") if len(late) > 1 else ("milestone lies", "is", "it")
+    value = np.floor(float(late.max())) + 1
+    return f"{len(late)} {lie} {AFTER} {record.present:.10g} ({record.present_from}) and {are} left out; --present {value:.0f} takes {them} in"
+
+
 @dataclass(frozen=True)
 class Window:
     """The milestones an analysis sees, in order of best date (ties by id).

@@ -4,12 +4,10 @@
 from __future__ import annotations
 
 from dataclasses import replace
-from typing import Any
 
 import numpy as np
 
-from ..errors import WrongUse
-from ..trend.exposure import Exposure
+from ..trend.exposure import exposure_of
 from .check import Answer, Check, Context
 from .growth import growth
 from .offset import offset
@@ -54,17 +52,6 @@ def run(context: Context) -> Answer:
         "over the window"
     )
     return Answer((new,), text, "growth per unit of exposure, and where the exposure comes from", tuple(notes), 0)
-
-
-def exposure_of(given: Any) -> Exposure:
-    """The exposure as given, or from a pair of columns or a two-column array of years and values."""
-    if isinstance(given, Exposure):
-        return given
-    array = np.asarray(given, dtype=float)
-    if array.ndim != 2 or 2 not in array.shape:
-        raise WrongUse("exposure needs two columns: years and values")
-    years, values = array if array.shape[0] == 2 else array.T
-    return Exposure.of(years, values)
 
 
 CHECK = Check("exposure", "Did the number of people who could make or note a milestone grow instead?", "a table of exposure by year", run)

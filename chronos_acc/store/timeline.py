@@ -13,7 +13,7 @@ import numpy.typing as npt
 
 from ..errors import RecordRefused, WrongUse
 from ..merge.entries import Entries, Floats, Ints
-from ..record import NORMAL, UNIFORM, Record
+from ..record import NORMAL, UNIFORM, Record, after_note
 from .ledger import Ledger, open_for_reading
 
 if TYPE_CHECKING:
@@ -172,15 +172,8 @@ def record_open(
     if present is None:
         whole = replace(whole, present=default, present_from=origin)
     chosen = whole.only(sources=sources, min_support=min_support, category=category, present=present, start=start)
-    late = int((chosen.best > chosen.present).sum())
-    notes = list(chosen.notes)
-    if late:
-        youngest = float(chosen.best.max())
-        notes.append(
-            f"{late} {'milestones lie' if late > 1 else 'milestone lies'} after the present {chosen.present:g} ({chosen.present_from}) and"
-            f" {'are' if late > 1 else 'is'} left out; --present {int(np.floor(youngest)) + 1} takes {'them' if late > 1 else 'it'} in"
-        )
-    return replace(chosen, notes=tuple(notes))
+    late = after_note(chosen)
+    return replace(chosen, notes=(*chosen.notes, late)) if late else chosen
 
 
 def _whole(ledger: Ledger) -> Record:

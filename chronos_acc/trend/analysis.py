@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 
 from ..errors import RecordRefused, WrongUse
 from ..progress import Tell, silent
-from ..record import Record, Window
+from ..record import AFTER, Record, Window, after_note
 from .age_exponent import ExponentRow, age_exponent
 from .capture import Capture, against_forgetting, corrected_growth
 from .forgetting import LN2, Tipping, tipping, wider
@@ -204,6 +204,7 @@ def analyse(
     time into operational time before anything else. half_life and scale (years) add recall_decay nulls that were not fitted. Raises
     RecordRefused below three milestones, or where all stand at the present.
     """
+    late = after_note(record)  # in years, whatever time the analysis runs in
     if exposure is not None:
         from .exposure import operational
 
@@ -272,7 +273,7 @@ def analyse(
         judged=judge(evidence),
         made=made,
         next_event=following,
-        notes=_notes(record, window, tests, laws, regressions, nulls, lines, tip, capture, studies, following, told=against_forgetting(capture, tip)),
+        notes=_notes(record, window, tests, laws, regressions, nulls, lines, tip, capture, studies, following, late=late, told=against_forgetting(capture, tip)),
     )
 
 
@@ -356,11 +357,11 @@ def evidence_of(
     )
 
 
-def _notes(record: Record, window: Window, *parts: Any, told: str = "") -> tuple[str, ...]:
+def _notes(record: Record, window: Window, *parts: Any, late: str | None, told: str) -> tuple[str, ...]:
     """What a reader should know, once each: the record's own remarks, the window's, then every part's."""
-    notes = list(record.notes)
-    if window.after and not any("after the present" in n for n in notes):
-        notes.append(f"{_milestones(window.after)} after the present {window.present:g} left out; --present takes them in")
+    # whoever made the record may have said what lies after its present, of a present changed since
+    notes = [n for n in record.notes if AFTER not in n]
+    notes.extend([late] if late else [])
     if window.before and not any("before the start" in n for n in notes):
         notes.append(f"{_milestones(window.before)} before the start {window.start:g} left out; an earlier --start takes them in")
     if window.closing:

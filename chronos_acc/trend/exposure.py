@@ -78,11 +78,11 @@ def operational(record: Record, exposure: Exposure | tuple[Sequence[float], Sequ
     """The record in operational time, scaled so that the window keeps its present and its length: its years are mean years of
     exposure.
 
-    exposure: an Exposure, a pair (years, values), or a table with columns year and exposure. Datings go along by their bounds.
+    exposure: whatever ``exposure_of`` reads. Datings go along by their bounds.
     Raises RecordRefused where the rows do not cover the window. Log-likelihoods of laws are then per operational year: they compare
     laws, not a run with exposure and one without.
     """
-    series = _as_exposure(exposure)
+    series = exposure_of(exposure)
     window = record.window
     first, last = series.covers
     if not window.span > 0:
@@ -128,16 +128,32 @@ def operational(record: Record, exposure: Exposure | tuple[Sequence[float], Sequ
     )
 
 
-def _as_exposure(exposure: Any) -> Exposure:
-    if isinstance(exposure, Exposure):
-        return exposure
-    if isinstance(exposure, tuple) and len(exposure) == 2:
-        return Exposure.of(*exposure)
+def exposure_of(given: Any) -> Exposure:
+    """The exposure as given, or from a pair (years, values), a table with columns year and exposure, or an array of two columns or two rows.
+
+    Raises WrongUse for anything else.
+    """
+    if isinstance(given, Exposure):
+        return given
+    if isinstance(given, tuple) and len(given) == 2:
+        return Exposure.of(*given)
     try:
-        years, values = exposure["year"], exposure["exposure"]
-    except (KeyError, TypeError, IndexError) as error:
-        raise WrongUse("exposure must be two columns, year and exposure") from error
+        years, values = given["year"], given["exposure"]
+    except (KeyError, TypeError, IndexError, ValueError):
+        years, values = _two_columns(given)
     return Exposure.of(np.asarray(years, dtype=float), np.asarray(values, dtype=float))
+
+
+def _two_columns(given: Any) -> tuple[Floats, Floats]:
+    wrong = "exposure must be two columns, year and exposure"
+    try:
+        array = np.asarray(given, dtype=float)
+    except (TypeError, ValueError) as error:
+        raise WrongUse(wrong) from error
+    if array.ndim != 2 or 2 not in array.shape:
+        raise WrongUse(wrong)
+    years, values = array.T if array.shape[1] == 2 else array
+    return years, values
 
 
 def read_exposure(path: Path) -> Exposure:

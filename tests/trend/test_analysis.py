@@ -6,12 +6,13 @@ from __future__ import annotations
 import json
 import math
 import re
+from dataclasses import replace
 
 import numpy as np
 import pytest
 
 from chronos_acc.errors import RecordRefused
-from chronos_acc.record import Record
+from chronos_acc.record import Record, after_note
 from chronos_acc.trend.analysis import Trend, analyse
 
 
@@ -231,5 +232,24 @@ def test_given_forgetting_next_and_exposure() -> None:
 def test_notes_name_what_was_left_out() -> None:
     record = Record.from_dates([900.0, 1000, 1100, 1200, 1300, 1300, 1500, 2000, 2050], present=2000, start=1000)
     notes = " ".join(_quick(record).notes)
-    assert "1 milestone after the present" in notes and "1 milestone before the start" in notes
+    assert "1 milestone lies after the present 2000 (given) and is left out; --present 2051 takes it in" in notes and "1 milestone before the start" in notes
     assert "closes the window" in notes and "instant of the start" in notes and "zero length" in notes
+
+
+def test_one_sentence_names_what_lies_after_the_present() -> None:
+    dates = [1000.0, 1100, 1200, 1300, 1400, 1500, 1990.5, 2010.25, 2030.75]
+    record = Record.from_dates(dates, present=2000)
+    noted = replace(record, notes=(after_note(record) or "",))  # as a timeline hands it over
+    years = np.arange(900.0, 2101.0)
+    for given, present, value in (
+        (record, 2000, 2031),
+        (noted, 2000, 2031),
+        (noted.only(present=1900), 1900, 2031),  # the sentence follows the present
+        (noted.only(present=2020), 2020, 2031),
+    ):
+        for exposure in (None, (years, np.exp2((years - 2000) / 300))):
+            notes = [n for n in analyse(given, draws=0, replicates=19, bootstrap=19, exposure=exposure).notes if "after the present" in n]
+            assert len(notes) == 1 and f"after the present {present} " in notes[0] and f"--present {value} takes" in notes[0], notes
+    inside = noted.only(present=2031)
+    assert not any("after the present" in n for n in analyse(inside, draws=0, replicates=19, bootstrap=19).notes)
+    assert inside.window.after == 0

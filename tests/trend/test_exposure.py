@@ -6,12 +6,13 @@ from __future__ import annotations
 from pathlib import Path
 
 import numpy as np
+import pandas as pd
 import pytest
 from scipy import integrate
 
 from chronos_acc.errors import ListRefused, RecordRefused, WrongUse
 from chronos_acc.record import Record
-from chronos_acc.trend.exposure import Exposure, operational, read_exposure
+from chronos_acc.trend.exposure import Exposure, exposure_of, operational, read_exposure
 from chronos_acc.trend.rate_laws import fit_laws
 from chronos_acc.trend.trend_tests import run_tests
 
@@ -95,3 +96,22 @@ def test_reading_a_file(tmp_path: Path) -> None:
             read_exposure(file)
     with pytest.raises(ListRefused, match="readable"):
         read_exposure(tmp_path / "missing.csv")
+
+
+def test_every_way_to_give_an_exposure_is_read_alike() -> None:
+    years, values = np.array([1900.0, 1950.0, 2000.0]), np.array([1.0, 2.0, 5.0])
+    for given in (
+        Exposure.of(years, values),
+        (years, values),
+        {"year": years, "exposure": values},
+        pd.DataFrame({"year": years, "exposure": values}),
+        np.column_stack([years, values]),
+        np.vstack([years, values]),
+        [[1900, 1], [1950, 2], [2000, 5]],
+    ):
+        found = exposure_of(given)
+        assert found.years.tolist() == years.tolist() and found.values.tolist() == values.tolist()
+    assert exposure_of([[1900, 1], [2000, 5]]).years.tolist() == [1900, 2000]  # two by two: a row is a year
+    for wrong in (3.0, "people.csv", {"when": [1, 2]}, np.ones((3, 3)), [["a", "b"], ["c", "d"]], None):
+        with pytest.raises(WrongUse, match="two columns, year and exposure"):
+            exposure_of(wrong)
