@@ -15,6 +15,7 @@ import numpy as np
 import numpy.typing as npt
 
 from .errors import WrongUse
+from .notebook import ShowsInNotebook
 from .progress import Tell, silent
 from .record import Record, Window
 
@@ -30,7 +31,7 @@ LOW, HIGH = 0.025, 0.975
 
 
 @dataclass(frozen=True)
-class Intervals:
+class Intervals(ShowsInNotebook):
     """One row a milestone inside the window (w rows), by best date, ties by id; years throughout.
 
     milestone (w,) ids; title; year (w,) best dates in decimal years; age (w,) present minus year; interval (w,) to the next best date, the

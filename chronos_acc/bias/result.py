@@ -8,6 +8,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
+from ..notebook import ShowsInNotebook
 from .check import COLUMNS, Answer, Check, Row
 from .growth import Growth
 from .rows import LEVEL, number
@@ -19,7 +20,7 @@ SUMMARY_COLUMNS = (*COLUMNS, "question", "published", "published_p_value", "find
 
 
 @dataclass(frozen=True)
-class Bias:
+class Bias(ShowsInNotebook):
     """``answers`` by check, in order; ``published`` the growth of the record as it stands (per year); what made the result."""
 
     answers: Mapping[str, Answer]

@@ -18,6 +18,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from ..errors import ListRefused
+from ..notebook import ShowsInNotebook
 from .ledger import Ledger, open_for_reading
 from .linking import active_decisions, stored_options
 from .orders import apart, statements
@@ -31,7 +32,7 @@ PairSet = frozenset[tuple[int, int]]
 
 
 @dataclass(frozen=True)
-class GoldCheck:
+class GoldCheck(ShowsInNotebook):
     """Agreement with a gold file over pairs of entries: ``pairs`` inside milestones, ``gold_pairs`` in the file, ``right`` in both.
 
     precision = right / pairs, recall = right / gold_pairs, f1 their harmonic mean; None where there is nothing to divide by. curve: one row

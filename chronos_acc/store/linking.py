@@ -8,21 +8,25 @@ from collections import Counter
 from collections.abc import Sequence
 from dataclasses import asdict, dataclass, replace
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from ..merge.entries import Decision, Entries, Ints, Linked, LinkOptions
+from ..notebook import ShowsInNotebook
 from ..progress import Tell, silent
 from . import orders
 from .ledger import Ledger, open_for_writing
 from .timeline import ancestry, read_entries, texts
 
+if TYPE_CHECKING:
+    import pandas as pd
+
 PARTS = ("title", "gap", "title_evidence", "date_evidence", "category_evidence", "prior", "rivals")
 
 
 @dataclass(frozen=True)
-class LinkSummary:
+class LinkSummary(ShowsInNotebook):
     """What linking did: entries taken, pairs scored, pairs linked and waiting for review, milestones made, remarks."""
 
     entries: int
@@ -31,6 +35,12 @@ class LinkSummary:
     to_review: int
     milestones: int
     notes: tuple[str, ...] = ()
+
+    def to_frame(self) -> pd.DataFrame:
+        """One row: entries, pairs_scored, linked, to_review, milestones, notes joined by "; "."""
+        import pandas as pd
+
+        return pd.DataFrame([asdict(self) | {"notes": "; ".join(self.notes)}])
 
 
 def relink(db: str | Path, *, options: LinkOptions | None = None, tell: Tell = silent) -> LinkSummary:

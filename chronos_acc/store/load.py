@@ -14,6 +14,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any, BinaryIO
 
 from ..errors import ListRefused, Refused, SheetRefused
+from ..notebook import ShowsInNotebook
 from ..progress import Tell, silent
 from .dates import date_rows
 from .enter import Change, enter, former
@@ -29,7 +30,7 @@ if TYPE_CHECKING:
 
 
 @dataclass(frozen=True)
-class Loaded:
+class Loaded(ShowsInNotebook):
     """What became of one list.
 
     rows_read = rows_loaded + rows_rejected. added, changed and gone compare its entries with those of the load before; duplicates are

@@ -8,6 +8,7 @@ from dataclasses import dataclass, field, fields
 from typing import TYPE_CHECKING, Any
 
 from ..errors import RecordRefused, WrongUse
+from ..notebook import ShowsInNotebook
 from ..progress import Tell, silent
 from ..record import AFTER, Record, Window, after_note
 from .age_exponent import ExponentRow, age_exponent
@@ -32,7 +33,7 @@ SHOWN_LEVERAGE = 5  # intervals named in the document; the frame has all
 
 
 @dataclass(frozen=True)
-class Trend:
+class Trend(ShowsInNotebook):
     """Everything ``analyse`` found. ``to_dict`` is the JSON document, ``tables`` the frames by name, in reading order."""
 
     record: Record

@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 import numpy.typing as npt
 
+from ...notebook import ShowsInNotebook
 from ..result import plain
 from .choices import ARBITRARY, BY_NAME, CHOICES, Choices, Option
 from .variance import shares
@@ -84,7 +85,7 @@ class Line:
 
 
 @dataclass(frozen=True)
-class Grid:
+class Grid(ShowsInNotebook):
     """``lines`` in order of number; ``z_joint`` (B, combinations) z of every combination on each null record, None without the
     joint test; ``declared`` how many combinations the choices make.
     """
