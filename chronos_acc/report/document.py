@@ -5,12 +5,12 @@ from __future__ import annotations
 
 import html
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
-from .formats import _laid_out, latex_of, latex_text, markdown_of, text_cell
+from .formats import _laid_out, latex_text, markdown_of, text_cell
 from .plain import plain
-from .tables import Table
+from .tables import Table, columns_of
 
 
 @dataclass(frozen=True)
@@ -171,7 +171,7 @@ def _latex(document: Document, path: Path, written: list[Path]) -> str:
     safe = latex_text
     # other scripts than Latin in titles: compile with LuaLaTeX, which reads them all
     out = [r"\documentclass[11pt]{article}", r"\usepackage{iftex}",
-           r"\ifPDFTeX\usepackage[utf8]{inputenc}\usepackage[T1]{fontenc}\else\usepackage{fontspec}\fi", r"\usepackage{graphicx}",
+           r"\ifPDFTeX\usepackage[utf8]{inputenc}\usepackage[T1]{fontenc}\else\usepackage{fontspec}\fi", r"\usepackage{graphicx,array,longtable}",
            r"\usepackage[margin=22mm]{geometry}", rf"\title{{{safe(document.title)}}}", r"\date{}", r"\begin{document}", r"\maketitle"]  # fmt: skip
     for b in document.blocks:
         if isinstance(b, Heading):
@@ -187,10 +187,36 @@ def _latex(document: Document, path: Path, written: list[Path]) -> str:
                 target = _figure_folder(path) / f"{b.name}.pdf"
                 b.pdf(target)
                 written.append(target)
-                out += [r"\begin{figure}\centering", rf"\includegraphics[width=\linewidth]{{{target.parent.name}/{target.name}}}",
+                out += [r"\begin{figure}[htbp]\centering", rf"\includegraphics[width=\linewidth]{{{target.parent.name}/{target.name}}}",
                         rf"\caption{{{safe(b.caption)}}}", r"\end{figure}"]  # fmt: skip
             else:
                 out += [r"\begin{verbatim}", b.characters.rstrip("\n"), r"\end{verbatim}", safe(b.caption), ""]
         else:
-            out.append(latex_of(b).replace(r"\begin{table}", r"\begin{table}[htbp]\tiny"))
+            out.append(_long_table(b))
     return "\n".join([*out, r"\end{document}", ""])
+
+
+PAGE = 118  # characters of a table's line at the size used below
+
+
+def _long_table(table: Table) -> str:
+    """A table that runs over pages; columns that do not fit the page are left out and named, as on a narrow screen."""
+    from rich.cells import cell_len
+
+    from .terminal import fitting
+
+    if table.shown.empty:
+        return rf"\textbf{{{latex_text(table.question)}}} {latex_text(table.empty)}" + "\n"
+    columns, dropped, cells = fitting(replace(table, columns=tuple(c for c in table.columns or columns_of(table.shown) if c.kind != "bar")), PAGE)
+    natural = {c.key: max(cell_len(t) for t in (c.header, *cells[c.key])) for c in columns}
+    room = PAGE - sum(n + 2 for k, n in natural.items() if n <= 24)
+    wide = [c.key for c in columns if natural[c.key] > 24]
+    share = {k: max(14.0, min(natural[k], room * natural[k] / sum(natural[w] for w in wide))) / PAGE for k in wide}
+    spec = "".join(rf">{{\raggedright\arraybackslash}}p{{{share[c.key]:.3f}\linewidth}}" if c.key in share else "l" if c.kind == "text" else "r" for c in columns)
+    lines = [r"{\scriptsize\setlength{\tabcolsep}{3pt}", rf"\begin{{longtable}}[l]{{@{{}}{spec}@{{}}}}",
+             rf"\multicolumn{{{len(columns)}}}{{@{{}}p{{\linewidth}}@{{}}}}{{\textbf{{{latex_text(table.question or table.name)}}}}}\\",
+             r"\hline", " & ".join(latex_text(c.header) for c in columns) + r" \\ \hline", r"\endhead"]  # fmt: skip
+    lines += [" & ".join(latex_text(cells[c.key][i]) for c in columns) + r" \\" for i in range(len(table.shown))]
+    lines += [r"\hline", r"\end{longtable}"]
+    below = [*table.below, *([f"not shown at this width: {', '.join(c.header for c in dropped)}"] if dropped else [])]
+    return "\n".join([*lines, *(latex_text(t) + r"\\" for t in below), "}", ""])

@@ -60,13 +60,10 @@ def _draw_table(console: Console, table: Table, width: int) -> None:
     if table.question:
         console.print(Text("▸ ", style="bold cyan") + Text(plain(table.question), style="bold"))
     frame = table.shown
-    columns = table.columns if table.columns is not None else columns_of(frame)
-    columns = tuple(c for c in columns if c.key in frame.columns)
     if frame.empty:
         console.print(Padding(Text(table.empty, style="dim"), (0, 0, 0, 2)))
     else:
-        cells = {c.key: _cells(frame[c.key].tolist(), c) for c in columns}
-        columns, dropped = _fitting(columns, cells, width)
+        columns, dropped, cells = fitting(table, width)
         grid = Grid(box=_BOX, show_edge=False, pad_edge=False, padding=(0, _GAP - 1, 0, 0), header_style="dim", expand=False)
         for c in columns:
             left = c.kind == "bar" or (c.kind == "text" and not _numeric(frame[c.key]))
@@ -80,6 +77,14 @@ def _draw_table(console: Console, table: Table, width: int) -> None:
             console.print(Padding(Text(f"not shown at this width: {names}", style="dim"), (0, 0, 0, 1)))
     for line in table.below:
         console.print(Padding(Text(plain(line), style="dim"), (0, 0, 0, 1)))
+
+
+def fitting(table: Table, width: int) -> tuple[tuple[Column, ...], list[Column], dict[str, list[str]]]:
+    """The columns that fit into ``width`` characters, those that do not, and every cell as text by column."""
+    columns = table.columns if table.columns is not None else columns_of(table.shown)
+    columns = tuple(c for c in columns if c.key in table.shown.columns)
+    cells = {c.key: _cells(table.shown[c.key].tolist(), c) for c in columns}
+    return (*_fitting(columns, cells, width), cells)
 
 
 def _cells(values: Sequence[Any], column: Column) -> list[str]:

@@ -82,7 +82,9 @@ def build(m: Material, *, figures: bool) -> Document:
     ]
     if m.grid is not None:
         blocks += [Heading("Which choices matter?"), *grid_tables(m.grid), *_charts(m, ("grid",), figures)]
-    notes = tuple(dict.fromkeys([*trend["notes"], *m.bias.to_dict().get("notes", [])]))
+    of_checks = m.bias.to_dict().get("notes", [])
+    said = {note.partition(": ")[2] for note in of_checks}
+    notes = tuple(dict.fromkeys([*(n for n in trend["notes"] if n not in said), *of_checks]))
     marks = _marks(m)
     blocks += [
         Heading("Remarks"),
