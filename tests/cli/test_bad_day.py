@@ -173,7 +173,7 @@ WORDS = st.one_of(
 
 
 @given(st.lists(WORDS, max_size=6))
-@settings(max_examples=250, deadline=None, suppress_health_check=list(HealthCheck))
+@settings(max_examples=int(os.environ.get("CHRONOS_ACC_COMMAND_LINES", "250")), deadline=None, suppress_health_check=list(HealthCheck))
 def test_random_command_lines_never_end_in_a_traceback(tmp_path_factory, words):
     """10,000 of them were run for the table in DEVELOPERS.md; the suite takes 250."""
     if any(w in words for w in ("demo", "grid", "report")) and "--help" not in words:
