@@ -352,10 +352,21 @@ def evidence_of(
         slope=None if slope is None else slope.observed,
         slope_p=None if slope is None else slope.p_value,
         lists=len(capture.lists),
+        order=order_of(window),
+        before=0.0 if window.opened_by_milestone or not len(window.times) else float(window.times[0] - window.start),
+        after=float(window.present - window.times[-1]) if len(window.times) else 0.0,
         corrected=doublings(capture.growth),
         corrected_low=doublings(capture.low),
         corrected_high=doublings(capture.high),
     )
+
+
+def order_of(window: Window) -> str:
+    """How the closed intervals run: speeding where the milestones between the first and the last stand later, on average, than the same
+    intervals do in random order, which put them half way."""
+    first, last = window.present - window.times[0], window.present - window.times[-1]  # ages keep their digits near the present
+    late = float((0.5 * (first + last) - window.ages).mean())
+    return "none" if abs(late) <= 1e-12 * float(first - last) else "speeding" if late > 0 else "slowing"
 
 
 def _notes(record: Record, window: Window, *parts: Any, late: str | None, told: str) -> tuple[str, ...]:

@@ -73,6 +73,9 @@ class Evidence:
     corrected: float | None = None
     corrected_low: float | None = None
     corrected_high: float | None = None
+    order: str = ""  # how the closed intervals run, beside the same in another order: speeding, slowing, none
+    before: float = 0.0  # years from a given start to the first milestone
+    after: float = 0.0  # years from the last milestone to the present
 
     @property
     def p1_shows(self) -> bool:
@@ -81,8 +84,23 @@ class Evidence:
 
     @property
     def p2_shows(self) -> bool:
-        """Uneven spacing alone is rejected."""
-        return self.p2 is not None and self.p2 < LEVEL
+        """Uneven spacing alone is rejected, in the direction of laplace: intervals whose order runs the other way do not bear it out."""
+        return self.p2 is not None and self.p2 < LEVEL and not self.contrary
+
+    @property
+    def contrary(self) -> bool:
+        """The order of the closed intervals runs against laplace, which then owes its sign to the ends of the window."""
+        return {self.order, self.direction} == {"speeding", "slowing"}
+
+    @property
+    def kept_empty(self) -> float | None:
+        """Years at the end of the window that laplace's direction owes something to: longer than a steady rate leaves empty at 5 %."""
+        years = self.before if self.direction == "speeding" else self.after
+        return years if years > 0 and self.chance_of_empty(years) < LEVEL else None
+
+    def chance_of_empty(self, years: float) -> float:
+        """That a steady rate leaves so long a stretch at one end of the window without any of the counted milestones."""
+        return float(max(1.0 - years / self.span, 0.0) ** self.n) if self.span > 0 else 1.0
 
     @property
     def both(self) -> bool:
@@ -153,9 +171,29 @@ def _no_trend(e: Evidence) -> str:
 def _uneven(e: Evidence) -> str:
     p2 = f" (lewis_robinson {words.p(e.p2)})" if e.p2 is not None else ""
     p1 = f" (laplace {words.p(e.p1)})" if e.p1 is not None else ""
+    if e.contrary and e.p2 is not None and e.p2 < LEVEL:
+        said = f"but the order of the intervals does not bear it out: it runs the other way, towards {e.order}{p2}."
+        return f"Uneven spacing alone gives this: evenly random milestones would not{p1}, {said}{_kept(e)}"
     return (
         f"Uneven spacing alone gives this: evenly random milestones would not{p1}, but the same intervals in another order often look as "
-        f"trended{p2}."
+        f"trended{p2}.{_kept(e)}"
+    )
+
+
+def _kept(e: Evidence) -> str:
+    """The stretch at an end of the window that no other order of the intervals moves."""
+    if e.kept_empty is None:
+        return ""
+    chance = words.p(e.chance_of_empty(e.kept_empty))
+    if e.direction == "speeding":
+        return (
+            f" The {words.years(e.kept_empty)} from the given start to the first milestone are empty ({chance} at a steady rate) and stay so in "
+            "every order: the crowding comes from them, and only they would speak for speeding. Without --start the first milestone opens "
+            "the window, and the rest is judged by itself."
+        )
+    return (
+        f" The {words.years(e.kept_empty)} since the last milestone are empty ({chance} at a steady rate) and stay so in every order: the "
+        "thinning comes from them. Look at the recent end: an earlier --present judges the rest by itself."
     )
 
 
@@ -290,7 +328,7 @@ def weakest_null(e: Evidence) -> str | None:
         return None
     if e.p1 >= LEVEL:
         return "steady"
-    if e.p2 is None or e.p2 >= LEVEL:
+    if not e.p2_shows:
         return "shuffled"
     if e.direction == "speeding":
         if e.form is not None:

@@ -6,6 +6,8 @@ from __future__ import annotations
 import json
 import math
 import re
+from collections import Counter
+from collections.abc import Callable
 from dataclasses import replace
 
 import numpy as np
@@ -13,7 +15,9 @@ import pytest
 
 from chronos_acc.errors import RecordRefused
 from chronos_acc.record import Record, after_note
-from chronos_acc.trend.analysis import Trend, analyse
+from chronos_acc.trend.analysis import Trend, analyse, order_of
+from chronos_acc.trend.trend_tests import run_tests
+from chronos_acc.trend.verdict import Evidence, judge
 
 
 def _quick(record: Record, seed: int = 1) -> Trend:
@@ -253,3 +257,37 @@ def test_one_sentence_names_what_lies_after_the_present() -> None:
     inside = noted.only(present=2031)
     assert not any("after the present" in n for n in analyse(inside, draws=0, replicates=19, bootstrap=19).notes)
     assert inside.window.after == 0
+
+
+def _codes(ages: Callable[[np.random.Generator], np.ndarray], before: float, records: int = 40) -> Counter[str]:
+    """Verdicts by the two tests alone, on records of 40 in 1,000 years whose start lies ``before`` years before."""
+    found: Counter[str] = Counter()
+    for s in range(records):
+        window = Record.from_dates(2000 - ages(np.random.default_rng([s, 9])), present=2000, start=1000 - before).window
+        tests = run_tests(window, seed=1, replicates=199)
+        laplace, lewis = tests.row("laplace"), tests.row("lewis_robinson")
+        e = Evidence(
+            window.n, window.n - 1, window.span, laplace.p_exact, lewis.p_exact, laplace.direction, order=order_of(window),
+            before=float(window.times[0] - window.start),
+        )  # fmt: skip
+        found[judge(e).code] += 1
+        if judge(e).code == "uneven" and before >= 500:
+            assert "from the given start to the first milestone are empty" in judge(e).sentence
+    return found
+
+
+def test_a_start_far_before_the_first_milestone() -> None:
+    """The interval from a given start to the first milestone is never permuted: a steady record in a window that begins far too early is
+    uneven, growth stays growth, and what slows down is not called speeding."""
+
+    def growing(rng: np.random.Generator) -> np.ndarray:
+        return np.asarray(-1000 / 4 * np.log1p(rng.random(40) * np.expm1(-4.0)))
+
+    steady = {before: _codes(lambda rng: 1000 * rng.random(40), before) for before in (0.0, 500.0, 9000.0)}
+    assert steady[0.0]["no_trend"] >= 35
+    assert steady[500.0]["uneven"] >= 35 and steady[9000.0]["uneven"] >= 35
+    for before in (0.0, 9000.0):
+        found = _codes(growing, before)
+        assert found["shape"] + found["forgetting"] >= 36
+    slowing = _codes(lambda rng: 1000 - growing(rng), 9000.0)
+    assert slowing["uneven"] == 40

@@ -164,3 +164,23 @@ def test_numbers_in_words() -> None:
     assert [words.digits(v) for v in (0, -0.82, 1234.5, 2.5e8, float("inf"))] == ["0", "−0.82", "1,200", "2.5 × 10^8", "unbounded"]
     assert (words.p(0.0001), words.p(0.034), words.p(0.34)) == ("p < 0.001", "p = 0.034", "p = 0.34")
     assert words.listed(["a"]) == "a" and words.listed(["a", "b", "c"]) == "a, b and c" and words.listed([]) == ""
+
+
+def test_rule_2_says_when_the_trend_lies_in_an_end_that_no_order_moves() -> None:
+    far = replace(BASE, p2=0.4, span=1500.0, before=500.0, order="speeding")
+    verdict = judge(far)
+    assert (verdict.code, verdict.weakest_null) == ("uneven", "shuffled")
+    assert "500 years from the given start to the first milestone are empty (p < 0.001" in verdict.sentence
+    assert "Without --start" in verdict.sentence
+    assert "given start" not in judge(replace(far, before=20.0)).sentence  # as long as a steady rate leaves it
+    assert "given start" not in judge(replace(far, before=0.0)).sentence
+    recent = judge(replace(far, direction="slowing", order="slowing", before=500.0, after=400.0))
+    assert recent.code == "uneven" and "400 years since the last milestone" in recent.sentence and "given start" not in recent.sentence
+
+
+def test_intervals_that_run_the_other_way_do_not_bear_the_direction_out() -> None:
+    other = judge(replace(BASE, order="slowing", span=1500.0, before=600.0))
+    assert (other.code, other.clauses, other.weakest_null) == ("uneven", (), "shuffled")
+    assert "runs the other way, towards slowing (lewis_robinson p = 0.002)" in other.sentence
+    for order in ("speeding", "none", ""):
+        assert judge(replace(BASE, order=order)).code == "forgetting"
