@@ -185,7 +185,7 @@ def test_random_command_lines_never_end_in_a_traceback(tmp_path_factory, words):
     os.chdir(folder)
     try:
         with contextlib.redirect_stdout(out), contextlib.redirect_stderr(err), pytest.MonkeyPatch.context() as patch:
-            patch.setattr("sys.stdin", io.StringIO(""))
+            patch.setattr("sys.stdin", io.TextIOWrapper(io.BytesIO(b"")))
             status = main([w for w in words if "\0" not in w])
     finally:
         os.chdir(was)

@@ -31,7 +31,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
 
     try:
         loaded = load(timeline(options), options.files, compiled=options.compiled, as_format=options.as_format, link=not options.no_link,
-                      strict=options.strict, stdin=sys.stdin.buffer if "-" in options.files else None, encoding=options.encoding, tell=out.tell)  # fmt: skip
+                      strict=options.strict, stdin=sys.stdin.buffer if "-" in options.files and sys.stdin is not None else None, encoding=options.encoding, tell=out.tell)  # fmt: skip
     except ListRefused as refused:
         if refused.loaded:  # one list was refused; what came of the others is said before
             out.page(load_page(refused.loaded))
