@@ -12,6 +12,7 @@ import numpy.typing as npt
 from ..record import Window
 from . import kernels
 from .null_model import youngest_floor
+from .positions import rounding
 
 Floats = npt.NDArray[np.float64]
 
@@ -34,6 +35,37 @@ def age_fractions(times: Floats, window: Window) -> Floats:
     return np.asarray(np.where(fraction <= 0, edge, np.where(fraction >= 1, 1.0 - edge, fraction)))
 
 
+def _spread_ages(times: Floats, window: Window) -> Floats:
+    """(s, n) the same with equal dates at fixed mid-ranks within their dating, as the tests and laws place them (``positions``)."""
+    ages = age_fractions(times, window)
+    counted = times[..., window.opening : times.shape[-1] - window.closing]
+    equal = counted[..., 1:] == counted[..., :-1]
+    rows = np.nonzero(equal.any(axis=-1))[0]
+    if not len(rows) or not window.unit.any():
+        return ages
+    equal, v = equal[rows], ages[rows]
+    place = np.arange(v.shape[-1])
+    edge = np.zeros((len(rows), 1), bool)
+    first = np.maximum.accumulate(np.where(np.concatenate([edge, equal], axis=-1), 0, place), axis=-1)
+    last = np.minimum.accumulate(np.where(np.concatenate([equal, edge], axis=-1), place[-1], place)[:, ::-1], axis=-1)[:, ::-1]
+    size = last - first + 1
+    width = np.minimum(_units(counted[rows], window) / window.span, 2.0 * np.minimum(v, 1.0 - v))
+    out = ages.copy()
+    out[rows] = np.sort(v - width * (place - first + 0.5 - size / 2.0) / size, axis=-1)[:, ::-1]
+    return out
+
+
+def _units(times: Floats, window: Window) -> Floats:
+    """(s, n) the width to which each date is dated: that of the window's milestone nearest to it in log age, the narrowest of equal ones."""
+    dates, group = np.unique(window.times, return_inverse=True)
+    narrow = np.full(len(dates), np.inf)
+    np.minimum.at(narrow, group, np.where(window.unit > 0, window.unit, np.inf))
+    unit = np.where(np.isfinite(narrow), narrow, 0.0)[::-1]
+    floor = youngest_floor(window)
+    logs = np.log(np.maximum(window.present - dates, floor))[::-1]
+    return np.asarray(unit[np.searchsorted(0.5 * (logs[1:] + logs[:-1]), np.log(np.maximum(window.present - times, floor)))])
+
+
 def _closed(times: Floats, window: Window) -> Floats:
     """(s, r) closed intervals, milestones in one instant with an end of the window standing for one."""
     return np.diff(times[..., max(window.opening - 1, 0) : times.shape[-1] - max(window.closing - 1, 0)], axis=-1)
@@ -52,21 +84,21 @@ def _laplace(times: Floats, window: Window) -> Floats:
 
 
 def _mil_hdbk(times: Floats, window: Window) -> Floats:
-    return np.asarray(-2.0 * np.log1p(-age_fractions(times, window)).sum(axis=-1))
+    return np.asarray(-2.0 * np.log1p(-_spread_ages(times, window)).sum(axis=-1))
 
 
 def _anderson_darling(times: Floats, window: Window) -> Floats:
     # symmetrical under u -> 1 - u, so age fractions in rising order serve, with full digits near the present
-    return kernels.anderson_darling(age_fractions(times, window)[..., ::-1])
+    return kernels.anderson_darling(_spread_ages(times, window)[..., ::-1])
 
 
 def _reversals(times: Floats, window: Window) -> Floats:
-    # on dense ranks in small integers, which compare faster and keep ties
+    # on dense ranks in small integers, which compare faster and keep ties, also those that only rounding parts
     intervals = _closed(times, window)
     order = np.argsort(intervals, axis=-1)
     ordered = np.take_along_axis(intervals, order, axis=-1)
     dense = np.zeros(intervals.shape, np.int16)
-    dense[..., 1:] = np.cumsum(ordered[..., 1:] > ordered[..., :-1], axis=-1)
+    dense[..., 1:] = np.cumsum(np.diff(ordered, axis=-1) > rounding(window), axis=-1)
     rank = np.empty_like(dense)
     np.put_along_axis(rank, order, dense, axis=-1)
     return kernels.reversals(rank)  # type: ignore[arg-type]

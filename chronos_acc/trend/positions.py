@@ -60,6 +60,11 @@ def positions(window: Window) -> Positions:
     return Positions(x, v, window.start, window.present, window.span, window.opening > 0, window.closing > 0, intervals)
 
 
+def rounding(window: Window) -> float:
+    """Years within which two intervals are the same: only the rounding of their dates to floating point parts them."""
+    return float(8.0 * np.finfo(float).eps * np.abs(window.times).max(initial=0.0))
+
+
 def _spread(times: Floats, unit: Floats, x: Floats, v: Floats, span: float) -> tuple[Floats, Floats]:
     _, group, count = np.unique(times, return_inverse=True, return_counts=True)
     narrow = np.full(len(count), np.inf)

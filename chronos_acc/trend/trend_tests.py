@@ -22,7 +22,7 @@ from ..record import Window
 from . import kernels
 from .exact_laws import LARGEST_EXACT, anderson_darling_tail, reversal_moments, reversal_tails
 from .multiplicity import holm, monte_carlo_p, null_p, step_down_min_p
-from .positions import Floats, positions
+from .positions import Floats, positions, rounding
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -211,10 +211,7 @@ class _Spacing:
             before = float(window.times[0] - window.start)
             if renewal_at_start:
                 intervals, before, counted_first = np.concatenate([[before], intervals]), 0.0, False
-        largest = max(abs(window.start), abs(window.present))
-        return cls(
-            before, _with_exact_ties(intervals, 8.0 * np.finfo(float).eps * largest), window.span, counted_first, not events.closed
-        )
+        return cls(before, _with_exact_ties(intervals, rounding(window)), window.span, counted_first, not events.closed)
 
     def laplace(self, intervals: Floats) -> Floats:
         """Laplace's statistic of the records (...) with these intervals in this order."""

@@ -107,6 +107,8 @@ def test_statistics_are_those_of_the_other_rooms() -> None:
     assert seen["laplace"] == pytest.approx(tests.row("laplace").statistic)
     assert seen["lewis_robinson"] == pytest.approx(tests.row("lewis_robinson").statistic)
     assert seen["reverse_arrangements"] == tests.row("reverse_arrangements").statistic
+    for test in ("mil_hdbk_189", "anderson_darling"):  # year-dated, with ties at mid-ranks
+        assert seen[test] == pytest.approx(tests.row(test).statistic, rel=1e-9), test
     assert seen["growth"] == pytest.approx(growth_interval(window)[0])
     assert seen["age_exponent"] == pytest.approx(age_exponent(window)[0].estimate)
     laws = fit_laws(window, seed=1, replicates=0)
@@ -121,6 +123,17 @@ def test_statistics_are_those_of_the_other_rooms() -> None:
     assert row is not None
     assert seen["slope"] == pytest.approx(row.slope, rel=1e-9)
     assert seen["r_squared"] == pytest.approx(row.r_squared, rel=1e-9)
+
+
+def test_statistics_treat_ties_as_the_tests_do() -> None:
+    """Decimal dates whose equal intervals only floating point parts, and equal dates of unlike precision."""
+    rng = np.random.default_rng(8)
+    decimal = Record.from_dates(np.round(rng.uniform(1990, 2000, 120), 2), present=2000.0, start=1990.0, unit=0.01)
+    mixed = Record.from_dates([1200.5, 1300.5, 1300.5, 1300.5, 1400.5, 1700.5, 1700.5, 1999.5], present=2000.0, unit=[1, 1, 5, 1, 1, 9, 3, 1])
+    for record in (decimal, mixed):
+        seen = {r.statistic: r.observed for r in null_table(record, (STEADY,), seed=1, replicates=19).rows}
+        for row in run_tests(record.window, seed=1, replicates=99).rows:
+            assert seen[row.test] == pytest.approx(row.statistic, rel=1e-9), row.test
 
 
 def test_table_against_a_loop_over_whole_records() -> None:
