@@ -16,6 +16,7 @@ import numpy.typing as npt
 
 from ..progress import Tell, silent
 from ..record import Record, Window
+from . import words
 from .line_batches import exponential_slopes, median_lines, ols_slopes, theil_sen_slopes
 from .null_model import Null
 from .null_table import FEWEST_RECORDS, NullRow, NullTable, null_row, null_times_in_chunks, records_for
@@ -135,11 +136,11 @@ def _notes(intervals: int, chosen: Sequence[Lines], replicates: int) -> tuple[st
             fewer.setdefault(count, []).append(line.estimator)
     notes = []
     if fewer:
-        said = ", ".join(f"{' and '.join(names)} {count}" for count, names in fewer.items())
+        said = ", ".join(f"{count} for {words.listed(names)}" for count, names in fewer.items())
         notes.append(f"slow estimators stand beside fewer null records: {said} (null_records)")
     alone = [line.estimator for line in chosen if intervals > line.limit]
     if alone:
-        notes.append(f"{' and '.join(alone)} stand beside log_uniform only: {intervals:,} intervals are many for the other nulls")
+        notes.append(f"beside log_uniform only, for their number of intervals ({intervals:,}): {words.listed(alone)}")
     return tuple(notes)
 
 

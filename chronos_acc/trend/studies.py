@@ -34,6 +34,7 @@ Floats = npt.NDArray[np.float64]
 
 FEWEST = 8  # counted milestones from which a list takes part in the common window and in the pooling
 STATISTICS = ("growth", "slope", "age_exponent")
+HELD_CELLS = 400_000  # mentions whose statistics are computed at once
 
 
 @dataclass(frozen=True)
@@ -214,7 +215,9 @@ def _equal(window: Window, mentions: Bools, seed: int, replicates: int) -> dict[
     rng = np.random.default_rng([seed, 6400])
     replicates = min(replicates, max(199, 4_000_000 // named.size))
     mixed = exchanged(named, rng, replicates)
-    null = _spread(times, mixed, window)
+    rows = max(1, HELD_CELLS // named.size)
+    parts = [_spread(times, mixed[first : first + rows], window) for first in range(0, replicates, rows)]
+    null = {name: np.concatenate([part[name] for part in parts]) for name in STATISTICS}
     out = {}
     for name in STATISTICS:
         seen, values = float(observed[name][0]), null[name][np.isfinite(null[name])]

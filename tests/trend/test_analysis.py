@@ -259,7 +259,7 @@ def test_one_sentence_names_what_lies_after_the_present() -> None:
     assert inside.window.after == 0
 
 
-def _codes(ages: Callable[[np.random.Generator], np.ndarray], before: float, records: int = 40) -> Counter[str]:
+def _codes(ages: Callable[[np.random.Generator], np.ndarray], before: float, records: int = 20) -> Counter[str]:
     """Verdicts by the two tests alone, on records of 40 in 1,000 years whose start lies ``before`` years before."""
     found: Counter[str] = Counter()
     for s in range(records):
@@ -284,10 +284,10 @@ def test_a_start_far_before_the_first_milestone() -> None:
         return np.asarray(-1000 / 4 * np.log1p(rng.random(40) * np.expm1(-4.0)))
 
     steady = {before: _codes(lambda rng: 1000 * rng.random(40), before) for before in (0.0, 500.0, 9000.0)}
-    assert steady[0.0]["no_trend"] >= 35
-    assert steady[500.0]["uneven"] >= 35 and steady[9000.0]["uneven"] >= 35
+    assert steady[0.0]["no_trend"] >= 17
+    assert steady[500.0]["uneven"] >= 17 and steady[9000.0]["uneven"] >= 17
     for before in (0.0, 9000.0):
         found = _codes(growing, before)
-        assert found["shape"] + found["forgetting"] >= 36
+        assert found["shape"] + found["forgetting"] >= 18
     slowing = _codes(lambda rng: 1000 - growing(rng), 9000.0)
-    assert slowing["uneven"] == 40
+    assert slowing["uneven"] == 20

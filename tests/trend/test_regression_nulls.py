@@ -45,7 +45,7 @@ def test_every_row_has_its_null_and_says_how_many_records(hundred: tuple[Trend, 
             assert 0 < r["r_squared_p_value"] <= 1
     frame = trend.tables()["regressions"]
     assert list(frame.columns[:9]) == contract and frame["null_median"].notna().all()
-    assert any("fewer null records" in n and "theil_sen 199" in n for n in trend.notes)
+    assert any("fewer null records" in n and "199 for theil_sen" in n for n in trend.notes)
 
 
 def test_whole_of_trend_on_a_hundred_stays_quick(hundred: tuple[Trend, float]) -> None:
@@ -70,8 +70,8 @@ def test_aside_stand_all_nulls_and_the_observed_are_the_regressions(hundred: tup
 
 def test_bands_are_those_of_null_records_regressed_one_by_one() -> None:
     record = _list(2, 30, unit=1.0)
-    table = regression_nulls(record, (STEADY,), seed=5, replicates=199)
-    times = np.concatenate(list(null_times_in_chunks(record, STEADY, seed=5, replicates=199)))
+    table = regression_nulls(record, (STEADY,), seed=5, replicates=99)
+    times = np.concatenate(list(null_times_in_chunks(record, STEADY, seed=5, replicates=99)))
     rows = [regress(Record.from_dates(t, present=2000, unit=1.0).window) for t in times]
     for predictor in PREDICTORS:
         for estimator in ("ols_hc3", "median", "theil_sen", "glm"):
@@ -79,22 +79,22 @@ def test_bands_are_those_of_null_records_regressed_one_by_one() -> None:
                 continue
             slopes = [r.row(predictor, estimator).slope for r in rows]  # type: ignore[union-attr]
             found = table.row("steady", statistic_name("slope", predictor, estimator))
-            assert found is not None and found.records == 199
+            assert found is not None and found.records == 99
             low, median, high = np.quantile(np.array(slopes, dtype=float), [0.025, 0.5, 0.975])
             assert (found.low, found.median, found.high) == pytest.approx((low, median, high), abs=1e-6)
-            assert found.p_value == (1 + sum(s >= found.observed - 1e-9 for s in slopes)) / 200
+            assert found.p_value == (1 + sum(s >= found.observed - 1e-9 for s in slopes)) / 100
 
 
 def test_null_of_the_draws_is_the_null_record_drawn_like_the_list() -> None:
     record = _list(6, 40, unit=1.0)
     drawn = regress(record.window, record=record, draws=200).row(estimator="draws")
     assert drawn is not None
-    table = regression_nulls(record, (STEADY,), seed=2, replicates=199, drawn=drawn)
+    table = regression_nulls(record, (STEADY,), seed=2, replicates=99, drawn=drawn)
     found = table.row("steady", "slope on log10_age, draws")
     slopes = []
-    for times in np.concatenate(list(null_times_in_chunks(record, STEADY, seed=2, replicates=199))):
+    for times in np.concatenate(list(null_times_in_chunks(record, STEADY, seed=2, replicates=99))):
         one = Record.from_dates(times, present=2000, unit=1.0)
-        slopes.append(regress(one.window, record=one, draws=20).row(estimator="draws").slope)  # type: ignore[union-attr]
+        slopes.append(regress(one.window, record=one, draws=9).row(estimator="draws").slope)  # type: ignore[union-attr]
     assert found is not None and found.observed == drawn.slope
     assert found.median == pytest.approx(float(np.median(np.array(slopes, dtype=float))), abs=0.05)
     assert found.high == pytest.approx(float(np.quantile(np.array(slopes, dtype=float), 0.975)), abs=0.15)
@@ -112,7 +112,7 @@ def test_long_records_keep_log_uniform_and_say_what_was_left_out() -> None:
     table = regression_nulls(record, (SHUFFLED, LOG_UNIFORM), seed=1, replicates=199)
     assert table.row("shuffled", "slope on order, theil_sen") is None and table.row("shuffled", "slope on order") is not None
     assert table.row("log_uniform", "slope on order, theil_sen") is not None
-    assert any("theil_sen" in n and "log_uniform only" in n for n in table.notes)
+    assert any("log_uniform only" in n and n.endswith("theil_sen") for n in table.notes)
     longer = _list(5, PAIRS_LIMIT + 2)
     found = regress(longer.window)
     assert found.row("log10_age", "theil_sen") is None and found.row("log10_age", "median") is not None
