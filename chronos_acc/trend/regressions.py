@@ -322,7 +322,8 @@ def _median(x: Floats, y: Floats, predictor: str) -> list[RegressionRow]:
     if band > 0:
         u = left / band
         density = float(np.where(np.abs(u) <= 1, 0.75 * (1 - u * u), 0.0).sum()) / (n * band)
-        error = 0.5 / density / float(np.sqrt(((x - x.mean()) ** 2).sum()))
+        if density > 0:  # a line between points of a small record may have none near it
+            error = 0.5 / density / float(np.sqrt(((x - x.mean()) ** 2).sum()))
     half = None if error is None else float(stdtrit(n - 2, 0.975)) * error
     flat = float(np.abs(y - np.median(y)).sum())
     return [

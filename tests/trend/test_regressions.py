@@ -139,6 +139,16 @@ def test_median_line_is_exact_and_close_to_statsmodels() -> None:
         assert b == pytest.approx(other.params[1], abs=2e-3)
 
 
+def test_small_records_have_every_line_or_say_why_not() -> None:
+    for seed in range(60):
+        rng = np.random.default_rng(seed)
+        n = int(rng.integers(4, 9))
+        for dates in (np.sort(rng.uniform(1000, 2000, n)), np.linspace(1000, 1990, n) + np.round(rng.normal(0, 9, n))):
+            for row in regress(Record.from_dates(dates, present=2000, unit=1.0).window).rows:
+                assert row.slope is not None and np.isfinite(row.slope), row
+                assert row.std_error is None or row.std_error >= 0
+
+
 def test_exponential_line_agrees_with_a_gamma_glm() -> None:
     import warnings
 
