@@ -7,8 +7,8 @@ import math
 from typing import Any
 
 _SUPERSCRIPT = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
-_SPANS = ((1e9, "Gyr"), (1e6, "Myr"), (1e4, "kyr"))
-_AGES = ((1e9, "Ga"), (1e6, "Ma"), (1.5e4, "ka"))
+_SPANS = ((1e9, 1e9, "Gyr"), (1e6, 1e6, "Myr"), (1e4, 1e3, "kyr"))  # from this length on, in units of so many years
+_AGES = ((1e9, 1e9, "Ga"), (1e6, 1e6, "Ma"), (1.5e4, 1e3, "ka"))
 
 
 def is_missing(value: Any) -> bool:
@@ -76,8 +76,8 @@ def span(value: Any) -> str:
     x = float(value)
     if math.isinf(x):
         return "unbounded"
-    for size, unit in _SPANS:
-        if abs(x) >= size:
+    for begin, size, unit in _SPANS:
+        if abs(x) >= begin:
             return f"{number(x / size, 3)} {unit}"
     if 0 < abs(x) < 0.5:
         return f"{number(x * 365.2425, 3)} d"
@@ -91,26 +91,13 @@ def when(value: Any) -> str:
     x = float(value)
     if math.isinf(x):
         return "unbounded"
-    for size, unit in _AGES:
-        if 2000 - x >= size:
+    for begin, size, unit in _AGES:
+        if 2000 - x >= begin:
             return f"{number((2000 - x) / size, 4)} {unit}"
     if x < 1:
         return f"{1 - math.floor(x):,.0f} BCE"
     tenth = round(x, 1)
     return f"{tenth:.1f}" if x >= 1000 else f"{math.floor(x)} CE"
-
-
-def years(value: Any) -> str:
-    """A number of years in a sentence: 37.7 years, 1.2 million years."""
-    if is_missing(value):
-        return "an unknown number of years"
-    x = float(value)
-    if math.isinf(x):
-        return "without bound"
-    for size, word in ((1e9, "billion"), (1e6, "million"), (1e4, "thousand")):
-        if abs(x) >= size:
-            return f"{number(x / size, 3)} {word} years"
-    return f"{number(x, 3)} years"
 
 
 def truth(value: Any) -> str:
