@@ -132,7 +132,9 @@ def grouped(record: Record) -> tuple[tuple[str, ...], Bools]:
 def corrected_growth(record: Record, window: Window | None = None, *, interval: bool = True) -> Capture:
     """The joint likelihood of growth and naming on the window's counted milestones, with completeness by bins of age.
 
-    Not estimable with fewer than two independent lists or fewer than ten shared milestones; says why in ``notes``.
+    Not estimable with fewer than two independent lists or fewer than ten shared milestones, nor where all are shared: the likelihood
+    takes a milestone to be seen once one list names it, and of milestones chosen at support two or more it would find hardly any missed
+    and call the growth real. Says why in ``notes``.
     """
     window = record.window if window is None else window
     names, mentions = grouped(record)
@@ -155,6 +157,17 @@ def corrected_growth(record: Record, window: Window | None = None, *, interval: 
             False,
             notes=(
                 f"{shared} milestones are shared by independent lists; at least {FEWEST_SHARED} are needed to estimate what they missed",
+            ),
+        )
+    if shared == window.n:
+        return Capture(
+            window.n,
+            names,
+            shared,
+            False,
+            notes=(
+                "every milestone counted is named by two independent lists or more: chosen for their overlap (a least support) or copied from "
+                "one another, they cannot say what was missed",
             ),
         )
     floor = youngest_floor(window)

@@ -12,6 +12,7 @@ from scipy import integrate, optimize
 
 from chronos_acc.errors import WrongUse
 from chronos_acc.record import Record
+from chronos_acc.trend.analysis import analyse
 from chronos_acc.trend.capture import corrected_growth, grouped
 from chronos_acc.trend.overlap import Sightings, fit, simulate
 from chronos_acc.trend.overlap_bins import chao, chapman, coverage_bins, log_linear_models, petersen, supported
@@ -178,6 +179,17 @@ def test_too_little_overlap_says_so() -> None:
     named[:9] = True
     capture = corrected_growth(Record.from_dates(np.sort(rng.uniform(1000, 2000, 40)), present=2000, start=1000, mentions=named))
     assert not capture.estimable and "9 milestones are shared" in capture.notes[0]
+
+
+def test_milestones_chosen_for_their_overlap_say_nothing_of_what_was_missed() -> None:
+    # a steady rate, forgotten alike by three lists: at support two and more the forgetting must not come back as growth that survives
+    for seed in range(3):
+        record = _lists(seed, beta=4.0, size=300, alpha=(1.5, 1.5, 1.5))
+        whole, chosen = corrected_growth(record), corrected_growth(record.only(min_support=2))
+        assert whole.estimable and not whole.survives
+        assert not chosen.estimable and not chosen.survives
+        assert "chosen for their overlap" in chosen.notes[0]
+        assert "completeness" not in analyse(record.only(min_support=2), seed=1, draws=0, replicates=99).verdict_clauses
 
 
 def test_a_list_that_names_everything_is_no_obstacle() -> None:
