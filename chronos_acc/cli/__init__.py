@@ -44,6 +44,11 @@ def main(argv: Sequence[str] | None = None) -> int:
     except MemoryError:
         out.error("not enough memory for this; choose fewer lists with --sources, or fewer --draws")
         return REFUSED
+    except RuntimeError as fault:
+        if "interrupted" not in str(fault).lower():
+            raise
+        out.error("interrupted; nothing half-done was kept")
+        return INTERRUPTED
     except OSError as fault:
         out.error(f"{fault.strerror or fault}{f': {fault.filename}' if fault.filename else ''}; check the path, its permissions and the free space")
         return REFUSED
@@ -51,6 +56,8 @@ def main(argv: Sequence[str] | None = None) -> int:
 
 def _run(words: list[str], out: Output) -> int:
     before, name, after = split(words)
+    if name == "help":
+        before, name, after = [*before, "--help"] if not after else before, after[0] if after else None, ["--help"]
     try:
         options = program_parser().parse_args(before)
         if name is None:

@@ -53,7 +53,7 @@ def whole(low: int, high: int) -> Any:
         except ValueError:
             value = low - 1
         if not low <= value <= high or "_" in text:
-            raise argparse.ArgumentTypeError(f"{text!r} is not allowed; give a whole number from {low} to {high}")
+            raise argparse.ArgumentTypeError(f"{text!r} is not allowed; give a whole number from {low}" + (f" to {high}" if high < 10**9 else " on"))
         return value
 
     return read

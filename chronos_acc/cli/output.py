@@ -49,6 +49,10 @@ class Output:
         """Print a page in the chosen format."""
         from ..report.formats import write
 
+        if self.format in ("csv", "markdown", "latex") and self.table is None and len(page.tables) > 1:
+            main = page.main_table()
+            rest = ", ".join(t.name for t in page.tables if main is not None and t.name != main.name)
+            self.remark(f"this is the table {main.name if main is not None else ''}; the others by --table: {rest}; everything at once: --format json")
         self.text(write(page, form=self.format, only=self.table, width=self.width, colour=self.colour, for_spreadsheet=self.for_spreadsheet))
 
     def text(self, text: str) -> None:

@@ -116,7 +116,8 @@ def trend_tables(trend: Any, full: bool) -> tuple[Table, ...]:
             screen = _law_rows(frame)
             below.append("growth and doubling time describe a curve; a singular date (t_star) is a property of a curve, not a forecast")
         elif name == "tests":
-            below.append("p exact: by simulation given n, two-sided except anderson_darling; p adjusted: step-down over the tests")
+            below.append("p exact: by simulation given n, two-sided except anderson_darling: the one to cite; uneven spacing can move the asymptotic p far from it")
+            below.append("p adjusted: step-down over the tests")
         elif name == "regressions" and not frame.empty:
             screen = frame[frame["estimator"] == "ols_hc3"]
             below.append("the null is picking evenly per decade of age: on log10 age it gives a slope of 1, but for rounded dates; p: upper tail of the slope")
@@ -132,10 +133,15 @@ def trend_tables(trend: Any, full: bool) -> tuple[Table, ...]:
     return tuple(tables)
 
 
+def _verdict_heading(document: Mapping[str, Any]) -> str:
+    """VERDICT with its code and clauses, the words that the README explains."""
+    return f"VERDICT: {' + '.join([document['verdict_code'], *document['verdict_clauses']])}"
+
+
 def trend_page(trend: Any, full: bool = False) -> Page:
     """Everything ``trend`` says; the verdict stands last so that it stays on the screen."""
     document = trend.to_dict()
-    close = [*(f"note: {n}" for n in document["notes"]), *([""] if document["notes"] else []), "VERDICT", document["verdict"]]
+    close = [*(f"note: {n}" for n in document["notes"]), *([""] if document["notes"] else []), _verdict_heading(document), document["verdict"]]
     return Page(document, trend_tables(trend, full), "tests", close=tuple(close))
 
 

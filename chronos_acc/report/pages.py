@@ -96,13 +96,13 @@ def link_page(summary: Any) -> Page:
     return Page(document, (Table("link", frame, "How many milestones do the lists share?", columns, tuple(below)),), "link")
 
 
-def links_page(frame: pd.DataFrame) -> Page:
-    """All pairs."""
+def links_page(frame: pd.DataFrame, state: str | None = None) -> Page:
+    """All pairs, or those of one state."""
     columns = (
         Column("title_a", "title"), Column("source_a", "list", "text", 1), Column("date_a", "date", "text", 4), Column("title_b", "title"),
         Column("source_b", "list", "text", 1), Column("date_b", "date", "text", 4), Column("score", "score", "p"), Column("state", "state"),
     )  # fmt: skip
-    return frame_page("links", frame, "Which entries are the same milestone, and how sure is it?", columns, empty="no pair of entries came close enough to be scored")
+    return frame_page("links", frame, "Which entries are the same milestone, and how sure is it?", columns, empty=f"no pair is in state {state}" if state else "no pair of entries came close enough to be scored")
 
 
 def gold_page(check: Any) -> Page:

@@ -81,7 +81,7 @@ def build(m: Material, *, figures: bool) -> Document:
         *_charts(m, ("recall", "completeness"), figures),
     ]
     if m.grid is not None:
-        blocks += [Heading("Which choices matter?"), *grid_tables(m.grid), *_charts(m, ("grid",), figures)]
+        blocks += [Heading("Which choices matter?"), *(t for t in grid_tables(m.grid) if not t.aside), *_charts(m, ("grid",), figures)]
     of_checks = m.bias.to_dict().get("notes", [])
     said = {note.partition(": ")[2] for note in of_checks}
     notes = tuple(dict.fromkeys([*(n for n in trend["notes"] if n not in said), *of_checks]))

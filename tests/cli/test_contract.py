@@ -148,7 +148,7 @@ def test_bias_document(run, scenario):
 @pytest.mark.parametrize("form", ["csv", "markdown", "latex", "table"])
 def test_other_formats_print_one_table(run, scenario, form):
     done = run("trend", "--format", form, "--table", "rate_laws", "--draws", "50")
-    assert done.status == 0 and "hyperbolic" in done.out and "VERDICT" not in done.out
+    assert done.status == 0 and "hyperbolic" in done.out and "VERDICT:" not in done.out
     wrong = run("trend", "--format", form, "--table", "nothing", "--draws", "50")
     assert wrong.status == 2 and "--table takes" in wrong.err
 

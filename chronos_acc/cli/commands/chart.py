@@ -32,7 +32,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     if options.kind == "grid":
         from ...bias.grid import run_grid
 
-        grid = run_grid(chosen_context(options, record, out), joint=199, tell=out.tell)
+        grid = run_grid(chosen_context(options, record, out), joint=499, tell=out.tell)
     data = chart(options.kind, record=record, grid=grid, seed=options.seed, draws=options.draws)
     if options.to:
         path = to_figure(data, options.to)

@@ -6,6 +6,7 @@ from __future__ import annotations
 import argparse
 from typing import TYPE_CHECKING
 
+from ...errors import WrongUse
 from ..arguments import number
 from ..common import timeline
 from ..registry import Command
@@ -50,6 +51,8 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         from ...store.orders import state_orders
 
         out.remark(f"{state_orders(timeline(options), Path(options.orders))} known orders stated")
+    if chosen.review > chosen.accept:
+        raise WrongUse(f"--doubt {chosen.review:g} lies above --accept {chosen.accept:g}; pairs between the two wait for review, so --doubt must be the lower")
     done = relink(timeline(options), options=chosen, tell=out.tell)
     out.page(link_page(done))
     return 0

@@ -28,7 +28,7 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         frame = frame[frame["state"] == options.state]
     if options.sources:
         frame = frame[frame["source_a"].isin(options.sources) & frame["source_b"].isin(options.sources)]
-    out.page(links_page(frame))
+    out.page(links_page(frame, options.state))
     return 0
 
 

@@ -27,6 +27,8 @@ def _run(options: argparse.Namespace, out: Output) -> int:
     path = Path(options.file)
     if path.suffix.lower() not in ENDINGS:
         raise WrongUse(f"{options.file!r} has no ending that is known; allowed are {', '.join(ENDINGS)}")
+    if not path.parent.is_dir():
+        raise WrongUse(f"there is no folder {path.parent}; make it first, or write the report elsewhere")
 
     from datetime import UTC, datetime
     from importlib import metadata
@@ -60,8 +62,8 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         intervals=interval_series(record, seed=options.seed, draws=options.draws, tell=out.tell),
         trend=trend,
         bias=run_checks(context),
-        grid=None if options.no_grid else run_grid(context, joint=199, tell=out.tell),
-        commands=(command_line("intervals", options), command_line("trend", options), command_line("bias", options), command),
+        grid=None if options.no_grid else run_grid(context, joint=499, tell=out.tell),
+        commands=tuple(command_line(name, options) for name in ("intervals", "trend", "bias", *(() if options.no_grid else ("grid",)), f"report {path.name}")),
         version=__version__,
         libraries=tuple((name, metadata.version(name)) for name in ("numpy", "pandas", "duckdb", "scipy", "statsmodels")),
         stamp=datetime.now(UTC).strftime("%Y-%m-%d %H:%M UTC"),

@@ -9,7 +9,7 @@ import sys
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from ...errors import Refused, WrongUse
+from ...errors import WrongUse
 from ..arguments import whole
 from ..common import timeline
 from ..registry import Command
@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from ..output import Output
 
 KEYS = "s same · d different · k skip · u undo · q stop"
+WORDS = {"s": "same", "same": "same", "d": "different", "different": "different", "k": "skip", "skip": "skip", "u": "undo", "undo": "undo", "q": "stop", "stop": "stop", "quit": "stop"}
 
 
 def _arguments(parser: argparse.ArgumentParser) -> None:
@@ -59,6 +60,9 @@ def _run(options: argparse.Namespace, out: Output) -> int:
         out.page(frame_page("review", pd.DataFrame([row]), "What was decided?", below=below))
         return 0
     if options.pair and options.verdict:
+        pair = decisions.pair(db, *options.pair)
+        if options.verdict == "same" and pair.a.source == pair.b.source:
+            out.remark(f"both are entries of the list {pair.a.source}: joined all the same, as you say")
         decisions.decide(db, options.pair[0], options.pair[1], options.verdict, who=who, why=options.why)
         relink(db, tell=out.tell)
         out.page(decisions_page(decisions.listing(db)))
@@ -85,8 +89,6 @@ def _sitting(options: argparse.Namespace, out: Output, pairs: tuple[Pair, ...], 
     """Ask about one pair after the other; each answer is stored at once. Returns how many decisions stand."""
     from ...store import decisions
 
-    if not sys.stdin.isatty() and sys.stdin.closed:
-        raise Refused("nobody to ask: standard input is closed; use links --state review --format csv, and review FILE.csv")
     db = timeline(options)
     made: list[tuple[int, int]] = []  # (position, decision)
     i = 0
@@ -94,22 +96,23 @@ def _sitting(options: argparse.Namespace, out: Output, pairs: tuple[Pair, ...], 
         out.text(_shown(pairs[i], i, len(pairs), min(out.width, 100)))
         while True:
             out.text(f"  {KEYS} > ")
-            line = sys.stdin.readline()
-            key = line.strip().lower()[:1] if line else "q"
-            if key in ("s", "d"):
-                verdict = "same" if key == "s" else "different"
-                made.append((i, decisions.decide(db, pairs[i].a.entry, pairs[i].b.entry, verdict, who=who, why=options.why)))
+            line = sys.stdin.readline() if sys.stdin is not None else ""
+            word = WORDS.get(line.strip().lower(), "") if line else "stop"
+            if word in ("same", "different"):
+                made.append((i, decisions.decide(db, pairs[i].a.entry, pairs[i].b.entry, word, who=who, why=options.why)))
+                out.text(f"  settled as {word}\n")
                 i += 1
-            elif key == "k":
+            elif word == "skip":
                 i += 1
-            elif key == "u" and made:
+            elif word == "undo" and made:
                 i, last = made.pop()
                 decisions.undo(db, last)
-            elif key == "q":
+                out.text("  taken back\n")
+            elif word == "stop":
                 out.text("\n")
                 return len(made)
             else:
-                out.text("  nothing to undo\n" if key == "u" else "")
+                out.text("  nothing to undo\n" if word == "undo" else f"  {line.strip()[:40]!r} is none of the keys\n")
                 continue
             break
     return len(made)
