@@ -274,7 +274,13 @@ def analyse(
         judged=judge(evidence),
         made=made,
         next_event=following,
-        notes=_notes(record, window, tests, laws, regressions, nulls, lines, tip, capture, studies, following, late=late, told=against_forgetting(capture, tip)),
+        notes=_notes(
+            record,
+            window,
+            *(tests, laws, regressions, nulls, lines, tip, capture, studies, following),
+            late=late,
+            told=against_forgetting(capture, tip),
+        ),
     )
 
 

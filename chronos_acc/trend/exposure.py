@@ -129,7 +129,8 @@ def operational(record: Record, exposure: Exposure | tuple[Sequence[float], Sequ
 
 
 def exposure_of(given: Any) -> Exposure:
-    """The exposure as given, or from a pair (years, values), a table with columns year and exposure, or an array of two columns or two rows.
+    """The exposure as given, or from a pair (years, values), a table with columns year and exposure, or an array of two columns or
+    two rows.
 
     Raises WrongUse for anything else.
     """

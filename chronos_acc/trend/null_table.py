@@ -185,7 +185,8 @@ def null_table(
             for s in chosen:
                 values[s.name].append(s.compute(times, window))
         rows.extend(
-            null_row(null, s.name, s.tail, seen[s.name], np.concatenate(values[s.name]), judged=s.name in JUDGED_WHEN_FITTED) for s in chosen
+            null_row(null, s.name, s.tail, seen[s.name], np.concatenate(values[s.name]), judged=s.name in JUDGED_WHEN_FITTED)
+            for s in chosen
         )
         tell(f"null {null.name}", (done + 1) / len(nulls))
     return NullTable(tuple(rows), replicates, tuple(notes))

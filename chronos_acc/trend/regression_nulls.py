@@ -76,8 +76,8 @@ def regression_nulls(
     drawn: RegressionRow | None = None,
     tell: Tell = silent,
 ) -> NullTable:
-    """Every predictor and estimator beside every null, but for least squares on log10 age, which ``null_table`` has. Rows say in ``records``
-    how many null records stand behind them. ``drawn``: the row of drawn dates, to stand beside null records drawn once each."""
+    """Every predictor and estimator beside every null, but for least squares on log10 age, which ``null_table`` has. Rows say in
+    ``records`` how many null records stand behind them. ``drawn``: the row of drawn dates, to stand beside null records drawn once each."""
     window = record.window if window is None else window
     intervals = int((window.intervals > 0).sum()) if len(window.times) else 0
     if window.n < 1 or not window.span > 0 or intervals < 3:

@@ -187,8 +187,8 @@ def _kept(e: Evidence) -> str:
     chance = words.p(e.chance_of_empty(e.kept_empty))
     if e.direction == "speeding":
         return (
-            f" The {words.years(e.kept_empty)} from the given start to the first milestone are empty ({chance} at a steady rate) and stay so in "
-            "every order: the crowding comes from them, and only they would speak for speeding. Without --start the first milestone opens "
+            f" The {words.years(e.kept_empty)} from the given start to the first milestone are empty ({chance} at a steady rate) and "
+            "stay so in every order: the crowding comes from them, and only they would speak for speeding. Without --start the first milestone opens "
             "the window, and the rest is judged by itself."
         )
     return (
