@@ -38,17 +38,30 @@ class LeastSquares:
         left = 1.0 - self.hat
         with np.errstate(divide="ignore", invalid="ignore"):
             weight = np.where(left > 1e-12, (self.residuals / left) ** 2, np.nan)
-        return _sandwich(self.inverse, (self.x * weight[:, None]).T @ self.x)
+        x, inverse, back = self._centred()
+        return _sandwich(back @ inverse, (x * weight[:, None]).T @ x)
 
     def hac(self, lags: int, *, small_sample: bool = False) -> Floats:
         """(k,) autocorrelation-consistent standard errors with Bartlett weights (Newey & West 1987), rows in time order."""
-        score = self.x * self.residuals[:, None]
+        x, inverse, back = self._centred()
+        score = x * self.residuals[:, None]
         middle = score.T @ score
         for lag in range(1, min(lags, len(score) - 1) + 1):
             cross = score[lag:].T @ score[:-lag]
             middle += (1.0 - lag / (lags + 1.0)) * (cross + cross.T)
         n, k = self.x.shape
-        return _sandwich(self.inverse, middle * (n / (n - k) if small_sample else 1.0))
+        return _sandwich(back @ inverse, middle * (n / (n - k) if small_sample else 1.0))
+
+    def _centred(self) -> tuple[Floats, Floats, Floats]:
+        """Columns, inverse, and what leads back to the coefficients: a line is taken about its mean, so that a predictor which hardly
+        varies (the log of time since a start 1e10 years ago) loses no digits."""
+        n, k = self.x.shape
+        if k != 2 or not (self.x[:, 0] == 1).all():
+            return self.x, self.inverse, np.eye(k)
+        mean = float(self.x[:, 1].mean())
+        away = self.x[:, 1] - mean
+        back = np.array([[1.0, -mean], [0.0, 1.0]])
+        return np.column_stack([np.ones(n), away]), np.diag([1.0 / n, 1.0 / float(away @ away)]), back
 
     def cooks_distance(self) -> Floats:
         """(n,) influence of each row on all coefficients (Cook 1977)."""
@@ -119,4 +132,4 @@ def line(x: Floats, y: Floats) -> LeastSquares:
 
 
 def _sandwich(bread: Floats, filling: Floats) -> Floats:
-    return np.asarray(np.sqrt(np.diag(bread @ filling @ bread)))
+    return np.asarray(np.sqrt(np.diag(bread @ filling @ bread.T)))

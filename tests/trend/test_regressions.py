@@ -120,6 +120,18 @@ def test_agrees_with_statsmodels_and_scipy(seed: int) -> None:
     assert mine.hac(lags) == pytest.approx(wide.bse, rel=1e-9)
 
 
+def test_standard_errors_keep_their_digits_where_the_predictor_hardly_varies() -> None:
+    rng = np.random.default_rng(2)
+    x = -np.log10(1e10 - 10 ** rng.uniform(1, 6, 60))  # the log of time since a start 1e10 years ago
+    y = rng.normal(size=60)
+    fit = line(x, y)
+    centred = sm.OLS(y, sm.add_constant((x - x.mean()) / x.std())).fit()
+    assert fit.hc3()[1] == pytest.approx(centred.HC3_se[1] / x.std(), rel=1e-9)
+    lagged = centred.get_robustcov_results("HAC", maxlags=4)
+    assert fit.hac(4)[1] == pytest.approx(lagged.bse[1] / x.std(), rel=1e-9)
+    assert fit.hc3()[0] == pytest.approx(fit.hc3()[1] * abs(x.mean()), rel=1e-6)
+
+
 def test_median_line_is_exact_and_close_to_statsmodels() -> None:
     import warnings
 
