@@ -20,7 +20,7 @@ from scipy.optimize import brentq
 from ..record import Record
 from .check import Answer, Check, Context, Row
 from .growth import Growth, growth, growth_of_mean, profile_ends, rank_p
-from .rows import ENOUGH, LEVEL, count, number, record_row, row, stands
+from .rows import ENOUGH, LEVEL, count, number, p_words, record_row, row, stands
 
 Floats = npt.NDArray[np.float64]
 MOST_CLASSES = 10
@@ -114,7 +114,7 @@ def _row(record: Record, edges: Floats, i: int, stratum: _Stratum, pooled: Growt
 def _sentence(rows: Sequence[Row], pooled: Row, published: Growth, mix: tuple[float, float, float]) -> str:
     tau, tau_p, changes = mix
     way = "rises" if tau > 0 else "falls"
-    moves = f"importance {way} with age (Kendall's tau {tau:.2f}, p = {number(tau_p)}; higher beyond some age: p = {number(changes)})"
+    moves = f"importance {way} with age (Kendall's tau {tau:.2f}, p {p_words(tau_p)}; higher beyond some age: p {p_words(changes)})"
     text = f"{moves}; over the ranges in which each class is complete growth is {number(pooled.estimate)} a year; rows: {count(rows)}"
     speeding = published.estimate is not None and published.estimate > 0
     if speeding and changes < GATE and pooled.stands != "yes":

@@ -12,7 +12,7 @@ from ..trend.meta import pooled as pool_studies
 from ..trend.studies import PooledRow, lists_as_studies
 from .check import Answer, Check, Context, Row
 from .growth import Growth, growth
-from .rows import count, number, record_row, simulated_row, telling
+from .rows import count, number, p_words, record_row, simulated_row, telling
 
 Floats = npt.NDArray[np.float64]
 Bools = npt.NDArray[np.bool_]
@@ -38,7 +38,7 @@ def run(context: Context) -> Answer:
         chosen = np.array([r.pooled for r in found.rows], dtype=bool)
         rows.append(_pooled(context, pooled, chosen, published, found.start, found.present))
     at = len(rows) - 1 if pooled is not None else telling(rows, published)
-    agree = "" if pooled is None or pooled.p_equal is None else f"equal growth in all lists has p = {number(pooled.p_equal)}; "
+    agree = "" if pooled is None or pooled.p_equal is None else f"equal growth in all lists has p {p_words(pooled.p_equal)}; "
     shown = "" if pooled is None else f"pooled growth {number(pooled.mean)} a year ({number(pooled.low)} to {number(pooled.high)}); "
     return Answer(
         tuple(rows), f"{agree}{shown}rows: {count(rows)}", "growth of each list on the common window, and whether they agree", notes, at

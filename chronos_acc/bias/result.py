@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 from ..notebook import ShowsInNotebook
 from .check import COLUMNS, Answer, Check, Row
 from .growth import Growth
-from .rows import LEVEL, number
+from .rows import LEVEL, number, p_words
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -102,7 +102,7 @@ class Bias(ShowsInNotebook):
         """The page in a sentence."""
         lines = self._summary()
         failing = [r["check"] for r in lines if r["stands"] in ("weaker", "no")]
-        growth = f"growth as published is {number(self.published.estimate)} a year (p = {number(self.published.p_value)})"
+        growth = f"growth as published is {number(self.published.estimate)} a year (p {p_words(self.published.p_value)})"
         if not (self.published.p_value is not None and self.published.p_value < LEVEL):
             return f"{growth}: nothing to overturn"
         return f"{growth}; it is weaker or gone under {', '.join(failing)}" if failing else f"{growth}; no check weakens it below half"

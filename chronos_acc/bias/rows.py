@@ -11,6 +11,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ..record import Record
+from ..trend.words import digits
 from .check import Row
 from .growth import Growth, band_of, growth, rank_p
 
@@ -88,9 +89,14 @@ def count(rows: Sequence[Row]) -> str:
     return ", ".join(parts)
 
 
-def number(value: float | None, digits: int = 3) -> str:
+def number(value: float | None, significant: int = 3) -> str:
     """A figure in running text."""
-    return "none" if value is None else f"{value:.{digits}g}"
+    return "none" if value is None else digits(value, significant)
+
+
+def p_words(p: float | None) -> str:
+    """A p-value in running text, as "= 0.012" or "< 0.001"."""
+    return "not computed" if p is None else "< 0.001" if p < 0.001 else f"= {p:.3f}"
 
 
 def years(value: float) -> str:

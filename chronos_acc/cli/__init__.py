@@ -52,6 +52,11 @@ def main(argv: Sequence[str] | None = None) -> int:
     except OSError as fault:
         out.error(f"{fault.strerror or fault}{f': {fault.filename}' if fault.filename else ''}; check the path, its permissions and the free space")
         return REFUSED
+    except Exception as fault:
+        if os.environ.get("CHRONOS_ACC_DEBUG"):
+            raise
+        out.error(f"a fault of chronos-acc itself: {type(fault).__name__}: {_one_line(fault)[:300]}; CHRONOS_ACC_DEBUG=1 shows where; please report it")
+        return REFUSED
 
 
 def _run(words: list[str], out: Output) -> int:

@@ -5,11 +5,12 @@ from __future__ import annotations
 
 import math
 
+SUPERSCRIPT = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 _UNITS = ((1e9, "billion years"), (1e6, "million years"), (1e4, "thousand years"))
 
 
 def digits(value: float, significant: int = 2) -> str:
-    """A plain number with so many significant digits; a true minus sign; powers of ten from 10^7 on and below 10^-4."""
+    """A plain number with so many significant digits; a true minus sign; powers of ten from 10⁷ on and below 10⁻⁴."""
     if not math.isfinite(value):
         return "unbounded"
     if value == 0:
@@ -18,11 +19,11 @@ def digits(value: float, significant: int = 2) -> str:
     sign = "−" if value < 0 else ""
     if size >= 1e7 or size < 1e-4:
         power = math.floor(math.log10(size))
-        lead = round(size / 10.0**power, 1)
+        lead = round(size / 10.0**power, max(significant - 1, 1))
         if lead >= 10:
             lead, power = 1.0, power + 1
-        head = "" if lead == 1 else f"{lead:g} × "
-        return f"{sign}{head}10^{power}"
+        head = "" if lead == 1 else f"{lead:g}×"
+        return f"{sign}{head}10{str(power).translate(SUPERSCRIPT)}"
     places = significant - 1 - math.floor(math.log10(size))
     rounded = round(size, places)
     return f"{sign}{rounded:,.{max(places, 0)}f}"
@@ -45,7 +46,7 @@ def count(value: float) -> str:
     if not math.isfinite(value):
         return "unbounded"
     if value >= 1e6:
-        return f"about 10^{round(math.log10(value))}"
+        return f"about 10{str(round(math.log10(value))).translate(SUPERSCRIPT)}"
     if value >= 1e4:
         return f"{round(value, 1 - math.floor(math.log10(value))):,.0f}"
     return f"{value:,.0f}"

@@ -25,7 +25,7 @@ PROGRAM = [sys.executable, "-m", "chronos_acc"]
 
 def _spawn(here, *words, env=None, **kwargs):
     return subprocess.run(
-        [*PROGRAM, *words], cwd=here, capture_output=True, text=True, encoding="utf-8", check=False, timeout=120, env={**os.environ, **(env or {})}, **kwargs
+        [*PROGRAM, *words], cwd=here, capture_output=True, text=True, encoding="utf-8", check=False, timeout=120, env={**os.environ, "CHRONOS_ACC_DEBUG": "1", **(env or {})}, **kwargs
     )
 
 
@@ -185,6 +185,7 @@ def test_random_command_lines_never_end_in_a_traceback(tmp_path_factory, words):
     os.chdir(folder)
     try:
         with contextlib.redirect_stdout(out), contextlib.redirect_stderr(err), pytest.MonkeyPatch.context() as patch:
+            patch.setenv("CHRONOS_ACC_DEBUG", "1")
             patch.setattr("sys.stdin", io.TextIOWrapper(io.BytesIO(b"")))
             status = main([w for w in words if "\0" not in w])
     finally:

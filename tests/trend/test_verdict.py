@@ -78,7 +78,7 @@ def test_rule_4_forgetting() -> None:
         assert piece in verdict.sentence
     power = judge(replace(BASE, forms=(replace(EXPONENTIAL, fit_p=0.01), POWER)))
     assert power.code == "forgetting" and "half forgotten at an age of 12 years" in power.sentence
-    assert "about 10^6 are unlisted (95 % 90,000 upwards, unbounded)" in power.sentence
+    assert "about 10⁶ are unlisted (95 % 90,000 upwards, unbounded)" in power.sentence
     edge = judge(replace(BASE, forms=(replace(EXPONENTIAL, fit_p=0.05),)))
     assert edge.code == "forgetting"
 
@@ -159,9 +159,9 @@ def test_numbers_in_words() -> None:
     ]
     assert words.span(1.1, 7.0) == "1.1 to 7.0 years" and words.span(90, 13_000) == "90 years to 13 thousand years"
     assert words.span(None, None) == "0 upwards, unbounded"
-    assert [words.count(v) for v in (0, 12.4, 9_999, 23_456, 2.1e6, 4e12)] == ["0", "12", "9,999", "23,000", "about 10^6", "about 10^13"]
+    assert [words.count(v) for v in (0, 12.4, 9_999, 23_456, 2.1e6, 4e12)] == ["0", "12", "9,999", "23,000", "about 10⁶", "about 10¹³"]
     assert [words.percent(v) for v in (0, 1, 0.5, 0.9999, 1e-9, 0.0123)] == ["0 %", "100 %", "50 %", "over 99 %", "under 0.0001 %", "1.2 %"]
-    assert [words.digits(v) for v in (0, -0.82, 1234.5, 2.5e8, float("inf"))] == ["0", "−0.82", "1,200", "2.5 × 10^8", "unbounded"]
+    assert [words.digits(v) for v in (0, -0.82, 1234.5, 2.5e8, float("inf"))] == ["0", "−0.82", "1,200", "2.5×10⁸", "unbounded"]
     assert (words.p(0.0001), words.p(0.034), words.p(0.34)) == ("p < 0.001", "p = 0.034", "p = 0.34")
     assert words.listed(["a"]) == "a" and words.listed(["a", "b", "c"]) == "a, b and c" and words.listed([]) == ""
 
