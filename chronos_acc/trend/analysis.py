@@ -4,6 +4,7 @@ the verdict."""
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, field, fields
 from typing import TYPE_CHECKING, Any
 
@@ -375,6 +376,23 @@ def order_of(window: Window) -> str:
     return "none" if abs(late) <= 1e-12 * float(first - last) else "speeding" if late > 0 else "slowing"
 
 
+def _of_the_window(window: Window) -> list[str]:
+    """What a reader should know before taking doublings over the window, or tests of intervals, at their word."""
+    notes = []
+    closed = window.intervals
+    if window.opened_by_milestone and len(closed) > 2 and closed[0] > window.span / 2:
+        rest = math.ceil(window.times[1]) - 1  # a year before, so that the second milestone counts
+        notes.append(
+            f"the first interval takes {closed[0] / window.span:.0%} of the window, so doublings over the window hang on one milestone;"
+            f" --start {rest} looks at the rest"
+        )
+    if len(closed) and 2 * int((closed == 0).sum()) > len(closed):
+        notes.append(
+            "more than half of the intervals are zero, dated too coarsely to part: tests of intervals lose power; read laplace and its exact p first"
+        )
+    return notes
+
+
 def _notes(record: Record, window: Window, *parts: Any, late: str | None, told: str) -> tuple[str, ...]:
     """What a reader should know, once each: the record's own remarks, the window's, then every part's."""
     # whoever made the record may have said what lies after its present, of a present changed since
@@ -390,6 +408,7 @@ def _notes(record: Record, window: Window, *parts: Any, late: str | None, told: 
         notes.append(
             f"{window.joined} intervals of zero length are left out of the regressions on log intervals only (their milestones are joined)"
         )
+    notes.extend(_of_the_window(window))
     for part in parts:
         notes.extend(getattr(part, "notes", ()) if part is not None else ())
     return tuple(dict.fromkeys([*notes, told] if told else notes))

@@ -292,3 +292,13 @@ def test_a_start_far_before_the_first_milestone() -> None:
         assert found["shape"] + found["forgetting"] >= 18
     slowing = _codes(lambda rng: 1000 - growing(rng), 9000.0)
     assert slowing["uneven"] == 20
+
+
+def test_a_lone_first_milestone_and_coarse_dates_are_said():
+    from chronos_acc.record import Record
+    from chronos_acc.trend.analysis import analyse
+
+    lone = Record.from_dates([-45e6, 1000, 1200, 1300, 1390, 1450, 1500, 1550, 1600, 1640], present=1700, unit=1)
+    assert any("--start 999" in note for note in analyse(lone, draws=0, replicates=99, bootstrap=19).notes)
+    coarse = Record.from_dates([1900.5] * 5 + [1910.5] * 5 + [1920.5] * 5 + [1930.5] * 5, present=1940, unit=10)
+    assert any("half of the intervals are zero" in note for note in analyse(coarse, draws=0, replicates=99, bootstrap=19).notes)
