@@ -66,6 +66,8 @@ def _run(words: list[str], out: Output) -> int:
     try:
         options = program_parser().parse_args(before)
         if name is None:
+            shared = with_defaults(options)
+            out.format, out.table = shared.format, shared.table
             return _program(options, out)
         entry = find(name)
         if entry is None:
