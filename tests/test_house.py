@@ -22,15 +22,16 @@ MAY = {
     "files": {"errors"},
     "notebook": set(),
     "dating": {"errors", "files"},
-    "record": {"dating", "errors", "progress"},
-    "merge": {"record", "dating", "errors", "progress"},
-    "intervals": {"record", "dating", "errors", "progress", "notebook"},
-    "store": {"merge", "record", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
-    "trend": {"record", "dating", "errors", "progress", "chronos_acc", "intervals", "notebook"},
-    "bias": {"trend", "merge", "record", "dating", "errors", "progress", "chronos_acc", "intervals", "notebook"},
-    "report": {"bias", "trend", "merge", "store", "record", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
-    "steps": {"report", "store", "bias", "trend", "merge", "record", "dating", "errors", "progress", "intervals"},
-    "cli": {"steps", "report", "store", "bias", "trend", "merge", "record", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
+    "mixture": {"dating"},
+    "record": {"mixture", "dating", "errors", "progress"},
+    "merge": {"record", "mixture", "dating", "errors", "progress"},
+    "intervals": {"record", "mixture", "dating", "errors", "progress", "notebook"},
+    "store": {"merge", "record", "mixture", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
+    "trend": {"record", "mixture", "dating", "errors", "progress", "chronos_acc", "intervals", "notebook"},
+    "bias": {"trend", "merge", "record", "mixture", "dating", "errors", "progress", "chronos_acc", "intervals", "notebook"},
+    "report": {"bias", "trend", "merge", "store", "record", "mixture", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
+    "steps": {"report", "store", "bias", "trend", "merge", "record", "mixture", "dating", "errors", "progress", "intervals"},
+    "cli": {"steps", "report", "store", "bias", "trend", "merge", "record", "mixture", "dating", "errors", "files", "progress", "intervals", "notebook", "chronos_acc"},
 }
 
 
@@ -85,7 +86,7 @@ def _only(word: str, rooms: set[str]) -> list[str]:
     return found
 
 
-@pytest.mark.parametrize("library, rooms", [("duckdb", {"store"}), ("rich", {"report"}), ("numpy", {"record", "merge", "intervals", "store", "trend", "bias", "report"})])
+@pytest.mark.parametrize("library, rooms", [("duckdb", {"store"}), ("rich", {"report"}), ("numpy", {"mixture", "record", "merge", "intervals", "store", "trend", "bias", "report"})])
 def test_each_library_lives_in_its_rooms(library, rooms):
     assert not _only(library, rooms)
 

@@ -8,7 +8,8 @@ from __future__ import annotations
 import numpy as np
 import numpy.typing as npt
 
-from ..record import UNIFORM, Record
+from ..mixture import UNIFORM
+from ..record import Record
 from ..trend.kernels import growth_of_mean_age
 from .check import Answer, Check, Context, Row
 from .drawn import drawn_growth, drawn_row, window_draws

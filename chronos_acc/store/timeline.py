@@ -13,7 +13,8 @@ import numpy.typing as npt
 
 from ..errors import RecordRefused, WrongUse
 from ..merge.entries import Entries, Floats, Ints
-from ..record import NORMAL, UNIFORM, Record, after_note
+from ..mixture import NORMAL, UNIFORM
+from ..record import Record, after_note
 from .ledger import Ledger, open_for_reading
 
 if TYPE_CHECKING:

@@ -19,7 +19,8 @@ import numpy.typing as npt
 
 from ..dating.dating import Z975
 from ..errors import ListRefused, RecordRefused, WrongUse
-from ..record import NORMAL, Record
+from ..mixture import NORMAL
+from ..record import Record
 
 Floats = npt.NDArray[np.float64]
 

@@ -12,7 +12,8 @@ import numpy.typing as npt
 
 from ..errors import WrongUse
 from ..progress import Tell, silent
-from ..record import NORMAL, UNIFORM, Record, Window
+from ..mixture import NORMAL, UNIFORM
+from ..record import Record, Window
 from .null_model import Null
 from .null_statistics import STATISTICS, Statistic
 from .nulls import NAMES, NULLS

@@ -9,7 +9,7 @@ import pytest
 from chronos_acc.errors import WrongUse
 from chronos_acc.merge import RULES, Entries, combine, list_groups, pool
 from chronos_acc.merge.pool import central
-from chronos_acc.record import NORMAL, UNIFORM, summary_of_parts
+from chronos_acc.mixture import NORMAL, UNIFORM, summary_of_parts
 
 # Nine results with their variances: Kacker 2004 (Metrologia 41:132).
 NINE = np.array([61.0, 61.4, 62.21, 62.3, 62.34, 62.6, 62.7, 62.84, 65.9])

@@ -12,7 +12,7 @@ import pytest
 
 from chronos_acc.errors import RecordRefused, TimelineRefused, WrongUse
 from chronos_acc.intervals import interval_series
-from chronos_acc.record import NORMAL, summary_of_parts
+from chronos_acc.mixture import NORMAL, summary_of_parts
 from chronos_acc.store import query as Q
 from chronos_acc.store import timeline as T
 from chronos_acc.store.ledger import open_for_reading, open_for_writing

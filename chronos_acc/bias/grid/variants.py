@@ -14,7 +14,8 @@ import numpy as np
 import numpy.typing as npt
 
 from ...errors import WrongUse
-from ...record import Record, Window, summary_of_parts
+from ...mixture import summary_of_parts
+from ...record import Record, Window
 from .choices import CHOICES, EACH_OUT, RATE_ENDS, Choices, Option
 from .kernels import Frame
 
