@@ -33,6 +33,7 @@ GUARDED: Config = {
     "autoload_known_extensions": "false",
     "lock_configuration": "true",
 }
+MAGIC, MAGIC_AT = b"DUCK", 8  # how a DuckDB file begins, after a checksum
 FAILURES = (
     duckdb.IOException,
     duckdb.ConnectionException,
@@ -54,7 +55,8 @@ class Ledger:
 
     def rows(self, sql: str, params: Params = ()) -> list[tuple[Any, ...]]:
         """All rows of one statement; values are bound to ``?``."""
-        return self.connection.execute(sql, list(params)).fetchall()
+        with interrupts():
+            return self.connection.execute(sql, list(params)).fetchall()
 
     def row(self, sql: str, params: Params = ()) -> tuple[Any, ...] | None:
         """The first row, or None."""
@@ -68,15 +70,22 @@ class Ledger:
 
     def frame(self, sql: str, params: Params = ()) -> pd.DataFrame:
         """The result as a data frame."""
-        return self.connection.execute(sql, list(params)).df()
+        with interrupts():
+            return self.connection.execute(sql, list(params)).df()
+
+    def frame_of(self, statement: duckdb.Statement) -> pd.DataFrame:
+        """The result of a statement that has been parsed already."""
+        with interrupts():
+            return self.connection.execute(statement).df()
 
     def columns(self, sql: str, params: Params = ()) -> dict[str, Any]:
         """The result as plain numpy arrays by column; masked where a column has missing values."""
-        return self.connection.execute(sql, list(params)).fetchnumpy()
+        with interrupts():
+            return self.connection.execute(sql, list(params)).fetchnumpy()
 
     def run(self, sql: str, params: Params = ()) -> None:
         """One statement whose result nobody needs."""
-        self.connection.execute(sql, list(params)).fetchall()
+        self.rows(sql, params)
 
     def insert(self, table: str, frame: pd.DataFrame | Mapping[str, Any], columns: Mapping[str, str] | None = None) -> int:
         """Append a frame (or a mapping of columns) to a base table, matched by name, never by position.
@@ -107,7 +116,8 @@ class Ledger:
         self._inside = True
         try:
             yield self
-            self.connection.commit()
+            with interrupts():
+                self.connection.commit()
         except BaseException:
             try:
                 self.connection.rollback()
@@ -159,6 +169,19 @@ class Ledger:
             )
 
 
+@contextmanager
+def interrupts() -> Iterator[None]:
+    """A Ctrl-C while DuckDB works, which DuckDB reports as an error of its own, is a KeyboardInterrupt again."""
+    try:
+        yield
+    except duckdb.InterruptException:
+        raise KeyboardInterrupt from None
+    except RuntimeError as error:
+        if "query interrupted" in str(error).lower():
+            raise KeyboardInterrupt from None
+        raise
+
+
 def now() -> datetime:
     """The time now, UTC, without a zone and to the second: as it is stored."""
     return datetime.now(UTC).replace(tzinfo=None, microsecond=0)
@@ -174,8 +197,7 @@ def open_for_reading(db: str | Path, *, config: Config = PLAIN) -> Iterator[Ledg
     """The timeline file, read-only. Raises TimelineRefused in one line when it cannot be."""
     path = Path(db)
     _look(path, must_exist=True)
-    with refusals(path):
-        connection = duckdb.connect(str(path), read_only=True, config=dict(config))
+    connection = _connect(path, read_only=True, config=config)
     try:
         _check_version(connection, path)
         with refusals(path):
@@ -186,28 +208,58 @@ def open_for_reading(db: str | Path, *, config: Config = PLAIN) -> Iterator[Ledg
 
 @contextmanager
 def open_for_writing(db: str | Path, *, create: bool = True) -> Iterator[Ledger]:
-    """The timeline file for writing; made when missing unless ``create`` is False. Raises TimelineRefused in one line."""
+    """The timeline file for writing; made when missing unless ``create`` is False. Raises TimelineRefused in one line.
+
+    A file that was made here and that holds nothing when the work on it fails is taken away again.
+    """
     path = Path(db)
     _look(path, must_exist=not create)
-    if not path.exists():
-        _make(path)
-    with refusals(path):
-        connection = duckdb.connect(str(path), config={**PLAIN})
+    made = not path.exists() and _make(path)
+    connection = _connect(path, read_only=False, config=PLAIN)
+    useless = False
     try:
         _check_version(connection, path, writing=True)
         with refusals(path):
             yield Ledger(connection, path, writable=True)
+    except BaseException:
+        useless = made and _holds_nothing(connection)
+        raise
     finally:
         connection.close()  # writes the write-ahead file into the timeline, so that a copy of the one file is whole
+        if useless:
+            path.unlink(missing_ok=True)
 
 
-def _make(path: Path) -> None:
-    """A new timeline, made beside its place and then put there: whoever is killed meanwhile leaves no half file under its name."""
+def _connect(path: Path, *, read_only: bool, config: Config) -> duckdb.DuckDBPyConnection:
+    """The database in a file. DuckDB is given the whole path, because it takes some bare names (:memory:, md:x) for something else."""
+    try:
+        with refusals(path), interrupts():
+            return duckdb.connect(str(path.absolute()), read_only=read_only, config=dict(config))
+    except duckdb.Error as error:  # whatever else it says of a file that it will not open
+        raise TimelineRefused(f"{path} cannot be opened as a timeline: {_first(' '.join(str(error).split()))}; choose another --db") from error
+
+
+def _holds_nothing(connection: duckdb.DuckDBPyConnection) -> bool:
+    """Whether nobody has put anything into a timeline yet."""
+    try:
+        return all(
+            connection.execute(f"SELECT count(*) FROM ledger.{name}").fetchall() == [(0,)]
+            for name in ("source", "decision", "stated_order", "run")
+        )
+    except (duckdb.Error, RuntimeError):
+        return False
+
+
+def _make(path: Path) -> bool:
+    """A new timeline, made beside its place and then put there: whoever is killed meanwhile leaves no half file under its name.
+
+    Returns whether it was made here: False where somebody else made one in the meantime.
+    """
     spare = path.with_name(f".{path.name}.{os.getpid()}.new")
     try:
         with refusals(path):
             spare.unlink(missing_ok=True)
-            connection = duckdb.connect(str(spare), config={**PLAIN, "storage_compatibility_version": STORAGE})
+            connection = duckdb.connect(str(spare.absolute()), config={**PLAIN, "storage_compatibility_version": STORAGE})
             try:
                 _create(connection)
             finally:
@@ -215,10 +267,12 @@ def _make(path: Path) -> None:
             try:
                 os.link(spare, path)  # unlike a rename, it never replaces a file that somebody else made in the meantime
             except FileExistsError:
-                return
+                return False
             except OSError:  # a file system without hard links
-                if not path.exists():
-                    os.replace(spare, path)
+                if path.exists():
+                    return False
+                os.replace(spare, path)
+            return True
     finally:
         spare.unlink(missing_ok=True)
         spare.with_name(f"{spare.name}.wal").unlink(missing_ok=True)
@@ -237,15 +291,29 @@ def _create(connection: duckdb.DuckDBPyConnection) -> None:
 
 
 def _look(path: Path, *, must_exist: bool) -> None:
-    if path.is_dir():
-        raise TimelineRefused(f"{path} is a folder; --db takes a timeline file")
-    if not path.exists():
-        if must_exist:
-            raise TimelineRefused(f"there is no timeline file {path}; make one with: chronos-acc load FILE --db {path}")
-        if not path.absolute().parent.is_dir():
-            raise TimelineRefused(f"the folder of {path} does not exist; make it first")
-    elif path.stat().st_size == 0:
-        raise TimelineRefused(f"{path} is empty (0 bytes), so it is no timeline file; remove it or choose another --db")
+    """Refuse what cannot be a timeline before DuckDB sees it, which would open a list of rows as a database of its own."""
+    from .formats import of_file  # here, because a format needs this module
+
+    with refusals(path):
+        if path.is_dir():
+            raise TimelineRefused(f"{path} is a folder; --db takes a timeline file")
+        if not path.exists():
+            if must_exist:
+                raise TimelineRefused(f"there is no timeline file {path}; make one with: chronos-acc load FILE --db {path}")
+            if not path.absolute().parent.is_dir():
+                raise TimelineRefused(f"the folder of {path} does not exist; make it first")
+            if of_file(path.name):
+                raise TimelineRefused(f"{path} has the ending of a list; give a timeline another, such as {path.stem}.duckdb")
+            return
+        if not path.is_file():
+            raise TimelineRefused(f"{path} is a device or a pipe; --db takes a timeline file")
+        if path.stat().st_size == 0:
+            raise TimelineRefused(f"{path} is empty (0 bytes), so it is no timeline file; remove it or choose another --db")
+        with path.open("rb") as file:
+            known = file.read(MAGIC_AT + len(MAGIC))[MAGIC_AT:] == MAGIC
+    if not known:
+        hint = f"it is a list: load it into a timeline with chronos-acc load {path}" if of_file(path.name) else "choose another --db"
+        raise TimelineRefused(f"{path} is no DuckDB file; {hint}")
 
 
 def _check_version(connection: duckdb.DuckDBPyConnection, path: Path, *, writing: bool = False) -> None:
@@ -272,7 +340,8 @@ def _check_version(connection: duckdb.DuckDBPyConnection, path: Path, *, writing
 def refusals(path: Path) -> Iterator[None]:
     """Turn what DuckDB and the system say about the file into one line of ours."""
     try:
-        yield
+        with interrupts():
+            yield
     except duckdb.InvalidInputException as error:
         if "read-only" in str(error):
             raise TimelineRefused(f"{path} is open for reading only; open it for writing first") from error

@@ -100,11 +100,11 @@ def load(
 
             summary = relink_open(ledger, tell=tell)
             done = [replace(one, linked=summary) for one in done]
-    if refusals:
-        kept = f"{len(done)} of {len(jobs)} lists were loaded" if done else "no list was loaded"
-        error = ListRefused(f"{kept}; refused: {'; '.join(map(str, refusals))}")
-        error.loaded = tuple(done)
-        raise error
+        if refusals:
+            kept = f"{len(done)} of {len(jobs)} lists were loaded" if done else "no list was loaded"
+            error = ListRefused(f"{kept}; refused: {'; '.join(map(str, refusals))}")
+            error.loaded = tuple(done)
+            raise error  # while the file is open, because one that was made for nothing is taken away again
     return done
 
 

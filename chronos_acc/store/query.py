@@ -165,7 +165,7 @@ def _guarded(ledger: Ledger, text: str) -> pd.DataFrame:
         first = sorted(statement.named_parameters)[0]
         raise QueryRefused(f"the statement has a placeholder ({first}); write getvariable('name') and give it with --set name=value")
     try:
-        return ledger.connection.execute(statement).df()
+        return ledger.frame_of(statement)
     except duckdb.Error as error:
         raise QueryRefused(_line(error)) from error
 

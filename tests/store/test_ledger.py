@@ -60,6 +60,94 @@ def test_files_that_are_no_timeline(tmp_path: Path, writing: bool) -> None:
     assert "is a folder" in _refused(tmp_path, writing)
 
 
+@pytest.mark.parametrize("writing", [False, True])
+def test_a_list_or_a_device_is_no_timeline_and_stays_as_it_is(tmp_path: Path, writing: bool) -> None:
+    for name in ("list.csv", "list.tsv", "list.json", "list.csv.gz"):
+        file = tmp_path / name
+        file.write_text("title,date\nkiln,1200\n")
+        assert "it is a list: load it" in _refused(file, writing)
+        assert file.read_text() == "title,date\nkiln,1200\n"
+    packed = tmp_path / "list.parquet"
+    duckdb.sql("SELECT 'kiln' AS title, 1200 AS date").write_parquet(str(packed))
+    assert "it is a list" in _refused(packed, writing)
+    (tmp_path / "short.duckdb").write_bytes(b"DUCK")
+    assert "no DuckDB file" in _refused(tmp_path / "short.duckdb", writing)
+    (tmp_path / "cut.duckdb").write_bytes(b"\0" * 8 + b"DUCK" + b"\0" * 100)
+    _refused(tmp_path / "cut.duckdb", writing)
+    assert "a device" in _refused(Path(os.devnull), writing)
+    new = _refused(tmp_path / "new.csv", writing)
+    assert "new.duckdb" in new if writing else "there is no timeline file" in new
+    assert not (tmp_path / "new.csv").exists()
+
+
+def test_whatever_duckdb_raises_on_opening_is_one_line(db: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def connect(*_: object, **__: object) -> None:
+        raise duckdb.CatalogException("Catalog Error: Cannot launch\nanything")
+
+    monkeypatch.setattr(L.duckdb, "connect", connect)
+    for writing in (False, True):
+        assert "Cannot launch anything" in _refused(db, writing)
+
+
+def test_names_that_mean_something_to_duckdb_are_files_here(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.chdir(tmp_path)
+    with open_for_writing(":memory:") as ledger:
+        ledger.set_about("mine", "yes")
+    with open_for_reading(":memory:") as ledger:
+        assert ledger.about("mine") == "yes"
+
+
+class _Interrupted:
+    """A connection on which somebody presses Ctrl-C."""
+
+    def execute(self, *_: object) -> None:
+        raise RuntimeError("Query interrupted")
+
+    commit = execute
+
+    def begin(self) -> None:
+        """A transaction that can be begun."""
+
+    rollback = begin
+
+
+@pytest.mark.parametrize("how", ["rows", "row", "value", "frame", "columns", "run", "frame_of", "transaction"])
+def test_an_interrupt_inside_duckdb_is_a_keyboard_interrupt(how: str) -> None:
+    ledger = L.Ledger(_Interrupted(), Path("t.duckdb"), writable=True)  # type: ignore[arg-type]
+    with pytest.raises(KeyboardInterrupt):
+        if how == "transaction":
+            with ledger.transaction():
+                pass
+        else:
+            getattr(ledger, how)("SELECT 1")
+
+
+def test_other_runtime_errors_pass(db: Path) -> None:
+    with pytest.raises(RuntimeError, match="mine"), open_for_reading(db):
+        raise RuntimeError("mine")
+    with pytest.raises(KeyboardInterrupt), open_for_reading(db):
+        raise duckdb.InterruptException("INTERRUPT Error: Interrupted!")
+
+
+def test_a_file_made_for_work_that_failed_is_taken_away(tmp_path: Path) -> None:
+    path = tmp_path / "t.duckdb"
+    with pytest.raises(KeyError), open_for_writing(path) as ledger, ledger.transaction():
+        ledger.new_ids("source")
+        raise KeyError
+    assert not list(tmp_path.iterdir())
+    with pytest.raises(KeyError), open_for_writing(path) as ledger:
+        ledger.run("INSERT INTO ledger.source (source, name) VALUES (1, 'kept')")
+        raise KeyError
+    with open_for_reading(path) as ledger:
+        assert ledger.value("SELECT name FROM ledger.source") == "kept"
+
+
+def test_an_empty_timeline_that_was_there_stays(db: Path) -> None:
+    with pytest.raises(KeyError), open_for_writing(db):
+        raise KeyError
+    assert db.exists()
+
+
 @pytest.mark.parametrize(("version", "words"), [("2", "newer chronos_acc"), ("0", "load the lists into a new file"), ("x", "unknown")])
 def test_other_schema_versions(db: Path, version: str, words: str) -> None:
     with open_for_writing(db) as ledger:
