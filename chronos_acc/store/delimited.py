@@ -16,9 +16,11 @@ import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from functools import partial
+from itertools import islice
 from pathlib import Path
 
 from ..errors import ListRefused
+from .headers import LOOK, said
 from .table import Asked, Fast, Line, Table, clip, trouble
 from .text import Text, text_of
 
@@ -26,6 +28,7 @@ DELIMITERS = ",\t;|"
 NAMES = {",": "comma", "\t": "tab", ";": "semicolon", "|": "bar"}
 ROW_LIMIT = 2_097_152  # bytes or characters of one row
 LINES_LIMIT = 10_000  # lines of one row
+NEEDED = 2  # columns that a header must have, title and date: it has them where it was found below a heading
 
 
 @dataclass(frozen=True)
@@ -129,36 +132,38 @@ def read(path: Path, asked: Asked, first: str = ",") -> Table:
     begin = next((i for i, line in enumerate(text.head) if line.strip(" ")), None)
     if begin is None:
         raise ListRefused(f"{asked.name}: the file is empty; a list has a header row and one row for each event")
-    best: tuple[int, int, list[str], _Cutter, int] | None = None
+    best: tuple[int, int, list[str], _Cutter, int, str] | None = None
     for delimiter in sorted(DELIMITERS, key=lambda d: d != first):
         cutter = _Cutter(delimiter)
-        header, after = _header(text.head, cutter, begin)
-        names = [clip(cell.strip()) for cell in header]
-        while len(names) > 1 and not names[-1]:
-            names.pop()
-        score = (asked.fits(names), len(names))
+        rows = _first_rows(text.head, cutter, begin)
+        place = asked.header_at([names for names, _, _ in rows]) if len(rows[0][0]) == 1 else 0
+        names, row, after = rows[place]
+        score = (NEEDED if place else asked.fits(names), len(names))
         if best is None or score > best[:2]:
-            best = (*score, names, cutter, after)
+            best = (*score, names, cutter, after, said("line", row, place) if place else "")
     if best is None:  # pragma: no cover - there are delimiters
         raise ListRefused(f"{asked.name}: no delimiter")
-    names, cutter, after = best[2:]
+    names, cutter, after, found = best[2:]
     return Table(
         header=tuple(names),
         lines=partial(_lines, text, cutter, len(names), after),
         fast=_fast(text, cutter.delimiter, len(names), after),
         raw=text.raw_lines,
         encoding=text.encoding,
-        notes=tuple(text.notes),
+        notes=(*text.notes, found) if found else tuple(text.notes),
     )
 
 
-def _header(head: Sequence[str], cutter: _Cutter, begin: int) -> tuple[list[str], int]:
-    """The cells of the header and the position of the line after it."""
-    for row, raw, cells in _records(head, cutter, begin):
-        if isinstance(cells, str):
-            return raw.split(cutter.delimiter), row
-        return cells, row + raw.count("\n")
-    return [], begin + 1
+def _first_rows(head: Sequence[str], cutter: _Cutter, begin: int) -> list[tuple[list[str], int, int]]:
+    """The first rows as (cells without empty ones at the end, number of the first line, position of the line after it); at least one."""
+    rows = []
+    for row, raw, cells in islice(_records(head, cutter, begin), LOOK):
+        broken = isinstance(cells, str)
+        names = [clip(cell.strip()) for cell in (raw.split(cutter.delimiter) if broken else cells)]
+        while len(names) > 1 and not names[-1]:
+            names.pop()
+        rows.append((names, row, row if broken else row + raw.count("\n")))
+    return rows or [([], begin + 1, begin + 1)]
 
 
 def _fast(text: Text, delimiter: str, width: int, after: int) -> Fast | None:

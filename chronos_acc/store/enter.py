@@ -38,6 +38,7 @@ class Former:
     digest: str
     loaded_at: datetime | None
     file: str
+    compiled: int | None
     counts: dict[str, int]
 
 
@@ -54,10 +55,11 @@ class Change:
 
 def former(ledger: Ledger, name: str) -> Former | None:
     """The list of that name as it stands, or None."""
-    found = ledger.row(f"SELECT source, digest, loaded_at, file, {', '.join(COUNTS)} FROM ledger.source WHERE name = ?", [name])
+    found = ledger.row(f"SELECT source, digest, loaded_at, file, compiled, {', '.join(COUNTS)} FROM ledger.source WHERE name = ?", [name])
     if found is None:
         return None
-    return Former(int(found[0]), str(found[1]), found[2], str(found[3]), dict(zip(COUNTS, map(int, found[4:]), strict=True)))
+    compiled = None if found[4] is None else int(found[4])
+    return Former(int(found[0]), str(found[1]), found[2], str(found[3]), compiled, dict(zip(COUNTS, map(int, found[5:]), strict=True)))
 
 
 def enter(

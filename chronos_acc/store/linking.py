@@ -16,8 +16,8 @@ from ..merge.entries import Decision, Entries, Ints, Linked, LinkOptions
 from ..notebook import ShowsInNotebook
 from ..progress import Tell, silent
 from . import orders
-from .ledger import Ledger, open_for_writing
-from .timeline import ancestry, read_entries, texts
+from .ledger import Ledger, open_for_reading, open_for_writing
+from .timeline import ancestry, read_entries, texts, unknown_kin
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -27,7 +27,7 @@ PARTS = ("title", "gap", "title_evidence", "date_evidence", "category_evidence",
 
 @dataclass(frozen=True)
 class LinkSummary(ShowsInNotebook):
-    """What linking did: entries taken, pairs scored, pairs linked and waiting for review, milestones made, remarks."""
+    """What linking did: entries taken, pairs scored, pairs linked and waiting for review, milestones made, remarks, options used."""
 
     entries: int
     pairs_scored: int
@@ -35,12 +35,14 @@ class LinkSummary(ShowsInNotebook):
     to_review: int
     milestones: int
     notes: tuple[str, ...] = ()
+    options: LinkOptions | None = None
 
     def to_frame(self) -> pd.DataFrame:
         """One row: entries, pairs_scored, linked, to_review, milestones, notes joined by "; "."""
         import pandas as pd
 
-        return pd.DataFrame([asdict(self) | {"notes": "; ".join(self.notes)}])
+        names = ("entries", "pairs_scored", "linked", "to_review", "milestones")
+        return pd.DataFrame([{name: getattr(self, name) for name in names} | {"notes": "; ".join(self.notes)}])
 
 
 def relink(db: str | Path, *, options: LinkOptions | None = None, tell: Tell = silent) -> LinkSummary:
@@ -56,6 +58,14 @@ def relink_open(ledger: Ledger, *, options: LinkOptions | None = None, tell: Tel
     """The same on an open file, as part of the caller's transaction (or in one of its own)."""
     with ledger.transaction():
         return _relink(ledger, options, tell)
+
+
+def stored(db: str | Path) -> LinkOptions:
+    """The options that the next linking takes when it is given none: those of the last; the defaults where there is no file yet."""
+    if not Path(db).exists():
+        return LinkOptions()
+    with open_for_reading(db) as ledger:
+        return stored_options(ledger)
 
 
 def stored_options(ledger: Ledger) -> LinkOptions:
@@ -107,7 +117,8 @@ def _relink(ledger: Ledger, options: LinkOptions | None, tell: Tell) -> LinkSumm
     if known.pairs:
         earlier, later, who = zip(*known.pairs, strict=True)
         ledger.insert("ledger.known_order", {"earlier": list(earlier), "later": list(later), "stated_by": list(who)})
-    notes += [*linked.notes, *pooled.notes, *known.notes, *_decision_notes(ledger)]
+    strangers = [note for of_list in unknown_kin(ledger).values() for note in of_list]
+    notes += [*linked.notes, *pooled.notes, *known.notes, *strangers, *_decision_notes(ledger)]
     ledger.set_about("linked", "yes")
     ledger.set_about("link_options", json.dumps(asdict(chosen)))
     ledger.set_about("link_notes", json.dumps(notes, ensure_ascii=False))
@@ -118,6 +129,7 @@ def _relink(ledger: Ledger, options: LinkOptions | None, tell: Tell) -> LinkSumm
         to_review=int((linked.state == "review").sum()),
         milestones=len(pooled),
         notes=tuple(notes),
+        options=chosen,
     )
 
 
@@ -138,7 +150,7 @@ def _nothing(ledger: Ledger, options: LinkOptions) -> LinkSummary:
     ledger.set_about("linked", "yes")
     ledger.set_about("link_options", json.dumps(asdict(options)))
     ledger.set_about("link_notes", "[]")
-    return LinkSummary(0, 0, 0, 0, 0, tuple(_decision_notes(ledger)))
+    return LinkSummary(0, 0, 0, 0, 0, tuple(_decision_notes(ledger)), options)
 
 
 def _write_links(ledger: Ledger, entries: Entries, linked: Linked) -> None:

@@ -17,13 +17,14 @@ from ..errors import ListRefused, Refused, SheetRefused
 from ..notebook import ShowsInNotebook
 from ..progress import Tell, silent
 from .dates import date_rows
-from .enter import Change, enter, former
+from .enter import Change, Former, enter, former
 from .exchange import is_export, restore
 from .ledger import Ledger, open_for_writing
 from .remarks import remarks_of
 from .rows import Rows, fill, raw_of
 from .sheets import columns_of
 from .staging import STDIN, Job, resolve, stage, table_of
+from .timeline import unknown_kin
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -100,6 +101,8 @@ def load(
 
             summary = relink_open(ledger, tell=tell)
             done = [replace(one, linked=summary) for one in done]
+        strangers = unknown_kin(ledger)
+        done = [replace(one, notes=(*one.notes, *strangers.get(one.source, ()))) for one in done]
         if refusals:
             kept = f"{len(done)} of {len(jobs)} lists were loaded" if done else "no list was loaded"
             error = ListRefused(f"{kept}; refused: {'; '.join(map(str, refusals))}")
@@ -135,8 +138,9 @@ def _load(ledger: Ledger, job: Job, *, strict: bool, stdin: BinaryIO | None, enc
     with tempfile.TemporaryDirectory(prefix="chronos-acc-") as folder:
         scratch = Path(folder)
         tell("opening", 0.0)
-        staged = stage(job, scratch, stdin, encoding)
         before = former(ledger, job.sheet.name)
+        job = _year_kept(job, before)
+        staged = stage(job, scratch, stdin, encoding)
         if before is not None and before.digest == staged.digest:
             return _unchanged(before.counts, job, before.loaded_at)
         table = table_of(job, staged, scratch, encoding)
@@ -173,6 +177,21 @@ def _load(ledger: Ledger, job: Job, *, strict: bool, stdin: BinaryIO | None, enc
     return _loaded(job, rows.count, loaded, change, change.notes)
 
 
+def _year_kept(job: Job, before: Former | None) -> Job:
+    """The list with the compile year it had before, where nothing gives one now; that, or a change of the year, is said."""
+    if before is None or before.compiled == job.sheet.compiled:
+        return job
+    sheet, was = job.sheet, before.compiled
+    if sheet.compiled is None:
+        sheet = replace(sheet, compiled=was, settings=replace(sheet.settings, compiled=was))
+        said = f"compile year {was} kept from the load before; --compiled or a sheet changes it"
+    elif was is None:
+        said = f"compile year {sheet.compiled}; the load before had none"
+    else:
+        said = f"compile year {sheet.compiled} in place of {was}: dates counted \"ago\" and the present move with it"
+    return replace(job, sheet=sheet, notes=(*job.notes, said))
+
+
 def _loaded(job: Job, read: int, loaded: int, change: Change, notes: Sequence[str]) -> Loaded:
     return Loaded(job.sheet.name, read, loaded, read - loaded, change.added, change.changed, change.gone, change.duplicates, tuple(notes))
 
@@ -183,7 +202,7 @@ def _unchanged(counts: dict[str, int], job: Job, loaded_at: object) -> Loaded:
         raise ListRefused(f"{job.label}: none of its {counts['rows_read']:,} rows can be read, as before; see: chronos-acc rejects")
     return Loaded(
         job.sheet.name, counts["rows_read"], counts["rows_loaded"], counts["rows_rejected"], duplicates=counts["duplicates"],
-        notes=(f"the same as was loaded on {loaded_at} UTC; nothing was changed",),
+        notes=(f"the same as was loaded on {loaded_at} UTC; nothing was changed", *job.notes),
     )  # fmt: skip
 
 

@@ -15,6 +15,7 @@ from typing import Any
 from ..dating import read_row, settings_from
 from ..errors import DateRefused, ListRefused
 from . import formats
+from .headers import HEADERS, plain
 from .rows import SPACES
 from .sheets import COLUMNS, NEEDED, Sheet, bare_sheet, name_problem
 from .staging import Job, resolve, stage, table_of
@@ -22,20 +23,7 @@ from .table import Table
 
 EXAMPLES = 5
 LOOK = 5000  # rows that are looked at
-HEADERS: Mapping[str, tuple[str, ...]] = {
-    "title": ("title", "event", "milestone", "name", "what", "headline", "label", "description", "entry", "item"),
-    "date": ("date", "year", "when", "time", "age", "dated", "years ago", "date text", "ma", "ka", "bp"),
-    "unit": ("unit", "units", "time unit", "era"),
-    "sigma": ("sigma", "sigmas", "sigma level"),
-    "plus_minus": ("plus_minus", "plus minus", "±", "+/-", "error", "uncertainty", "sd", "std", "err"),
-    "earliest": ("earliest", "from", "start", "not before", "begin", "lower", "oldest"),
-    "latest": ("latest", "to", "end", "until", "not after", "upper", "youngest"),
-    "category": ("category", "field", "kind", "type", "domain", "class", "subject"),
-    "importance": ("importance", "weight", "rank", "score", "rating", "significance"),
-    "level": ("level", "granularity", "depth"),
-    "parent": ("parent", "part of", "belongs to"),
-    "note": ("note", "notes", "comment", "comments", "remark", "remarks"),
-}
+CLEARLY = 0.1  # share of the rows by which a choice must read more than the plain one to be proposed
 CHOICES: tuple[tuple[str, Mapping[str, Any]], ...] = (
     ("as the dates stand and the header says", {}),
     ("numbers are calendar years", {"counted": "calendar"}),
@@ -69,6 +57,11 @@ class _Choice:
     words: str
     keys: Mapping[str, Any]
     read: int
+    reads: Mapping[tuple[str | None, ...], bool]  # by the cells that date a row, in order of the rows
+
+    def beyond(self, other: _Choice) -> str:
+        """The first date that this choice reads and another does not, or nothing."""
+        return next((str(cells[0]) for cells, read in self.reads.items() if read and not other.reads[cells]), "")
 
 
 def propose_sheet(file: str | Path, *, as_format: str | None = None, encoding: str | None = None, compiled: int | None = None) -> str:
@@ -100,23 +93,19 @@ def _look(job: Job, staged: Any, scratch: Path, encoding: str | None) -> tuple[T
     return table, [line.cells for line in lines if line.cells is not None], sum("encoding" in line.reason for line in lines)
 
 
-def _plain(name: str) -> str:
-    return " ".join(name.casefold().replace("_", " ").replace("-", " ").split())
-
-
 def _columns(header: Sequence[str], cells: Sequence[Sequence[str | None]]) -> dict[str, int]:
     """The position of each column that can be told, by name; title and date also by what stands in them."""
     found: dict[str, int] = {}
-    plain = [_plain(name) for name in header]
+    names = [plain(name) for name in header]
     for key in COLUMNS:
         for word in HEADERS[key]:
-            place = next((i for i, name in enumerate(plain) if name == _plain(word) and i not in found.values()), None)
+            place = next((i for i, name in enumerate(names) if name == plain(word) and i not in found.values()), None)
             if place is not None:
                 found[key] = place
                 break
     for key in ("date", "title"):
         if key not in found:  # a header that holds the word: "Event name", "Year (CE)"
-            place = next((i for i, name in enumerate(plain) if i not in found.values() and set(name.split()) & set(HEADERS[key])), None)
+            place = next((i for i, name in enumerate(names) if i not in found.values() and set(name.split()) & set(HEADERS[key])), None)
             if place is not None:
                 found[key] = place
     free = [i for i in range(len(header)) if i not in found.values()]
@@ -163,24 +152,49 @@ def _choices(cells: Sequence[Sequence[str | None]], columns: Mapping[str, int], 
             if key not in seen:
                 seen[key] = _reads(key[0], keys, year, **dict(zip(extra, key[1:], strict=True)))
             read += seen[key]
-        made.append(_Choice(words, keys, read))
+        made.append(_Choice(words, keys, read, seen))
     return made
 
 
 def _hint(header: str) -> Mapping[str, Any]:
     """The unit that a header names, such as Ma in "Age (Ma)"."""
-    words = _plain("".join(char if char.isalnum() else " " for char in header)).split()
+    words = plain("".join(char if char.isalnum() else " " for char in header)).split()
     for word, unit in _UNIT_HINTS:
         if word in words:
             return {"unit": unit}
     return {"counted": "ago"} if "ago" in words or "age" in words else {}
 
 
-def _chosen(choices: Sequence[_Choice]) -> Mapping[str, Any]:
-    """What is written into the sheet: the plainest choice, unless another alone reads more rows; a tie is left to the person."""
-    most = max((choice.read for choice in choices), default=0)
+def _chosen(choices: Sequence[_Choice], count: int) -> _Choice:
+    """What is written into the sheet: the plainest choice, unless another alone reads clearly more rows; a tie is left to the person.
+
+    A choice that gives another meaning to every number reads dates that the plain one rightly refuses (a year to come is read as an age),
+    so that a single row is no reason to take it.
+    """
+    first = choices[0]
+    most = max(choice.read for choice in choices)
     best = [choice for choice in choices if choice.read == most]
-    return best[0].keys if best and (best[0] is choices[0] or len(best) == 1) else (choices[0].keys if choices else {})
+    gain = most - first.read
+    if len(best) > 1 or gain < max(1, CLEARLY * count):
+        return first
+    changed = {key for key, value in best[0].keys.items() if first.keys.get(key) != value}
+    return first if gain == 1 and changed & {"counted", "unit"} else best[0]
+
+
+def _table(choices: Sequence[_Choice], chosen: _Choice, count: int) -> list[str]:
+    """Comment lines: how many rows each choice reads, which is proposed, and a date that only another reads."""
+    lines = [f"# rows that each choice reads, of {count:,}:"]
+    width = max(len(_setting(choice.keys)) for choice in choices) + 2
+    more = False
+    for choice in choices:
+        tail = "  <- proposed" if choice is chosen else ""
+        if choice.read > chosen.read:
+            more = True
+            tail = f"; reads {_toml(' '.join(choice.beyond(chosen).split())[:60])} too"
+        lines.append(f"#   {choice.read:>6,}  {_setting(choice.keys):{width}}{choice.words}{tail}")
+    if more:
+        lines.append("# more rows read is no proof: any number can be read as an age; look at the date that is named, it may be a slip")
+    return lines
 
 
 def _toml(value: object) -> str:
@@ -202,6 +216,7 @@ def _text(
     choices = _choices(cells, columns, base, year)
     lines = [
         f"# A first sheet for {_toml(path.name)}, from {count:,} of its rows. Check each line; take the # away where you know the answer.",
+        *(f"# {' '.join(note.split())}" for note in table.notes),
         "",
         "[compilation]",
         f"name = {_toml(name)}",
@@ -209,7 +224,7 @@ def _text(
         '# citation = ""        # how to cite it',
         f"compiled = {compiled}"
         if compiled is not None
-        else "# compiled = 2000      # year it was compiled: ages such as 12 ka or 66 Ma count back from it",
+        else "# compiled =           # the year the list was compiled, e.g. 2019: ages such as 12 ka or 66 Ma count back from it",
         '# criterion = ""       # what the compiler took in, and what not',
         '# derives_from = ""    # name of a list it was drawn from: such lists count once',
     ]
@@ -228,13 +243,11 @@ def _text(
     if left:
         lines.append(f"# also possible: {', '.join(left)}")
     lines += ["", "[dating]"]
-    chosen = _chosen(choices)
-    lines += [f"{key} = {_toml(value)}" for key, value in chosen.items()]
     if choices:
-        lines.append(f"# rows that each choice reads, of {count:,}:")
-        width = max(len(_setting(choice.keys)) for choice in choices) + 2
-        lines += [f"#   {choice.read:>6,}  {_setting(choice.keys):{width}}{choice.words}" for choice in choices]
-        unread = _unread(cells, columns, chosen, year)
+        chosen = _chosen(choices, count)
+        lines += [f"{key} = {_toml(value)}" for key, value in chosen.keys.items()]
+        lines += _table(choices, chosen, count)
+        unread = _unread(cells, columns, chosen.keys, year)
         if unread:
             lines += ["# not read as proposed, for example:", *(f"#   {reason}" for reason in unread)]
     return "\n".join(lines) + "\n"

@@ -10,12 +10,14 @@ import shutil
 import zlib
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import partial
 from pathlib import Path
 from typing import BinaryIO
 
 from .. import __version__
 from ..errors import ListRefused, SheetRefused, WrongUse
 from . import formats
+from .headers import header_at
 from .sheets import Sheet, bare_sheet, find_sheet, match_columns, names_file, read_sheet, sheets_in
 from .table import Asked, Format, Table
 
@@ -195,4 +197,4 @@ def table_of(job: Job, staged: Staged, scratch: Path, encoding: str | None) -> T
     def fits(header: Sequence[str]) -> int:
         return sum(key in match_columns(header, job.sheet.columns) for key in ("title", "date"))
 
-    return job.format.read(staged.path, Asked(job.label, fits, scratch, encoding or job.sheet.encoding))
+    return job.format.read(staged.path, Asked(job.label, fits, scratch, encoding or job.sheet.encoding, partial(header_at, columns=job.sheet.columns)))

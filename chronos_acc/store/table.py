@@ -63,6 +63,7 @@ class Asked:
     """What a format needs to know: the encoding that was named, and how to tell that a header will do.
 
     ``fits(header)`` is the number of needed columns that it has (title and date: 2). ``name`` is how messages call the file.
+    ``header_at(rows)`` is the position of the header among the first rows that are not empty: 0, or lower down below a heading.
     ``scratch`` is a folder for files that live only while the list is read.
     """
 
@@ -70,6 +71,7 @@ class Asked:
     fits: Callable[[Sequence[str]], int]
     scratch: Path
     encoding: str | None = None
+    header_at: Callable[[Sequence[Sequence[str]]], int] = field(default=lambda rows: 0)
 
 
 def clip(raw: str) -> str:

@@ -3,6 +3,7 @@
 
 from __future__ import annotations
 
+import difflib
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
@@ -145,6 +146,23 @@ def ancestry(ledger: Ledger) -> dict[str, str]:
     return {name: top(name) for name in root if top(name) != name}
 
 
+def unknown_kin(ledger: Ledger) -> dict[str, list[str]]:
+    """By list, a sentence for each name in its derives_from that no list of the timeline has, in order of the lists."""
+    names = [str(name) for (name,) in ledger.rows("SELECT name FROM ledger.source ORDER BY source")]
+    said: dict[str, list[str]] = {}
+    stated = ledger.rows("SELECT name, derives_from FROM ledger.source WHERE derives_from IS NOT NULL ORDER BY source")
+    for name, parents in stated:
+        for parent in dict.fromkeys(map(str, parents)):
+            if parent not in names:
+                shared = sum(parent in others for _, others in stated) > 1
+                near = difflib.get_close_matches(parent, [other for other in names if other != name], n=1)
+                said.setdefault(str(name), []).append(
+                    f"derives_from of {name} names {parent!r}, which is no list here{f' (did you mean {near[0]!r}?)' if near else ''}; "
+                    f"{'the lists that name it count once' if shared else 'until it is loaded the lists count as independent'}"
+                )
+    return said
+
+
 def record(
     db: str | Path, *, present: float | None = None, start: float | None = None, sources: Sequence[str] | None = None,
     min_support: int | None = None, category: str | None = None,
@@ -173,8 +191,30 @@ def record_open(
     if present is None:
         whole = replace(whole, present=default, present_from=origin)
     chosen = whole.only(sources=sources, min_support=min_support, category=category, present=present, start=start)
-    late = after_note(chosen)
-    return replace(chosen, notes=(*chosen.notes, late)) if late else chosen
+    said = [note for note in (after_note(chosen), _copies_note(ledger, chosen, sources)) if note]
+    return replace(chosen, notes=(*chosen.notes, *said)) if said else chosen
+
+
+def _copies_note(ledger: Ledger, chosen: Record, sources: Sequence[str] | None) -> str:
+    """What to know about entries that repeat title and dating of another of their list and yet are milestones of their own."""
+    found = ledger.rows(
+        "SELECT m.milestone, o.milestone, f.entry, e.entry, s.name FROM ledger.entry AS e JOIN ledger.entry AS f ON f.source = e.source"
+        " AND f.title = e.title AND f.earliest = e.earliest AND f.best = e.best AND f.latest = e.latest AND f.normal = e.normal"
+        " JOIN ledger.member AS m ON m.entry = e.entry JOIN ledger.member AS o ON o.entry = f.entry"
+        " JOIN ledger.source AS s ON s.source = e.source"
+        " WHERE e.duplicate AND NOT f.duplicate AND m.milestone <> o.milestone ORDER BY e.entry"
+    )
+    held = {int(i) for i in chosen.id}
+    pairs = {int(m): (f, e) for m, o, f, e, name in reversed(found) if {int(m), int(o)} <= held and (sources is None or name in sources)}
+    if not pairs:
+        return ""
+    first, second = pairs[min(pairs)]
+    what = "1 milestone repeats" if len(pairs) == 1 else f"{len(pairs):,} milestones repeat"
+    return (
+        f"{what} title and date of another of the same list and {'counts as an event' if len(pairs) == 1 else 'count as events'} "
+        f"(entries {first} and {second}{', and so on' if len(pairs) > 1 else ''}); if they are copies, settle them as same with "
+        "chronos-acc review --pair ID ID --verdict same"
+    )
 
 
 def _whole(ledger: Ledger) -> Record:

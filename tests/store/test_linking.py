@@ -12,7 +12,7 @@ from chronos_acc.errors import TimelineRefused, WrongUse
 from chronos_acc.merge.entries import LinkOptions
 from chronos_acc.store import timeline as T
 from chronos_acc.store.ledger import open_for_reading, open_for_writing
-from chronos_acc.store.linking import PARTS, relink, relink_open, stored_options
+from chronos_acc.store.linking import PARTS, relink, relink_open, stored, stored_options
 from tests.store.timelines import KILN, make, put, two_lists
 
 
@@ -104,3 +104,14 @@ def test_notes_are_kept(db: Path) -> None:
     notes = relink(db).notes
     with open_for_reading(db) as ledger:
         assert tuple(json.loads(str(ledger.about("link_notes")))) == notes
+
+
+def test_the_options_used_are_in_the_summary_and_can_be_asked_for(db: Path, tmp_path: Path) -> None:
+    assert stored(tmp_path / "none.duckdb") == LinkOptions() and not (tmp_path / "none.duckdb").exists()
+    assert stored(make(tmp_path / "new.duckdb", {}, link=False)) == LinkOptions()
+    chosen = LinkOptions(accept=0.7, prefer="beta")
+    assert relink(db, options=chosen).options == chosen
+    assert stored(db) == chosen
+    again = relink(db)
+    assert again.options == chosen
+    assert list(again.to_frame()) == ["entries", "pairs_scored", "linked", "to_review", "milestones", "notes"]

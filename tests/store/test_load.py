@@ -111,7 +111,7 @@ def test_strict_keeps_nothing_of_a_list_with_a_refused_row(db: Path, tmp_path: P
     file = write(tmp_path / "kilns.csv", LIST)
     with pytest.raises(ListRefused, match="1 of its 5 rows cannot be read; line 5: the row has no date.*--strict"):
         load(db, [file], link=False, strict=True)
-    assert held(db) == []
+    assert not db.exists()
 
 
 def test_one_bad_list_among_several_does_not_stop_the_others(db: Path, tmp_path: Path) -> None:
@@ -297,3 +297,77 @@ def test_titles_stay_as_they_are_written(db: Path, tmp_path: Path) -> None:
         csv.writer(out).writerows([["title", "date"], *([f"\u00a0 {title} ", "1850"] for title in titles)])
     load(db, [tmp_path / "x.csv"], link=False)
     assert [title for (title,) in held(db, "title")] == titles
+
+
+@pytest.mark.parametrize("with_sheet", [False, True])
+def test_the_compile_year_is_kept_where_nothing_gives_another(db: Path, tmp_path: Path, with_sheet: bool) -> None:
+    (tmp_path / "lists").mkdir()
+    file = write(tmp_path / "lists" / "dup.csv", "title,date\na,12 years ago\nb,1850\n")
+    if with_sheet:
+        write(tmp_path / "lists" / "dup.toml", '[compilation]\ntitle = "All"\n')
+    given = file.parent if with_sheet else file
+    load(db, given, compiled=2020)
+    before = held(db, "*")
+    kept = "compile year 2020 kept from the load before; --compiled or a sheet changes it"
+    (again,) = load(db, given)
+    assert "nothing was changed" in again.notes[0] and again.notes[1:] == (kept,)
+    write(file, "title,date\na,12 years ago\nb,1850\nc,1900\n")
+    (more,) = load(db, given)
+    assert kept in more.notes and (more.added, more.changed, more.gone) == (1, 0, 0)
+    assert held(db, "*")[:2] == before
+    (other,) = load(db, given, compiled=2010)
+    assert 'compile year 2010 in place of 2020: dates counted "ago" and the present move with it' in other.notes
+    assert (other.changed, held(db, "earliest")[0]) == (1, (1997.5,))
+    write(file.with_name("dup.toml"), "[compilation]\ncompiled = 2015\n")
+    (sheet,) = load(db, given)
+    assert any("compile year 2015 in place of 2010" in note for note in sheet.notes)
+    with open_for_reading(db) as ledger:
+        assert ledger.value("SELECT compiled FROM ledger.source") == 2015
+        assert any("2015 in place of 2010" in note for note in ledger.value("SELECT notes FROM ledger.source"))
+
+
+def test_a_compile_year_given_late_is_said(db: Path, tmp_path: Path) -> None:
+    file = write(tmp_path / "x.csv", LIST)
+    load(db, file, link=False)
+    assert "compile year 2020; the load before had none" in load(db, file, link=False, compiled=2020)[0].notes
+
+
+@pytest.mark.parametrize("link", [False, True])
+def test_an_unknown_ancestor_is_said_until_it_is_loaded(db: Path, tmp_path: Path, link: bool) -> None:
+    first = write(tmp_path / "dup.csv", "title,date\na,1850\n")
+    second = write(tmp_path / "other.csv", "title,date\nb,1900\n")
+    sheet = write(tmp_path / "other.toml", '[compilation]\nderives_from = "dupp"\n')
+    one, two = load(db, [first, second], link=link)
+    said = (
+        "derives_from of other names 'dupp', which is no list here (did you mean 'dup'?); "
+        "until it is loaded the lists count as independent"
+    )
+    assert said in two.notes and said not in one.notes
+    assert two.linked is None or said in two.linked.notes
+    assert said in load(db, second, link=link)[0].notes
+    write(sheet, '[compilation]\nderives_from = "dup"\n')
+    assert not [note for note in load(db, second, link=link)[0].notes if "derives_from" in note]
+
+
+def test_lists_with_one_unknown_ancestor_count_once(db: Path, tmp_path: Path) -> None:
+    for name in ("a", "b"):
+        write(tmp_path / f"{name}.csv", "title,date\nx,1850\n")
+        write(tmp_path / f"{name}.toml", '[compilation]\nderives_from = "lost"\n')
+    loaded = load(db, tmp_path)
+    assert all("no list here; the lists that name it count once" in one.notes[-1] for one in loaded)
+
+
+def test_a_first_load_that_gives_nothing_leaves_no_file(db: Path, tmp_path: Path) -> None:
+    bad = write(tmp_path / "bad.csv", "x,y\n1,2\n")
+    empty = write(tmp_path / "empty.csv", "")
+    for files in ([bad], [bad, empty], [tmp_path / "none.csv"]):
+        with pytest.raises(ListRefused):
+            load(db, files)
+        assert not [path for path in tmp_path.iterdir() if "timeline" in path.name]
+    with pytest.raises(ListRefused):  # its refused rows are kept to be looked at
+        load(db, write(tmp_path / "rows.csv", "title,date\na,never\n"))
+    kept = db.read_bytes()
+    for files in ([bad], [bad, empty]):
+        with pytest.raises(ListRefused):
+            load(db, files)
+    assert db.read_bytes() == kept

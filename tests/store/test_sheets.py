@@ -166,7 +166,7 @@ def test_a_proposed_sheet_loads(tmp_path: Path) -> None:
     text = propose_sheet(file)
     assert 'title = "Event name"' in text and 'date = "Age (Ma)"' in text and 'category = "Field"' in text and 'unit = "Ma"' in text
     assert '# kept as they are, without a meaning: "x"' in text and '\ndecimal = ","' in text
-    sheet(tmp_path, text.replace("# compiled = 2000", "compiled = 2000"), "old events.toml")
+    sheet(tmp_path, text.replace("# compiled =  ", "compiled = 2000  "), "old events.toml")
     (one,) = load(tmp_path / "t.duckdb", [file], link=False)
     assert (one.source, one.rows_loaded) == ("old events", 2)
     with open_for_reading(tmp_path / "t.duckdb") as ledger:

@@ -15,7 +15,9 @@ from chronos_acc.intervals import interval_series
 from chronos_acc.mixture import NORMAL, summary_of_parts
 from chronos_acc.store import query as Q
 from chronos_acc.store import timeline as T
+from chronos_acc.store.decisions import decide
 from chronos_acc.store.ledger import open_for_reading, open_for_writing
+from chronos_acc.store.linking import relink
 from tests.store.timelines import BRIDGE, KILN, MILL, Row, make, put, two_lists
 
 
@@ -203,3 +205,22 @@ def test_reloading_a_list_keeps_the_ids_of_what_stays(db: Path, tmp_path: Path) 
     after = T.table(fresh, "entries")
     assert int(after[after["title"] == BRIDGE]["entry"].iloc[0]) == before[BRIDGE]
     assert int(after[after["title"] == "a new thing"]["entry"].iloc[0]) > max(before.values())
+
+
+def test_copies_that_count_as_milestones_are_said(tmp_path: Path) -> None:
+    copy = {"title": "gate", "best": 1900.5, "duplicate": True}
+    db = make(tmp_path / "t.duckdb", {"a": [("gate", 1900.5), copy, ("mill", 1700.5)], "b": [("weir", 1500.5)]})
+    (note,) = T.record(db).notes
+    assert note == (
+        "1 milestone repeats title and date of another of the same list and counts as an event (entries 1 and 2); "
+        "if they are copies, settle them as same with chronos-acc review --pair ID ID --verdict same"
+    )
+    assert T.record(db, sources=["b"]).notes == ()
+    decide(db, 1, 2, "same", who="tester")
+    relink(db)
+    assert T.record(db).notes == ()
+    with open_for_writing(db) as ledger, ledger.transaction():
+        put(ledger, "c", [("ford", 1600.5), *({"title": "ford", "best": 1600.5, "duplicate": True} for _ in range(2))])
+    relink(db)
+    (note,) = T.record(db).notes
+    assert note.startswith("2 milestones repeat title and date of another of the same list and count as events (entries 5 and 6, and so on)")

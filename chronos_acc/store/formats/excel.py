@@ -12,6 +12,7 @@ from pathlib import Path
 from typing import Any
 
 from ...errors import ListRefused
+from ..headers import LOOK, said
 from ..table import Asked, Format, Line, Table, clip, plain_number, trouble
 
 
@@ -76,13 +77,17 @@ def read(path: Path, asked: Asked) -> Table:
                     rows, used = _rows(worksheet), worksheet.title
             book.close()
     except Exception as error:  # a damaged workbook fails in as many ways as there are parts in it
-        said = " ".join(str(error).split())[:120] or type(error).__name__
-        raise ListRefused(f"{asked.name}: no workbook that can be read ({said}); save it again as .xlsx, or as CSV") from None
+        told = " ".join(str(error).split())[:120] or type(error).__name__
+        raise ListRefused(f"{asked.name}: no workbook that can be read ({told}); save it again as .xlsx, or as CSV") from None
     if not rows:
         raise ListRefused(f"{asked.name}: the workbook is empty; a list has a header row and one row for each event")
-    header = tuple((cell or "").strip() for cell in rows[0][1])
-    notes = (f"worksheet {used!r} was read; not read: {', '.join(map(repr, unread))}",) if unread else ()
-    return Table(header, partial(_lines, rows[1:], len(header)), unit="row", encoding="", notes=notes)
+    place = asked.header_at([[(cell or "").strip() for cell in cells] for _, cells in rows[:LOOK]])
+    number, cells = rows[place]
+    header = tuple((cell or "").strip() for cell in cells)
+    notes = [f"worksheet {used!r} was read; not read: {', '.join(map(repr, unread))}"] if unread else []
+    if place:
+        notes.append(said("row", number, place))
+    return Table(header, partial(_lines, rows[place + 1 :], len(header)), unit="row", encoding="", notes=tuple(notes))
 
 
 FORMAT = Format("excel", (".xlsx", ".xlsm"), "the first worksheet with cells; needs the extra excel", read)
