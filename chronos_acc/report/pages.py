@@ -91,6 +91,9 @@ def link_page(summary: Any) -> Page:
     columns = (Column("entries", "entries", "count"), Column("pairs_scored", "pairs scored", "count"), Column("linked", "linked", "count"),
                Column("to_review", "to review", "count"), Column("milestones", "milestones", "count"))  # fmt: skip
     below = list(summary.notes)
+    used = summary.options
+    if used is not None:
+        below.insert(0, f"joined from probability {used.accept:g} on, doubtful from {used.review:g} on; datings pooled by {used.pooling.replace('_', ' ')}")
     if summary.to_review:
         below.append("doubtful pairs: chronos-acc review")
     return Page(document, (Table("link", frame, "How many milestones do the lists share?", columns, tuple(below)),), "link")

@@ -18,10 +18,10 @@ POOLING = ("mixture", "inverse_variance", "random_effects", "paule_mandel", "pre
 
 
 def _arguments(parser: argparse.ArgumentParser) -> None:
-    parser.add_argument("--accept", type=number(0, 1), metavar="P", default=None, help="join pairs from this probability on (0.5)")
-    parser.add_argument("--doubt", type=number(0, 1), metavar="P", default=None, help="between this probability and the other, ask for review (0.1)")
+    parser.add_argument("--accept", type=number(0, 1), metavar="P", default=None, help="join pairs from this probability on (0.5, or what the last link used)")
+    parser.add_argument("--doubt", type=number(0, 1), metavar="P", default=None, help="between this probability and the other, ask for review (0.1, or what the last link used)")
     parser.add_argument("--prefer", metavar="LIST", help="the list whose titles name the milestones")
-    parser.add_argument("--pooling", choices=POOLING, default=None, help="how the datings of one milestone become one (mixture)")
+    parser.add_argument("--pooling", choices=POOLING, default=None, help="how the datings of one milestone become one (mixture, or what the last link used)")
     parser.add_argument("--orders", metavar="FILE.csv", help="known orders (columns earlier,later: two titles a row); draws then respect them, a circle is refused")
     parser.add_argument("--check", metavar="GOLD.csv", help="compare with a gold file (source,title,milestone): precision, recall, and the threshold curve")
 
@@ -29,14 +29,14 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
 def _run(options: argparse.Namespace, out: Output) -> int:
     from ...merge.entries import LinkOptions
     from ...report.pages import gold_page, link_page
-    from ...store.linking import relink
+    from ...store.linking import relink, stored
 
-    default = LinkOptions()
+    before = stored(timeline(options))  # what the last link used stands until it is changed
     chosen = LinkOptions(
-        accept=default.accept if options.accept is None else options.accept,
-        review=default.review if options.doubt is None else options.doubt,
-        prefer=options.prefer,
-        pooling=options.pooling or default.pooling,
+        accept=before.accept if options.accept is None else options.accept,
+        review=before.review if options.doubt is None else options.doubt,
+        prefer=options.prefer or before.prefer,
+        pooling=options.pooling or before.pooling,
     )
     if options.check:
         from pathlib import Path
