@@ -56,5 +56,5 @@ def _named(row: Sequence[str], columns: Mapping[str, str]) -> set[str]:
 
 def said(unit: str, row: int, above: int) -> str:
     """The remark on a header that was found below ``above`` rows."""
-    what = f"the {unit} above it is no row" if above == 1 else f"the {above} {unit}s above it are no rows"
+    what = "the line above it is no row" if above == 1 else f"the {above} lines above it are no rows"
     return f"the header was found in {unit} {row}; {what}"

@@ -8,6 +8,7 @@ import re
 from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cache
+from math import isfinite
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -23,7 +24,11 @@ if TYPE_CHECKING:
 Value = str | int | float | bool | None
 _PRAGMA = re.compile(r"(\s|--[^\n]*(\n|$)|/\*.*?\*/)*pragma\b", re.IGNORECASE | re.DOTALL)
 _SWITCH = re.compile(r"\b((enable|disable)_(logging|profiling)|truncate_duckdb_logs|write_log|(force_)?checkpoint)\s*\(", re.IGNORECASE)
-VIEW_VARIABLES = ("present", "start", "min_support", "category")  # what the views themselves follow
+_CAST = re.compile(r"getvariable\s*\(\s*'([^']+)'\s*\)\s*::\s*(\w+)", re.IGNORECASE)
+_LIMIT = re.compile(r"\b(?:LIMIT|OFFSET)\s+(?:coalesce\s*\(\s*)?getvariable\s*\(\s*'([^']+)'\s*\)", re.IGNORECASE)
+VIEW_VARIABLES = {"present": "DOUBLE", "start": "DOUBLE", "min_support": "DOUBLE", "category": "VARCHAR"}  # what the views themselves follow
+KINDS = {"DOUBLE": "a number", "BIGINT": "a whole number", "INTEGER": "a whole number", "UBIGINT": "a whole number, 0 or more"}
+A_LIST = "name of a list"  # how the meaning of a parameter begins that must be one
 
 
 @dataclass(frozen=True)
@@ -109,16 +114,24 @@ def run(db: str | Path, text_or_name: str, settings: Mapping[str, Value] | None 
     """
     given = dict(settings or {})
     text = text_or_name.strip()
+    lists: list[str] = []
     if re.fullmatch(r"[A-Za-z_]\w*", text):
         query = _must_find(text, folder)
         text = query.sql
+        lists = [name for name, words in query.parameters.items() if words.startswith(A_LIST)]
         _only_known(given, list(query.parameters), f"the query {query.name}")
     else:
         mentioned = re.findall(r"getvariable\s*\(\s*'([^']+)'\s*\)", text, flags=re.IGNORECASE)
         _only_known(given, [*dict.fromkeys(mentioned), *(v for v in VIEW_VARIABLES if v not in mentioned)], "this statement")
     with open_for_reading(db, config=GUARDED) as ledger:
+        kinds = VIEW_VARIABLES | {name: kind.upper() for name, kind in _CAST.findall(text)} | dict.fromkeys(_LIMIT.findall(text), "UBIGINT")
         for name, value in given.items():
-            ledger.run(f"SET VARIABLE {quoted(name)} = ?", [as_value(value)])
+            kind = kinds.get(name, "")
+            plain = value if kind == "VARCHAR" else as_value(value)
+            if name in lists:
+                _must_be_list(ledger, name, plain)
+            _must_convert(ledger, name, plain, kind)
+            ledger.run(f"SET VARIABLE {quoted(name)} = ?", [plain])
         return _guarded(ledger, text)
 
 
@@ -138,6 +151,25 @@ def as_value(value: Value) -> Value:
         if re.fullmatch(r"-?(0|[1-9]\d*)(\.\d+)?([eE][-+]?\d{1,3})?", value):
             return float(value)
     return value
+
+
+def _must_be_list(ledger: Ledger, name: str, value: Value) -> None:
+    """Raises QueryRefused where no list of the timeline has the name."""
+    there = [str(one) for (one,) in ledger.rows("SELECT name FROM ledger.source ORDER BY source")]
+    if value is not None and str(value) not in there:
+        near = difflib.get_close_matches(str(value), there, n=1)
+        hint = f"did you mean {near[0]!r}? " if near else ""
+        has = f"it has {', '.join(there[:20])}{', …' if len(there) > 20 else ''}" if there else "it has none yet"
+        raise QueryRefused(f"the parameter {name} is {str(value)!r}, but there is no such list in the timeline; {hint}{has}")
+
+
+def _must_convert(ledger: Ledger, name: str, value: Value, kind: str) -> None:
+    """Raises QueryRefused where a value is not of the type that the statement makes of it."""
+    if kind not in KINDS or value is None:
+        return
+    made = ledger.value(f"SELECT TRY_CAST(? AS {kind})", [value])
+    if made is None or not isfinite(made) or (isinstance(made, int) and float(made) != float(value)):
+        raise QueryRefused(f"the parameter {name} takes {KINDS[kind]}, not {str(value)!r}")
 
 
 def _only_known(given: Mapping[str, Value], allowed: list[str], what: str) -> None:

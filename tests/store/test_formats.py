@@ -18,6 +18,7 @@ from chronos_acc.errors import ListRefused, WrongUse
 from chronos_acc.store import formats
 from chronos_acc.store.ledger import open_for_reading
 from chronos_acc.store.load import load
+from chronos_acc.store.propose import propose_sheet
 
 
 def entries(folder: Path, file: Path, columns: str = "row, title, date_text, rest", **options: Any) -> list[tuple[Any, ...]]:
@@ -212,3 +213,58 @@ def test_one_list_in_every_format_is_one_list(tmp_path: Path, ending: str) -> No
     name = {"xlsx": "excel"}.get(ending, ending)
     (one,) = load(db, ["-"], as_format=name, stdin=io.BytesIO(file.read_bytes()), link=False)
     assert (one.rows_read, one.rows_loaded) == (9, 9)
+
+
+def test_a_heading_above_the_header_of_a_worksheet_is_no_row(tmp_path: Path) -> None:
+    file = tmp_path / "x.xlsx"
+    workbook([["Milestones of the valley", "2019"], [], ["title", "date"], ["kiln", 1200], ["mill", 1300]]).save(file)
+    (one,) = load(tmp_path / "t.duckdb", file, link=False)
+    assert (one.rows_read, one.rows_loaded, one.notes) == (2, 2, ("the header was found in row 3; the line above it is no row",))
+
+
+def test_the_names_of_the_sheet_or_usual_ones_tell_the_header(tmp_path: Path) -> None:
+    file = tmp_path / "x.xlsx"
+    workbook([["Liste"], ["aus dem Archiv"], ["Ereignis", "Jahr"], ["kiln", 1200]]).save(file)
+    with pytest.raises(ListRefused, match="no column 'title'; its columns are 'Liste'"):
+        load(tmp_path / "t.duckdb", file)
+    sheet = tmp_path / "x.toml"
+    sheet.write_text('[columns]\ntitle = "Ereignis"\ndate = "Jahr"\n')
+    (one,) = load(tmp_path / "t.duckdb", file, link=False)
+    assert (one.rows_read, one.notes) == (1, ("the header was found in row 3; the 2 lines above it are no rows",))
+    sheet.unlink()
+    workbook([["Valley"], ["Event", "Age (ka)"], ["kiln", 12]]).save(file)
+    text = propose_sheet(file)
+    assert 'title = "Event"' in text and 'date = "Age (ka)"' in text and 'unit = "ka"' in text
+    assert "# the header was found in row 2; the line above it is no row" in text
+
+
+def test_nothing_else_is_guessed_about_headers(tmp_path: Path) -> None:
+    file = tmp_path / "x.xlsx"
+    for rows in (
+        [["Ereignis", "Jahr"], ["First entry", "66 Ma"], ["x", "1850"]],  # no row names columns
+        [["Note"], ["title", "date"], ["x", "1850"]],  # the first row names one
+        [[f"line {i}"] for i in range(10)] + [["title", "date"], ["x", "1850"]],  # too far down
+    ):
+        workbook(rows).save(file)
+        with pytest.raises(ListRefused, match="no column 'title'"):
+            load(tmp_path / "t.duckdb", file)
+
+
+@pytest.mark.parametrize("heading", ["Milestones of the valley", '"Milestones, of the valley"', "Milestones; 2019; north", "Milestones,,", "\nMilestones"])
+def test_a_heading_of_one_cell_above_the_header_of_a_text_is_no_row(tmp_path: Path, heading: str) -> None:
+    file = tmp_path / "x.csv"
+    file.write_text(f"{heading}\ntitle,date,where\nkiln,1200,a\nmill,1300,b\n")
+    (one,) = load(tmp_path / "t.duckdb", file, link=False)
+    line = 2 + heading.count("\n")
+    assert (one.rows_read, one.rows_loaded, one.notes) == (2, 2, (f"the header was found in line {line}; the line above it is no row",))
+    with open_for_reading(tmp_path / "t.duckdb") as ledger:
+        assert ledger.rows("SELECT row, title, rest FROM entries ORDER BY row")[0] == (line + 1, "kiln", '{"where":"a"}')
+
+
+def test_a_heading_of_several_cells_in_a_text_is_left_to_the_person(tmp_path: Path) -> None:
+    file = tmp_path / "x.csv"
+    file.write_text("Milestones,of the valley\ntitle,date\nkiln,1200\n")
+    with pytest.raises(ListRefused, match="no column 'title'"):
+        load(tmp_path / "t.duckdb", file)
+    file.write_text("Valley\nEvent;Year\nkiln;1200\n")
+    assert 'title = "Event"' in propose_sheet(file)

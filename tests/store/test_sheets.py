@@ -3,6 +3,7 @@
 
 from __future__ import annotations
 
+import tomllib
 from pathlib import Path
 
 import pytest
@@ -11,6 +12,7 @@ from chronos_acc.dating import SETTINGS
 from chronos_acc.errors import ListRefused, SheetRefused, WrongUse
 from chronos_acc.store.ledger import open_for_reading
 from chronos_acc.store.load import load
+from chronos_acc.store import propose
 from chronos_acc.store.propose import propose_sheet
 from chronos_acc.store.sheets import COLUMNS, COMPILATION, DATING, bare_sheet, columns_of, find_sheet, read_sheet
 
@@ -191,3 +193,42 @@ def test_a_proposal_names_an_encoding_and_refuses_what_is_no_list(tmp_path: Path
             propose_sheet(bad)
     (tmp_path / 'odd "\n.csv').write_text("a\nb\n")
     assert "needed: no column" in propose_sheet(tmp_path / 'odd "\n.csv')
+
+
+def test_a_date_to_come_does_not_turn_a_proposal_to_ages(tmp_path: Path) -> None:
+    file = tmp_path / "x.csv"
+    years = ["1500", "1600 BCE", "c. 1700", *(str(1800 + i) for i in range(8)), "9021"]
+    file.write_text("title,date\n" + "".join(f"t{i},{year}\n" for i, year in enumerate(years)))
+    text = propose_sheet(file, compiled=2020)
+    counted = [line for line in text.splitlines() if line.startswith('#       12  counted = "ago"')]
+    assert len(counted) == 1 and counted[0].endswith('; reads "9021" too')
+    assert "(nothing set)" in text and "<- proposed" in next(line for line in text.splitlines() if "(nothing set)" in line)
+    assert "# more rows read is no proof" in text
+    assert not [line for line in text.splitlines() if line.startswith(("counted", "unit"))]
+
+
+def _choice(words: str, keys: dict[str, str], read: int) -> propose._Choice:
+    return propose._Choice(words, keys, read, {})
+
+
+@pytest.mark.parametrize(
+    ("read", "count", "keys", "taken"),
+    [
+        (90, 100, {"counted": "ago"}, False), (100, 100, {"counted": "ago"}, True), (99, 100, {"counted": "ago"}, True),
+        (98, 100, {"decimal": ","}, False), (99, 100, {"decimal": ","}, True),
+        (2, 2, {"counted": "ago"}, False), (2, 2, {"day_order": "dmy"}, True), (3, 3, {"counted": "ago"}, True),
+    ],
+)  # fmt: skip
+def test_a_proposal_leaves_the_plain_reading_only_for_clearly_more(read: int, count: int, keys: dict[str, str], taken: bool) -> None:
+    plain = _choice("plain", {}, 89 if count == 100 else 1)
+    other = _choice("other", keys, read)
+    assert propose._chosen([plain, other, _choice("less", {"hundreds": "decade"}, 0)], count) is (other if taken else plain)
+
+
+def test_the_open_year_of_a_proposal_cannot_be_taken_by_mistake(tmp_path: Path) -> None:
+    file = tmp_path / "x.csv"
+    file.write_text("title,date\na,12 ka\n")
+    text = propose_sheet(file)
+    assert "compiled" not in tomllib.loads(text)["compilation"]
+    with pytest.raises(tomllib.TOMLDecodeError):
+        tomllib.loads(text.replace("# compiled", "compiled"))
