@@ -236,7 +236,8 @@ def _connect(path: Path, *, read_only: bool, config: Config) -> duckdb.DuckDBPyC
         with refusals(path), interrupts():
             return duckdb.connect(str(path.absolute()), read_only=read_only, config=dict(config))
     except duckdb.Error as error:  # whatever else it says of a file that it will not open
-        raise TimelineRefused(f"{path} cannot be opened as a timeline: {_first(' '.join(str(error).split()))}; choose another --db") from error
+        said = _first(" ".join(str(error).split()))
+        raise TimelineRefused(f"{path} cannot be opened as a timeline: {said}; choose another --db") from error
 
 
 def _holds_nothing(connection: duckdb.DuckDBPyConnection) -> bool:

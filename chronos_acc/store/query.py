@@ -26,7 +26,8 @@ _PRAGMA = re.compile(r"(\s|--[^\n]*(\n|$)|/\*.*?\*/)*pragma\b", re.IGNORECASE | 
 _SWITCH = re.compile(r"\b((enable|disable)_(logging|profiling)|truncate_duckdb_logs|write_log|(force_)?checkpoint)\s*\(", re.IGNORECASE)
 _CAST = re.compile(r"getvariable\s*\(\s*'([^']+)'\s*\)\s*::\s*(\w+)", re.IGNORECASE)
 _LIMIT = re.compile(r"\b(?:LIMIT|OFFSET)\s+(?:coalesce\s*\(\s*)?getvariable\s*\(\s*'([^']+)'\s*\)", re.IGNORECASE)
-VIEW_VARIABLES = {"present": "DOUBLE", "start": "DOUBLE", "min_support": "DOUBLE", "category": "VARCHAR"}  # what the views themselves follow
+# what the views themselves follow
+VIEW_VARIABLES = {"present": "DOUBLE", "start": "DOUBLE", "min_support": "DOUBLE", "category": "VARCHAR"}
 KINDS = {"DOUBLE": "a number", "BIGINT": "a whole number", "INTEGER": "a whole number", "UBIGINT": "a whole number, 0 or more"}
 A_LIST = "name of a list"  # how the meaning of a parameter begins that must be one
 

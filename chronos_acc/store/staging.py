@@ -197,4 +197,5 @@ def table_of(job: Job, staged: Staged, scratch: Path, encoding: str | None) -> T
     def fits(header: Sequence[str]) -> int:
         return sum(key in match_columns(header, job.sheet.columns) for key in ("title", "date"))
 
-    return job.format.read(staged.path, Asked(job.label, fits, scratch, encoding or job.sheet.encoding, partial(header_at, columns=job.sheet.columns)))
+    below = partial(header_at, columns=job.sheet.columns)
+    return job.format.read(staged.path, Asked(job.label, fits, scratch, encoding or job.sheet.encoding, below))

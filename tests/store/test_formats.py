@@ -250,7 +250,9 @@ def test_nothing_else_is_guessed_about_headers(tmp_path: Path) -> None:
             load(tmp_path / "t.duckdb", file)
 
 
-@pytest.mark.parametrize("heading", ["Milestones of the valley", '"Milestones, of the valley"', "Milestones; 2019; north", "Milestones,,", "\nMilestones"])
+@pytest.mark.parametrize(
+    "heading", ["Milestones of the valley", '"Milestones, of the valley"', "Milestones; 2019; north", "Milestones,,", "\nMilestones"]
+)
 def test_a_heading_of_one_cell_above_the_header_of_a_text_is_no_row(tmp_path: Path, heading: str) -> None:
     file = tmp_path / "x.csv"
     file.write_text(f"{heading}\ntitle,date,where\nkiln,1200,a\nmill,1300,b\n")

@@ -41,7 +41,7 @@ def test_values_that_convert_pass(db: Path) -> None:
 
 
 def test_a_list_that_is_not_there_is_said(db: Path, tmp_path: Path) -> None:
-    with pytest.raises(QueryRefused, match="the parameter list is 'alfa', but there is no such list .*did you mean 'alpha'. it has alpha, beta"):
+    with pytest.raises(QueryRefused, match="list is 'alfa', but there is no such list .*did you mean 'alpha'. it has alpha, beta"):
         Q.run(db, "entries", {"list": "alfa"})
     with pytest.raises(QueryRefused, match="it has none yet"):
         Q.run(make(tmp_path / "e.duckdb", {}), "entries", {"list": "alpha"})

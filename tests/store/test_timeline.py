@@ -223,4 +223,4 @@ def test_copies_that_count_as_milestones_are_said(tmp_path: Path) -> None:
         put(ledger, "c", [("ford", 1600.5), *({"title": "ford", "best": 1600.5, "duplicate": True} for _ in range(2))])
     relink(db)
     (note,) = T.record(db).notes
-    assert note.startswith("2 milestones repeat title and date of another of the same list and count as events (entries 5 and 6, and so on)")
+    assert note.startswith("2 milestones repeat title and date of another of the same list and count as events (entries 5 and 6, and so on")
