@@ -106,9 +106,10 @@ def query(db: Timeline, text: str, settings: Mapping[str, Any] | None = None) ->
 def _context(db: Timeline | Record, seed: int, draws: int, tell: Tell) -> Any:
     from .bias.check import Context
     from .record import Record
+    from .store.decisions import standing
     from .store.timeline import entries
 
     if isinstance(db, Record):
         return Context(record=db, seed=seed, draws=draws, tell=tell)
     rows, milestone = entries(Path(db))
-    return Context(record=read_record(db), seed=seed, draws=draws, entries=rows, milestone=milestone, tell=tell)
+    return Context(record=read_record(db), seed=seed, draws=draws, entries=rows, milestone=milestone, decisions=tuple(standing(Path(db))), tell=tell)
